@@ -1,0 +1,306 @@
+//! The Reading: every figure, in the fields the machine-readable output has.
+//!
+//! A figure that cannot be given is `None` (`null`), never left out and never made up. Fields may be added, never
+//! renamed or removed without a new [`Reading::SCHEMA`].
+
+use serde::{Serialize, Serializer};
+
+use crate::signal::Removed;
+use crate::units::Detector;
+
+/// One segment, read.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Reading {
+    /// [`Reading::SCHEMA`].
+    pub schema: u32,
+    /// The program's version.
+    pub version: String,
+    /// The capture.
+    pub capture: CaptureFacts,
+    /// The segment.
+    pub segment: SegmentFacts,
+    /// What levels mean.
+    pub scale: ScaleFacts,
+    /// One for each pane, in order.
+    pub panes: Vec<PaneFacts>,
+    /// Windows ranked for this segment, best first.
+    pub advice: Vec<AdviceLine>,
+    /// Tones, by frequency.
+    pub tones: Vec<Tone>,
+    /// Peaks that are leakage.
+    pub skirts: Vec<SkirtPeak>,
+    /// What a reader of these figures should know.
+    pub warnings: Vec<Warning>,
+}
+
+impl Reading {
+    /// The version of the machine-readable form.
+    pub const SCHEMA: u32 = 1;
+}
+
+/// The capture read.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct CaptureFacts {
+    /// Path as given.
+    pub path: String,
+    /// BLAKE3 of its bytes, hex; `None` where it was not computed.
+    pub blake3: Option<String>,
+    /// Samples a second used.
+    pub sample_rate_hz: f64,
+    /// Channels.
+    pub channels: usize,
+    /// Frames.
+    pub frames: u64,
+    /// Format in words.
+    pub format: String,
+}
+
+/// The segment read.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct SegmentFacts {
+    /// Channel, counted from 1.
+    pub channel: usize,
+    /// First sample.
+    pub start_sample: u64,
+    /// Samples.
+    pub samples: u64,
+    /// Start in seconds from the start of the capture.
+    pub start_s: f64,
+    /// Duration in seconds.
+    pub duration_s: f64,
+    /// `tones`, `random` or `transient`; `None` until that is found.
+    pub kind: Option<String>,
+    /// What was taken out, in the scale's unit.
+    pub removed: Removed,
+}
+
+/// What levels mean.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct ScaleFacts {
+    /// The quantity's name.
+    pub quantity: &'static str,
+    /// The unit.
+    pub unit: String,
+    /// The detector.
+    pub detector: Detector,
+    /// What a detected level is divided by, in the unit.
+    pub reference: f64,
+    /// How the reference is printed.
+    pub reference_label: String,
+    /// Units in one full scale.
+    pub factor: f64,
+}
+
+/// One pane.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct PaneFacts {
+    /// The window's catalogue name.
+    pub window: String,
+    /// Its parameter: none, a number, or a list.
+    #[serde(serialize_with = "parameter")]
+    pub parameter: Vec<f64>,
+    /// S1/N.
+    pub coherent_gain: f64,
+    /// Equivalent noise bandwidth in bins.
+    pub enbw_bins: f64,
+    /// Equivalent noise bandwidth in hertz.
+    pub enbw_hz: f64,
+    /// 1/T.
+    pub line_spacing_hz: f64,
+    /// Median over the band of the mean noise a line, detector and reference applied; `None` for too short a segment.
+    pub floor_db: Option<f64>,
+    /// Needs the joint fit.
+    pub expected_worst_error_db: Option<f64>,
+    /// Needs the joint fit.
+    pub n_skirts: Option<usize>,
+}
+
+/// No parameter is `null`, one is a number, more are a list.
+fn parameter<S: Serializer>(parameters: &[f64], serializer: S) -> Result<S::Ok, S::Error> {
+    match parameters {
+        [] => serializer.serialize_none(),
+        [one] => serializer.serialize_f64(*one),
+        more => more.serialize(serializer),
+    }
+}
+
+/// A window ranked for this segment.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct AdviceLine {
+    /// The window's catalogue name.
+    pub window: String,
+    /// Its parameter.
+    #[serde(serialize_with = "parameter")]
+    pub parameter: Vec<f64>,
+    /// `None`: some tone is unreadable.
+    pub expected_worst_error_db: Option<f64>,
+    /// What decides.
+    pub why: String,
+}
+
+/// What a tone is.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "lowercase")]
+pub enum Verdict {
+    /// Fitted, steady, parted from its neighbours, and the clear readings agree.
+    Holds,
+    /// A neighbour is too near.
+    Crowded,
+    /// It moves over the segment.
+    Wanders,
+    /// Clear readings disagree and nothing explains it.
+    Disputed,
+    /// Leakage of stronger tones; not a tone.
+    Skirt,
+    /// Too weak to be sure.
+    Faint,
+}
+
+/// An overruled verdict.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Overruled {
+    /// Who.
+    pub by: String,
+    /// Why.
+    pub reason: String,
+    /// What it was set to.
+    pub verdict: Verdict,
+}
+
+/// One contribution to a tone's uncertainty.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct BudgetItem {
+    /// What contributes.
+    pub item: String,
+    /// Standard uncertainty of the amplitude.
+    pub u_amplitude: Option<f64>,
+    /// Standard uncertainty of the frequency, Hz.
+    pub u_frequency_hz: Option<f64>,
+    /// Whether the user has stated it.
+    pub stated: bool,
+}
+
+/// One tone.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Tone {
+    /// Frequency; before the joint fit that of the sharpest clear pane.
+    pub frequency_hz: f64,
+    /// Its expanded uncertainty, k = 2; needs the joint fit.
+    pub frequency_u95_hz: Option<f64>,
+    /// Peak amplitude in the scale's unit.
+    pub amplitude: f64,
+    /// Its expanded uncertainty; needs the joint fit.
+    pub amplitude_u95: Option<f64>,
+    /// Through the detector, in the unit.
+    pub level: f64,
+    /// Over the reference.
+    pub level_db: f64,
+    /// 20 lg(1 + U/A); needs the joint fit.
+    pub level_u95_db: Option<f64>,
+    /// Cosine phase at the segment's first sample, -π to π; needs the joint fit.
+    pub phase_rad: Option<f64>,
+    /// Needs the joint fit.
+    pub verdict: Option<Verdict>,
+    /// Needs the joint fit.
+    pub why: Option<String>,
+    /// An overruled verdict.
+    pub overruled: Option<Overruled>,
+    /// Needs the joint fit.
+    pub budget: Option<Vec<BudgetItem>>,
+    /// One-sided, unit²/Hz at the tone; needs the joint fit's residue.
+    pub noise_density: Option<f64>,
+    /// Power over one rectangular line's mean noise; needs the joint fit's residue.
+    pub snr_db: Option<f64>,
+    /// Needs the joint fit.
+    pub drift_hz: Option<f64>,
+    /// Needs the joint fit.
+    pub drift_db: Option<f64>,
+    /// `by-hand`, `held`; more with the joint fit.
+    pub tags: Vec<String>,
+    /// Against the pinned fundamental.
+    pub order: Option<f64>,
+    /// Largest less smallest level of the readings that are clear, dB; `None` with fewer than two.
+    pub agreement_db: Option<f64>,
+    /// One for each pane, in order.
+    pub readings: Vec<PaneReading>,
+}
+
+/// How far one pane's reading of a tone can be trusted.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum ReadingState {
+    /// Nothing stands in the way.
+    Clear,
+    /// Another tone stands inside the pane's main lobe.
+    Crowded,
+    /// Leakage of other tones moves the level by more than 0.1 dB and more than the pane's noise does.
+    UnderSkirt,
+    /// The pane's floor covers it.
+    BelowFloor,
+}
+
+impl ReadingState {
+    /// The word for it.
+    pub fn word(self) -> &'static str {
+        match self {
+            Self::Clear => "clear",
+            Self::Crowded => "crowded",
+            Self::UnderSkirt => "under-skirt",
+            Self::BelowFloor => "below-floor",
+        }
+    }
+}
+
+/// What one pane says of one tone.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct PaneReading {
+    /// The pane's window, as written: `kaiser=8.6`.
+    pub window: String,
+    /// How far it can be trusted.
+    pub state: ReadingState,
+    /// Where the pane's maximum is, Hz (or the borrowed frequency).
+    pub peak_hz: f64,
+    /// Whether the frequency is borrowed from a sharper pane.
+    pub borrowed: bool,
+    /// Peak amplitude in the unit.
+    pub amplitude: f64,
+    /// Over the reference.
+    pub level_db: f64,
+    /// What noise alone does to the level in this pane, dB (one standard uncertainty); `None` without a floor.
+    pub u_db: Option<f64>,
+    /// Signed; needs the joint fit.
+    pub predicted_leak_db: Option<f64>,
+    /// Corrections from the raw line to the level; they sum to [`PaneReading::level_db`].
+    pub ledger: Vec<LedgerStep>,
+}
+
+/// One correction.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct LedgerStep {
+    /// Its name.
+    pub step: &'static str,
+    /// Its size, dB.
+    pub db: f64,
+}
+
+/// A peak that is leakage.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct SkirtPeak {
+    /// The pane's index.
+    pub pane: usize,
+    /// Where it is.
+    pub frequency_hz: f64,
+    /// Its level.
+    pub level_db: f64,
+    /// The tones it comes from.
+    pub from_hz: Vec<f64>,
+}
+
+/// Something a reader of the figures should know.
+#[derive(Debug, Clone, PartialEq, Eq, Serialize)]
+pub struct Warning {
+    /// A word for machines: `clipping`, `assumed-segment`.
+    pub code: &'static str,
+    /// A sentence.
+    pub text: String,
+}

@@ -1,0 +1,46 @@
+//! What a Reading depends on, all of it.
+
+use crate::session::{CaptureRef, HandTone, Session, Tuning};
+use crate::signal::{Removal, Span};
+use crate::units::Scale;
+use crate::window::Window;
+
+/// Everything a Reading depends on beside the samples. Equal requests on equal samples give equal Readings.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Request {
+    /// The capture, for the record.
+    pub capture: CaptureRef,
+    /// Samples a second.
+    pub sample_rate_hz: f64,
+    /// The channel, counted from 0.
+    pub channel: usize,
+    /// The segment.
+    pub span: Span,
+    /// What a sample means.
+    pub scale: Scale,
+    /// What is taken out first.
+    pub removal: Removal,
+    /// The panes' windows, in order.
+    pub windows: Vec<Window>,
+    /// Tones named by hand.
+    pub hand_tones: Vec<HandTone>,
+    /// What governs the search.
+    pub tuning: Tuning,
+}
+
+impl Request {
+    /// What the session asks for.
+    pub fn from_session(session: &Session) -> Self {
+        Self {
+            capture: session.capture.clone(),
+            sample_rate_hz: session.sample_rate_hz(),
+            channel: session.channel,
+            span: session.current_segment().map_or(Span { start: 0, samples: 0 }, |s| s.span),
+            scale: session.scale(),
+            removal: session.removal,
+            windows: session.panes.iter().map(|p| p.window.clone()).collect(),
+            hand_tones: session.hand_tones.clone(),
+            tuning: session.tuning,
+        }
+    }
+}

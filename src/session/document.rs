@@ -1,0 +1,189 @@
+//! The document's parts.
+
+use serde::{Deserialize, Serialize};
+
+use crate::signal::{Removal, Span};
+use crate::units::Scale;
+use crate::window::Window;
+
+/// The windows a new session starts with.
+pub const DEFAULT_WINDOWS: [&str; 6] = ["rectangular", "hann", "hamming", "blackman", "blackman-harris", "flat-top"];
+
+/// Which capture the session is about, and what it was when the session was saved.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct CaptureRef {
+    /// Its path; in a saved session relative to the session's folder where that can be said, with `/` between parts.
+    pub path: String,
+    /// BLAKE3 of the file's bytes, hex; empty while it is not known yet.
+    pub blake3: String,
+    /// Frames a second as the file states it.
+    pub sample_rate_hz: f64,
+    /// Channels.
+    pub channels: usize,
+    /// Frames.
+    pub frames: u64,
+    /// The format in words: `WAV, 24-bit integer`.
+    pub format: String,
+}
+
+/// Identifies a segment for life.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord, Serialize, Deserialize)]
+pub struct SegmentId(pub u32);
+
+/// Identifies a pane for life; its hue follows from it.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord, Serialize, Deserialize)]
+pub struct PaneId(pub u32);
+
+/// A marked part of the capture.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct NamedSegment {
+    /// Which one it is.
+    pub id: SegmentId,
+    /// What the user calls it.
+    pub name: String,
+    /// The samples marked.
+    pub span: Span,
+}
+
+/// One window over the segment.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct Pane {
+    /// Which one it is.
+    pub id: PaneId,
+    /// Its window.
+    pub window: Window,
+}
+
+/// A tone named by hand.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct HandTone {
+    /// Where it is, or is to be looked for.
+    pub frequency_hz: f64,
+    /// Whether its frequency is held as given.
+    pub held: bool,
+}
+
+/// A remark, about a tone or about the whole session.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct Note {
+    /// The tone it is about; `None`: the whole session.
+    pub frequency_hz: Option<f64>,
+    /// The remark.
+    pub text: String,
+}
+
+/// How frequency is laid out in the panes.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Serialize, Deserialize)]
+#[serde(rename_all = "lowercase")]
+pub enum FrequencyAxis {
+    /// In proportion.
+    #[default]
+    Linear,
+    /// By its logarithm.
+    Logarithmic,
+}
+
+/// What the panes' axes show. Kept with the session; changing it is not undone.
+#[derive(Debug, Clone, Copy, PartialEq, Default, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct ViewAxes {
+    /// How frequency is laid out.
+    pub frequency_axis: FrequencyAxis,
+    /// Lowest and highest frequency shown, Hz; `None`: everything up to half the rate.
+    pub frequency_hz: Option<(f64, f64)>,
+    /// Lowest and highest level shown, dB; `None`: fitted to what there is.
+    pub level_db: Option<(f64, f64)>,
+}
+
+/// What governs the search for tones.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct Tuning {
+    /// The chance that noise alone gives any tone at all in the search.
+    pub false_alarm: f64,
+    /// At most so many tones; the weakest over their floor are left out.
+    pub max_tones: usize,
+}
+
+impl Default for Tuning {
+    fn default() -> Self {
+        Self { false_alarm: 1e-3, max_tones: 200 }
+    }
+}
+
+/// The document. Small enough to snapshot.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct Session {
+    /// The capture.
+    pub capture: CaptureRef,
+    /// A sample rate that stands in for the file's, Hz.
+    pub rate_hz: Option<f64>,
+    /// The channel read, counted from 0.
+    pub channel: usize,
+    /// What a sample means, a scale for each channel.
+    pub scales: Vec<Scale>,
+    /// The segments marked; never empty.
+    pub segments: Vec<NamedSegment>,
+    /// The segment read.
+    pub current: SegmentId,
+    /// What is taken out of the segment before its transform.
+    pub removal: Removal,
+    /// The panes, in the order shown; 1 to 8.
+    pub panes: Vec<Pane>,
+    /// Tones named by hand.
+    pub hand_tones: Vec<HandTone>,
+    /// What governs the search for tones.
+    pub tuning: Tuning,
+    /// The tone picked, by its frequency, Hz.
+    pub picked_hz: Option<f64>,
+    /// Remarks.
+    pub notes: Vec<Note>,
+    /// What the axes show.
+    pub axes: ViewAxes,
+}
+
+impl Session {
+    /// A new session about a capture: one segment over all of it, the standing set of windows, no scale stated.
+    pub fn new(capture: CaptureRef) -> Self {
+        let span = Span { start: 0, samples: capture.frames };
+        let whole = NamedSegment { id: SegmentId(1), name: "segment 1".to_owned(), span };
+        let windows = DEFAULT_WINDOWS.iter().filter_map(|name| Window::parse(name).ok());
+        let panes = (1..).zip(windows).map(|(id, window)| Pane { id: PaneId(id), window }).collect();
+        Self {
+            scales: vec![Scale::default(); capture.channels],
+            capture,
+            rate_hz: None,
+            channel: 0,
+            segments: vec![whole],
+            current: SegmentId(1),
+            removal: Removal::Mean,
+            panes,
+            hand_tones: Vec::new(),
+            tuning: Tuning::default(),
+            picked_hz: None,
+            notes: Vec::new(),
+            axes: ViewAxes::default(),
+        }
+    }
+
+    /// Samples a second, as read: the override, else the file's.
+    pub fn sample_rate_hz(&self) -> f64 {
+        self.rate_hz.unwrap_or(self.capture.sample_rate_hz)
+    }
+
+    /// The segment read.
+    pub fn current_segment(&self) -> Option<&NamedSegment> {
+        self.segments.iter().find(|s| s.id == self.current)
+    }
+
+    /// The scale of the channel read.
+    pub fn scale(&self) -> Scale {
+        self.scales.get(self.channel).cloned().unwrap_or_default()
+    }
+}
