@@ -1,5 +1,15 @@
-//! One transform of the segment, many panes; their curves, scales and floor.
+//! One transform of the segment, many panes; their curves and their floor.
+//!
+//! Everything here is in the samples' own normalised scale: a tone of peak amplitude A stands at |Y| = A·S1/2.
 
+mod dense;
+mod floor;
+mod panes;
 mod spectra;
+mod transform;
 
-pub use spectra::{Curve, Spectra};
+pub use dense::Dense;
+pub use floor::Floor;
+pub use panes::{cosine_pane_powers, sampled_pane_power};
+pub use spectra::{Curve, LEAST_DB, Spectra};
+pub use transform::{Transform, transform};

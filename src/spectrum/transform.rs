@@ -1,0 +1,124 @@
+//! The segment's real transform.
+
+use std::sync::{Arc, Mutex, PoisonError};
+
+use realfft::num_complex::Complex64;
+use realfft::{RealFftPlanner, RealToComplex};
+
+/// The lines X\[0\] to X\[N/2\] of X\[k\] = Σ_n x\[n\] e^{-j2πkn/N}, of N real samples.
+#[derive(Debug, Clone)]
+pub struct Transform {
+    n: usize,
+    lines: Vec<Complex64>,
+}
+
+impl Transform {
+    /// Samples transformed, N.
+    pub fn n_samples(&self) -> usize {
+        self.n
+    }
+
+    /// X\[0\] to X\[N/2\].
+    pub fn lines(&self) -> &[Complex64] {
+        &self.lines
+    }
+
+    /// X\[k\] at any whole k: periodic in N, and X\[-k\] is the conjugate of X\[k\].
+    pub fn at(&self, k: i64) -> Complex64 {
+        let k = k.rem_euclid(self.n as i64) as usize;
+        if k < self.lines.len() { self.lines[k] } else { self.lines[self.n - k].conj() }
+    }
+
+    /// Copies X\[first\], X\[first+1\], ... into `out`; any whole k is allowed, as for [`Transform::at`].
+    pub fn copy_from(&self, first: i64, out: &mut [Complex64]) {
+        let inside = usize::try_from(first).ok().and_then(|f| self.lines.get(f..f.checked_add(out.len())?));
+        match inside {
+            Some(lines) => out.copy_from_slice(lines),
+            None => out.iter_mut().zip(first..).for_each(|(o, k)| *o = self.at(k)),
+        }
+    }
+}
+
+/// The real transform of `samples`, of any length; a length is never cut or padded.
+///
+/// No samples at all give one line of 0.
+pub fn transform(mut samples: Vec<f64>) -> Transform {
+    let n = samples.len();
+    if n == 0 {
+        return Transform { n: 1, lines: vec![Complex64::ZERO] };
+    }
+    let plan = plan(n);
+    let mut lines = plan.make_output_vec();
+    let mut scratch = plan.make_scratch_vec();
+    // The buffers come from the plan, so their lengths fit; the only other error is about inverse transforms.
+    let done = plan.process_with_scratch(&mut samples, &mut lines, &mut scratch);
+    debug_assert!(done.is_ok(), "{done:?}");
+    Transform { n, lines }
+}
+
+/// How many plans are kept. A dragged edge asks for a new length at every step; each plan holds twiddle factors of
+/// about the segment's size, so all of them cannot be kept.
+const KEPT_PLANS: usize = 4;
+
+fn plan(n: usize) -> Arc<dyn RealToComplex<f64>> {
+    static PLANS: Mutex<Vec<Arc<dyn RealToComplex<f64>>>> = Mutex::new(Vec::new());
+    let find = |plans: &mut Vec<Arc<dyn RealToComplex<f64>>>| {
+        let place = plans.iter().position(|p| p.len() == n)?;
+        let plan = plans.remove(place);
+        plans.push(Arc::clone(&plan));
+        Some(plan)
+    };
+    let lock = || PLANS.lock().unwrap_or_else(PoisonError::into_inner);
+    if let Some(plan) = find(&mut lock()) {
+        return plan;
+    }
+    // Planning takes as long as transforming: not under the lock.
+    let plan = RealFftPlanner::<f64>::new().plan_fft_forward(n);
+    let mut plans = lock();
+    plans.push(Arc::clone(&plan));
+    if plans.len() > KEPT_PLANS {
+        plans.remove(0);
+    }
+    plan
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// The definition, term by term, with the angle reduced before it is turned into a phase.
+    fn slow(samples: &[f64], k: usize) -> Complex64 {
+        let n = samples.len();
+        let phase = |i: usize| Complex64::cis(-std::f64::consts::TAU * ((i * k) % n) as f64 / n as f64);
+        samples.iter().enumerate().map(|(i, x)| phase(i) * x).sum()
+    }
+
+    fn some_samples(n: usize) -> Vec<f64> {
+        (0..n).map(|i| (0.7 * i as f64).sin() + 0.3 * ((i * i) as f64 * 0.01).cos() + 0.1).collect()
+    }
+
+    #[test]
+    fn every_length_from_1_to_300_equals_the_definition() {
+        for n in 1..=300 {
+            let samples = some_samples(n);
+            let transform = transform(samples.clone());
+            assert_eq!(transform.lines().len(), n / 2 + 1);
+            for k in 0..n {
+                let error = (transform.at(k as i64) - slow(&samples, k)).norm();
+                assert!(error < 1e-11, "N = {n}, k = {k}: {error:e}");
+            }
+        }
+    }
+
+    #[test]
+    fn lines_repeat_and_mirror() {
+        for n in [1, 2, 7, 8] {
+            let transform = transform(some_samples(n));
+            for k in -20..20 {
+                assert_eq!(transform.at(k), transform.at(k + n as i64));
+                assert!((transform.at(k) - transform.at(-k).conj()).norm() < 1e-12);
+            }
+        }
+        assert_eq!(super::transform(Vec::new()).at(3), Complex64::ZERO);
+    }
+}
