@@ -1,9 +1,21 @@
 //! Every change of the document, named, applied in one place.
 
-use super::{HandTone, Note, PaneId, SegmentId, Session, Tuning, ViewAxes};
+use super::{HandTone, NamedSegment, Note, Pane, PaneId, SegmentId, Session, Tuning, ViewAxes};
 use crate::signal::{Removal, Span};
-use crate::units::Scale;
+use crate::units::{Factor, Scale};
 use crate::window::Window;
+
+/// The most panes a session has.
+pub const MAX_PANES: usize = 8;
+
+/// The most segments a session has.
+pub const MAX_SEGMENTS: usize = 500;
+
+/// The most tones a search may be asked for.
+pub const MAX_TONES: usize = 10_000;
+
+/// Letters kept of a segment's name.
+const NAME_LETTERS: usize = 120;
 
 /// A change of the document.
 #[derive(Debug, Clone, PartialEq)]
@@ -50,8 +62,197 @@ pub enum Command {
 }
 
 impl Command {
-    /// Applies the change to `session`.
-    pub fn apply(self, session: &mut Session) {
-        let _ = (self, session);
+    /// What the change is called behind "Undo".
+    pub fn name(&self) -> &'static str {
+        match self {
+            Self::ChooseChannel(_) => "choose channel",
+            Self::SetScale(..) => "set scale",
+            Self::SetRate(_) => "set sample rate",
+            Self::SetRemoval(_) => "choose removal",
+            Self::MoveSegment(..) => "move segment",
+            Self::AddSegment(_) => "mark segment",
+            Self::RenameSegment(..) => "rename segment",
+            Self::RemoveSegment(_) => "remove segment",
+            Self::ChooseSegment(_) => "choose segment",
+            Self::AddPane(_) => "add pane",
+            Self::SetWindow(..) => "change window",
+            Self::RemovePane(_) => "remove pane",
+            Self::MovePane(..) => "move pane",
+            Self::Pick(_) => "pick tone",
+            Self::AddHandTone(_) => "name tone",
+            Self::RemoveHandTone(_) => "take back named tone",
+            Self::SetNote(_) => "write note",
+            Self::SetTuning(_) => "tune search",
+            Self::SetAxes(_) => "change axes",
+        }
+    }
+
+    /// Applies the change to `session` and says whether anything changed.
+    ///
+    /// What cannot be meant is brought into range (spans are clipped to the capture and keep at least one sample) or
+    /// left undone (unknown ids, numbers that are not finite, the last pane or segment taken away).
+    pub fn apply(self, session: &mut Session) -> bool {
+        match self {
+            Self::ChooseChannel(channel) => channel < session.capture.channels && put(&mut session.channel, channel),
+            Self::SetScale(channel, scale) => {
+                scale_is_finite(&scale) && session.scales.get_mut(channel).is_some_and(|place| put(place, scale))
+            }
+            Self::SetRate(rate) => rate.is_none_or(|r| r > 0.0 && r.is_finite()) && put(&mut session.rate_hz, rate),
+            Self::SetRemoval(removal) => put(&mut session.removal, removal),
+            Self::MoveSegment(id, span) => {
+                let span = inside(span, session.capture.frames);
+                segment(session, id).is_some_and(|s| put(&mut s.span, span))
+            }
+            Self::AddSegment(span) => add_segment(session, span),
+            Self::RenameSegment(id, name) => {
+                let name: String = name.trim().chars().take(NAME_LETTERS).collect();
+                !name.is_empty() && segment(session, id).is_some_and(|s| put(&mut s.name, name))
+            }
+            Self::RemoveSegment(id) => remove_segment(session, id),
+            Self::ChooseSegment(id) => segment(session, id).is_some() && put(&mut session.current, id),
+            Self::AddPane(window) => add_pane(session, window),
+            Self::SetWindow(id, window) => pane(session, id).is_some_and(|p| put(&mut p.window, window)),
+            Self::RemovePane(id) => remove_pane(session, id),
+            Self::MovePane(id, to) => move_pane(session, id, to),
+            Self::Pick(frequency) => is_frequency(frequency) && put(&mut session.picked_hz, frequency),
+            Self::AddHandTone(tone) => add_hand_tone(session, tone),
+            Self::RemoveHandTone(at) => {
+                at < session.hand_tones.len() && {
+                    session.hand_tones.remove(at);
+                    true
+                }
+            }
+            Self::SetNote(note) => is_frequency(note.frequency_hz) && set_note(session, note),
+            Self::SetTuning(tuning) => {
+                let usable = tuning.false_alarm > 0.0 && tuning.false_alarm < 1.0;
+                let tuning = Tuning { max_tones: tuning.max_tones.clamp(1, MAX_TONES), ..tuning };
+                usable && put(&mut session.tuning, tuning)
+            }
+            Self::SetAxes(axes) => axes_are_usable(&axes) && put(&mut session.axes, axes),
+        }
+    }
+}
+
+/// Puts a value in a place and says whether it is another one.
+fn put<T: PartialEq>(place: &mut T, value: T) -> bool {
+    let changed = *place != value;
+    *place = value;
+    changed
+}
+
+fn segment(session: &mut Session, id: SegmentId) -> Option<&mut NamedSegment> {
+    session.segments.iter_mut().find(|s| s.id == id)
+}
+
+fn pane(session: &mut Session, id: PaneId) -> Option<&mut Pane> {
+    session.panes.iter_mut().find(|p| p.id == id)
+}
+
+/// The span clipped to the capture, with at least one sample where the capture has any.
+fn inside(span: Span, frames: u64) -> Span {
+    let start = span.start.min(frames.saturating_sub(1));
+    let end = span.end().min(frames).max((start + 1).min(frames));
+    Span::from_range(start..end)
+}
+
+fn is_frequency(frequency_hz: Option<f64>) -> bool {
+    frequency_hz.is_none_or(|f| f >= 0.0 && f.is_finite())
+}
+
+/// Whether every number of a scale is finite. A scale that cannot be used yet (a unit without its factor, say) is
+/// still one the user is typing, and is kept.
+pub(super) fn scale_is_finite(scale: &Scale) -> bool {
+    let factor = match scale.factor {
+        Factor::NotStated => true,
+        Factor::UnitsPerFullScale(factor) => factor.is_finite(),
+        Factor::Sensitivity { volts_per_unit, full_scale_volts } => {
+            volts_per_unit.is_finite() && full_scale_volts.is_finite()
+        }
+    };
+    factor && scale.reference.is_none_or(f64::is_finite)
+}
+
+/// Whether every range of the axes is finite and rising.
+pub(super) fn axes_are_usable(axes: &ViewAxes) -> bool {
+    let rising = |range: Option<(f64, f64)>| range.is_none_or(|(a, b)| a < b && a.is_finite() && b.is_finite());
+    rising(axes.frequency_hz) && rising(axes.level_db)
+}
+
+fn add_segment(session: &mut Session, span: Span) -> bool {
+    let Some(id) = session.last_segment_id.checked_add(1) else { return false };
+    if session.segments.len() >= MAX_SEGMENTS {
+        return false;
+    }
+    session.last_segment_id = id;
+    let span = inside(span, session.capture.frames);
+    session.segments.push(NamedSegment { id: SegmentId(id), name: format!("segment {id}"), span });
+    session.current = SegmentId(id);
+    true
+}
+
+fn remove_segment(session: &mut Session, id: SegmentId) -> bool {
+    let Some(at) = session.segments.iter().position(|s| s.id == id) else { return false };
+    if session.segments.len() < 2 {
+        return false;
+    }
+    session.segments.remove(at);
+    if session.current == id {
+        let neighbour = session.segments.get(at).or_else(|| session.segments.last());
+        session.current = neighbour.map_or(id, |s| s.id);
+    }
+    true
+}
+
+fn add_pane(session: &mut Session, window: Window) -> bool {
+    let Some(id) = session.last_pane_id.checked_add(1) else { return false };
+    if session.panes.len() >= MAX_PANES {
+        return false;
+    }
+    session.last_pane_id = id;
+    session.panes.push(Pane { id: PaneId(id), window });
+    true
+}
+
+fn remove_pane(session: &mut Session, id: PaneId) -> bool {
+    let before = session.panes.len();
+    if before > 1 {
+        session.panes.retain(|p| p.id != id);
+    }
+    session.panes.len() != before
+}
+
+fn move_pane(session: &mut Session, id: PaneId, to: usize) -> bool {
+    let Some(from) = session.panes.iter().position(|p| p.id == id) else { return false };
+    let to = to.min(session.panes.len() - 1);
+    let pane = session.panes.remove(from);
+    session.panes.insert(to, pane);
+    from != to
+}
+
+fn add_hand_tone(session: &mut Session, tone: HandTone) -> bool {
+    let in_band = tone.frequency_hz > 0.0 && tone.frequency_hz < session.sample_rate_hz() / 2.0;
+    if !in_band || session.hand_tones.len() >= MAX_TONES {
+        return false;
+    }
+    if let Some(same) = session.hand_tones.iter_mut().find(|t| t.frequency_hz == tone.frequency_hz) {
+        return put(same, tone);
+    }
+    session.hand_tones.push(tone);
+    true
+}
+
+fn set_note(session: &mut Session, note: Note) -> bool {
+    let at = session.notes.iter().position(|n| n.frequency_hz == note.frequency_hz);
+    match (at, note.text.trim().is_empty()) {
+        (None, true) => false,
+        (None, false) => {
+            session.notes.push(note);
+            true
+        }
+        (Some(at), true) => {
+            session.notes.remove(at);
+            true
+        }
+        (Some(at), false) => session.notes.get_mut(at).is_some_and(|n| put(n, note)),
     }
 }

@@ -118,7 +118,7 @@ impl Default for Tuning {
 
 /// The document. Small enough to snapshot.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
+#[serde(rename = "Document", deny_unknown_fields)]
 pub struct Session {
     /// The capture.
     pub capture: CaptureRef,
@@ -130,12 +130,16 @@ pub struct Session {
     pub scales: Vec<Scale>,
     /// The segments marked; never empty.
     pub segments: Vec<NamedSegment>,
+    /// The greatest segment id given so far: no later segment gets an id a second time.
+    pub last_segment_id: u32,
     /// The segment read.
     pub current: SegmentId,
     /// What is taken out of the segment before its transform.
     pub removal: Removal,
     /// The panes, in the order shown; 1 to 8.
     pub panes: Vec<Pane>,
+    /// The greatest pane id given so far.
+    pub last_pane_id: u32,
     /// Tones named by hand.
     pub hand_tones: Vec<HandTone>,
     /// What governs the search for tones.
@@ -154,15 +158,17 @@ impl Session {
         let span = Span { start: 0, samples: capture.frames };
         let whole = NamedSegment { id: SegmentId(1), name: "segment 1".to_owned(), span };
         let windows = DEFAULT_WINDOWS.iter().filter_map(|name| Window::parse(name).ok());
-        let panes = (1..).zip(windows).map(|(id, window)| Pane { id: PaneId(id), window }).collect();
+        let panes: Vec<_> = (1..).zip(windows).map(|(id, window)| Pane { id: PaneId(id), window }).collect();
         Self {
             scales: vec![Scale::default(); capture.channels],
             capture,
             rate_hz: None,
             channel: 0,
             segments: vec![whole],
+            last_segment_id: 1,
             current: SegmentId(1),
             removal: Removal::Mean,
+            last_pane_id: panes.len() as u32,
             panes,
             hand_tones: Vec::new(),
             tuning: Tuning::default(),
