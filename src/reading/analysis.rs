@@ -2,9 +2,11 @@
 
 use std::sync::Arc;
 
-use super::{Reading, Request};
-use crate::signal::{Cancelled, SignalError, Source, Watch};
+use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
+use super::{Request, rows};
+use crate::signal::{Cancelled, Removed, SignalError, Source, Span, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
+use crate::tone::{Noise, Search, search};
 use crate::units::ScaleError;
 
 /// Why there is no Reading.
@@ -18,31 +20,63 @@ pub enum ReadingError {
     #[error(transparent)]
     Scale(#[from] ScaleError),
     /// The segment is too short to say anything.
-    #[error("the segment holds {samples} samples: mark at least {least}")]
+    #[error("the segment holds {samples} samples: mark at least {}", Segment::LEAST)]
     TooShort {
         /// How many it holds.
         samples: u64,
-        /// How many are needed.
-        least: u64,
+    },
+    /// The segment is too long for one transform.
+    #[error(
+        "the segment holds {samples} samples, more than the {} that one transform takes: mark a shorter one",
+        Segment::MOST
+    )]
+    TooLong {
+        /// How many it holds.
+        samples: u64,
     },
     /// A sample is not a number.
-    #[error("sample {at} of the segment is not a finite number: mark a segment without it")]
+    #[error("sample {at} of the capture is not a finite number: mark a segment without it")]
     NotFinite {
         /// Which sample, counted from the start of the capture.
         at: u64,
+    },
+    /// The rate cannot be used.
+    #[error("the sample rate is {rate_hz} Hz: give a number above 0")]
+    NoRate {
+        /// What it is.
+        rate_hz: f64,
     },
     /// The work was cancelled.
     #[error(transparent)]
     Cancelled(#[from] Cancelled),
 }
 
-/// A segment's curves and, once made, its Reading.
+/// A segment's samples, checked, with the mean or a line taken out, and their panes.
+#[derive(Debug, Clone)]
+pub struct Segment {
+    /// The panes.
+    pub spectra: Arc<Spectra>,
+    /// What was taken out, in full scales.
+    pub removed: Removed,
+    /// What is doubtful about the samples: a word and a sentence each.
+    pub doubts: Vec<Warning>,
+}
+
+impl Segment {
+    /// The fewest samples a segment may have.
+    pub const LEAST: u64 = 8;
+
+    /// The most samples that one transform takes: its panes then need about 2 GB.
+    pub const MOST: u64 = 1 << 25;
+}
+
+/// A segment's curves and its Reading.
 #[derive(Debug, Clone)]
 pub struct Analysis {
     /// What was asked.
     pub request: Request,
-    /// The transform and the panes.
-    pub spectra: Arc<Spectra>,
+    /// The segment's panes.
+    pub segment: Segment,
     /// The figures.
     pub reading: Arc<Reading>,
 }
@@ -51,21 +85,155 @@ pub struct Analysis {
 ///
 /// # Errors
 /// [`ReadingError`].
-pub fn analyse_curves(source: &dyn Source, request: &Request, watch: &Watch) -> Result<Arc<Spectra>, ReadingError> {
-    let _ = (source, request, watch);
-    Err(ReadingError::Cancelled(Cancelled))
+pub fn analyse_curves(source: &dyn Source, request: &Request, watch: &Watch) -> Result<Segment, ReadingError> {
+    let rate_hz = request.sample_rate_hz;
+    if !(rate_hz > 0.0 && rate_hz.is_finite()) {
+        return Err(ReadingError::NoRate { rate_hz });
+    }
+    let mut samples = samples_of(source, request, watch)?;
+    let doubts = Vec::new();
+    let removed = remove(&mut samples, rate_hz, request.removal);
+    let spectra = Arc::new(Spectra::new(samples.into(), rate_hz, &request.windows, watch)?);
+    Ok(Segment { spectra, removed, doubts })
 }
 
-/// The Reading, on curves made before or made now.
+/// The same segment under the windows now asked for; nothing is read again.
+///
+/// # Errors
+/// [`ReadingError::Cancelled`].
+pub fn with_windows(segment: &Segment, request: &Request, watch: &Watch) -> Result<Segment, ReadingError> {
+    let spectra = Arc::new(segment.spectra.with_windows(&request.windows, watch)?);
+    Ok(Segment { spectra, ..segment.clone() })
+}
+
+/// The Reading, on curves made before for the same request, or made now.
 ///
 /// # Errors
 /// [`ReadingError`].
 pub fn analyse(
     source: &dyn Source,
     request: &Request,
-    curves: Option<Arc<Spectra>>,
+    curves: Option<Segment>,
     watch: &Watch,
 ) -> Result<Analysis, ReadingError> {
-    let _ = (source, request, curves, watch);
-    Err(ReadingError::Cancelled(Cancelled))
+    request.scale.check()?;
+    let segment = match curves {
+        Some(segment) => segment,
+        None => analyse_curves(source, request, watch)?,
+    };
+    let tuning = request.tuning;
+    let found = search(&segment.spectra, request.removal, tuning.false_alarm, tuning.max_tones, watch)?;
+    watch.report(0.5);
+    let tones = rows::tones(&segment.spectra, request, &found, watch)?;
+    let reading = Reading {
+        schema: Reading::SCHEMA,
+        version: env!("CARGO_PKG_VERSION").to_owned(),
+        capture: capture_facts(request),
+        segment: segment_facts(request, segment.removed),
+        scale: scale_facts(request),
+        panes: pane_facts(&segment.spectra, request, found.noise.as_ref()),
+        advice: Vec::new(),
+        tones,
+        skirts: Vec::new(),
+        warnings: warnings(&segment, request, &found),
+    };
+    Ok(Analysis { request: request.clone(), segment, reading: Arc::new(reading) })
+}
+
+fn samples_of(source: &dyn Source, request: &Request, watch: &Watch) -> Result<Vec<f64>, ReadingError> {
+    let Span { start, samples: n } = request.span;
+    if n < Segment::LEAST {
+        return Err(ReadingError::TooShort { samples: n });
+    }
+    if n > Segment::MOST {
+        return Err(ReadingError::TooLong { samples: n });
+    }
+    let samples = read_channel(source, request.channel, request.span, watch)?;
+    match samples.iter().position(|x| !x.is_finite()) {
+        Some(at) => Err(ReadingError::NotFinite { at: start + at as u64 }),
+        None => Ok(samples),
+    }
+}
+
+fn capture_facts(request: &Request) -> CaptureFacts {
+    let capture = &request.capture;
+    CaptureFacts {
+        path: capture.path.clone(),
+        blake3: (!capture.blake3.is_empty()).then(|| capture.blake3.clone()),
+        sample_rate_hz: request.sample_rate_hz,
+        channels: capture.channels,
+        frames: capture.frames,
+        format: capture.format.clone(),
+    }
+}
+
+fn segment_facts(request: &Request, removed: Removed) -> SegmentFacts {
+    let factor = request.scale.units_per_full_scale();
+    let Span { start, samples } = request.span;
+    SegmentFacts {
+        channel: request.channel + 1,
+        start_sample: start,
+        samples,
+        start_s: start as f64 / request.sample_rate_hz,
+        duration_s: samples as f64 / request.sample_rate_hz,
+        kind: None,
+        removed: Removed { offset: removed.offset * factor, slope_per_s: removed.slope_per_s * factor, ..removed },
+    }
+}
+
+fn scale_facts(request: &Request) -> ScaleFacts {
+    let scale = &request.scale;
+    ScaleFacts {
+        quantity: scale.quantity.name(),
+        unit: scale.unit.clone(),
+        detector: scale.detector,
+        reference: scale.reference_value(),
+        reference_label: scale.reference_label(),
+        factor: scale.units_per_full_scale(),
+    }
+}
+
+fn pane_facts(spectra: &Spectra, request: &Request, noise: Option<&Noise>) -> Vec<PaneFacts> {
+    let n = spectra.n_samples();
+    let line_spacing_hz = spectra.line_spacing_hz();
+    let facts = |(pane, window): (usize, &crate::window::Window)| {
+        let sums = spectra.sums(pane);
+        let enbw_bins = n as f64 * sums.s2 / (sums.s1 * sums.s1);
+        let floor = noise.map(|noise| 2.0 * noise.typical_line_power(sums.s2).sqrt() / sums.s1);
+        PaneFacts {
+            window: window.name().to_owned(),
+            parameter: window.parameters().to_vec(),
+            coherent_gain: sums.s1 / n as f64,
+            enbw_bins,
+            enbw_hz: enbw_bins * line_spacing_hz,
+            line_spacing_hz,
+            floor_db: floor.map(|peak| rows::level_db(&request.scale, peak * request.scale.units_per_full_scale())),
+            expected_worst_error_db: None,
+            n_skirts: None,
+        }
+    };
+    spectra.windows().iter().enumerate().map(facts).collect()
+}
+
+fn warnings(segment: &Segment, request: &Request, found: &Search) -> Vec<Warning> {
+    let mut warnings = segment.doubts.clone();
+    if found.noise.is_none() {
+        let text = format!(
+            "the segment holds {} samples: too few lines to tell a noise floor, so no tones are looked for",
+            request.span.samples
+        );
+        warnings.push(Warning { code: "low-resolution", text });
+    }
+    if found.n_left_out > 0 {
+        let text = format!(
+            "{} more peaks stand over the floor: the weakest over it were left out (at most {} tones)",
+            found.n_left_out, request.tuning.max_tones
+        );
+        warnings.push(Warning { code: "more-tones", text });
+    }
+    if request.scale.is_full_scale() {
+        let text = "the scale is not stated: levels are in full scales of the file".to_owned();
+        warnings.push(Warning { code: "no-scale", text });
+    }
+    warnings
 }

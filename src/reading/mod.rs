@@ -3,8 +3,9 @@
 mod analysis;
 mod output;
 mod request;
+mod rows;
 
-pub use analysis::{Analysis, ReadingError, analyse, analyse_curves};
+pub use analysis::{Analysis, ReadingError, Segment, analyse, analyse_curves, with_windows};
 pub use output::{
     AdviceLine, BudgetItem, CaptureFacts, LedgerStep, Overruled, PaneFacts, PaneReading, Reading, ReadingState,
     ScaleFacts, SegmentFacts, SkirtPeak, Tone, Verdict, Warning,

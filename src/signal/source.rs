@@ -54,6 +54,11 @@ pub trait Source: Send + Sync + Debug {
     /// How many frames can be read.
     fn n_frames(&self) -> u64;
 
+    /// Bits of an integer sample, where samples are integers: full scale is then 2^(bits-1) steps.
+    fn integer_bits(&self) -> Option<u32> {
+        None
+    }
+
     /// Fills `out` with frames from `start` on, interleaved: `out.len()` is a whole number of frames.
     ///
     /// # Errors

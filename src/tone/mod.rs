@@ -1,1 +1,11 @@
-//! To come.
+//! Peaks over the floor, pane readings and what disturbs them. In bins and full scales; hertz and units come above.
+
+mod lone;
+mod search;
+mod state;
+mod threshold;
+
+pub use lone::{LoneReading, PaneView};
+pub use search::{FoundTone, Noise, Search, search};
+pub use state::{Disturbance, State};
+pub use threshold::detection_threshold;

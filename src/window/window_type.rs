@@ -73,6 +73,11 @@ impl Window {
         false
     }
 
+    /// Half the width of the main lobe at N samples, from its top to the first null, bins.
+    pub fn main_lobe_half_width_bins(&self, n: usize) -> f64 {
+        self.merit(n).width_null_bins / 2.0
+    }
+
     /// The samples w\[0\] to w\[n-1\].
     pub fn samples(&self, n: usize) -> Vec<f64> {
         let terms = self.cosine_terms().unwrap_or(&[1.0]);

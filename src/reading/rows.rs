@@ -1,0 +1,213 @@
+//! The rows of the tone table: one tone, read in every pane.
+
+use super::Request;
+use super::output::{LedgerStep, PaneReading, ReadingState, Tone};
+use crate::signal::{Cancelled, Watch};
+use crate::spectrum::Spectra;
+use crate::tone::{Disturbance, FoundTone, LoneReading, PaneView, Search, State};
+use crate::units::{Scale, db};
+
+/// Amplitudes below this, in the unit, are stated as if they were this large: levels in decibels stay finite.
+const LEAST_AMPLITUDE: f64 = 1e-30;
+
+/// A tone named by hand within this of one found is that one, bins.
+const SAME: f64 = 0.75;
+
+/// Over the reference, through the detector; finite for any amplitude.
+pub(super) fn level_db(scale: &Scale, peak: f64) -> f64 {
+    scale.level_db(peak.max(LEAST_AMPLITUDE))
+}
+
+/// A tone to be read: found by the search, named by hand, or both.
+struct Wanted {
+    held: bool,
+    tags: Vec<String>,
+}
+
+/// The rows, by frequency.
+pub(super) fn tones(
+    spectra: &Spectra,
+    request: &Request,
+    found: &Search,
+    watch: &Watch,
+) -> Result<Vec<Tone>, Cancelled> {
+    let (known, wanted) = with_hand_tones(spectra, request, found);
+    let mut rows = Vec::with_capacity(known.len());
+    for (i, wanted) in wanted.iter().enumerate() {
+        watch.check()?;
+        watch.report(0.5 + 0.5 * i as f64 / known.len() as f64);
+        rows.push(row(spectra, request, found, &known, i, wanted));
+    }
+    rows.sort_by(|a, b| a.frequency_hz.total_cmp(&b.frequency_hz));
+    Ok(rows)
+}
+
+/// The tones found together with those named by hand, in matching order.
+fn with_hand_tones(spectra: &Spectra, request: &Request, found: &Search) -> (Vec<FoundTone>, Vec<Wanted>) {
+    let mut known = found.tones.clone();
+    let mut wanted: Vec<Wanted> = known.iter().map(|_| Wanted { held: false, tags: Vec::new() }).collect();
+    let view = PaneView { spectra, pane: sharpest(spectra), removal: request.removal };
+    let top = spectra.n_samples() as f64 / 2.0;
+    for hand in &request.hand_tones {
+        let nu = hand.frequency_hz / spectra.line_spacing_hz();
+        if !(nu > 0.0 && nu < top) {
+            continue;
+        }
+        let nearest = (0..known.len())
+            .filter(|&i| (known[i].nu - nu).abs() < SAME)
+            .min_by(|&a, &b| (known[a].nu - nu).abs().total_cmp(&(known[b].nu - nu).abs()));
+        let i = nearest.unwrap_or_else(|| {
+            let read = if hand.held { None } else { view.read_near(nu) };
+            let read = read.unwrap_or_else(|| view.read_at(nu));
+            let n = spectra.n_samples() as f64;
+            let power = (read.amplitude.norm() * n / 2.0).powi(2);
+            let snr = found.noise.as_ref().map_or(0.0, |noise| power / noise.line_power(read.nu, n));
+            known.push(FoundTone { nu: read.nu, amplitude: read.amplitude, snr });
+            wanted.push(Wanted { held: false, tags: Vec::new() });
+            known.len() - 1
+        });
+        wanted[i].tags.push("by-hand".to_owned());
+        if hand.held {
+            known[i].nu = nu;
+            wanted[i].held = true;
+            wanted[i].tags.push("held".to_owned());
+        }
+    }
+    (known, wanted)
+}
+
+/// The pane with the narrowest noise bandwidth among those whose maximum tells the frequency; else the first.
+fn sharpest(spectra: &Spectra) -> usize {
+    by_sharpness(spectra).into_iter().find(|&p| !spectra.windows()[p].is_flat_top()).unwrap_or(0)
+}
+
+fn by_sharpness(spectra: &Spectra) -> Vec<usize> {
+    let enbw = |pane: usize| {
+        let sums = spectra.sums(pane);
+        sums.s2 / (sums.s1 * sums.s1)
+    };
+    let mut panes: Vec<usize> = (0..spectra.windows().len()).collect();
+    panes.sort_by(|&a, &b| enbw(a).total_cmp(&enbw(b)));
+    panes
+}
+
+fn row(spectra: &Spectra, request: &Request, found: &Search, known: &[FoundTone], i: usize, wanted: &Wanted) -> Tone {
+    let tone = known[i];
+    let order = by_sharpness(spectra);
+    let mut frequency = tone.nu;
+    let mut best: Option<(f64, f64)> = None;
+    let mut readings: Vec<Option<PaneReading>> = vec![None; order.len()];
+    // Flat-tops last: they borrow the frequency of the sharpest pane that sees the tone clearly.
+    let (tops, sharp): (Vec<usize>, Vec<usize>) = order.iter().partition(|&&p| spectra.windows()[p].is_flat_top());
+    for pane in sharp.into_iter().chain(tops) {
+        let noise = found.noise.as_ref().map_or(0.0, |n| n.line_power(tone.nu, spectra.sums(pane).s2));
+        let disturbance = Disturbance::of(spectra, pane, known, i, noise);
+        let (reading, lone) = pane_reading(spectra, request, pane, frequency, wanted.held, &disturbance);
+        if reading.state == ReadingState::Clear && best.is_none() {
+            best = Some((reading.peak_hz, reading.amplitude));
+            frequency = lone.nu;
+        }
+        readings[pane] = Some(reading);
+    }
+    let readings: Vec<PaneReading> = readings.into_iter().flatten().collect();
+    let factor = request.scale.units_per_full_scale();
+    let (frequency_hz, amplitude) =
+        best.unwrap_or((tone.nu * spectra.line_spacing_hz(), tone.amplitude.norm() * factor));
+    let noise_density = found.noise.as_ref().map(|noise| {
+        let n = spectra.n_samples() as f64;
+        2.0 * noise.line_power(tone.nu, n) / (n * spectra.sample_rate_hz()) * factor * factor
+    });
+    Tone {
+        frequency_hz,
+        frequency_u95_hz: None,
+        amplitude,
+        amplitude_u95: None,
+        level: request.scale.level(amplitude),
+        level_db: level_db(&request.scale, amplitude),
+        level_u95_db: None,
+        phase_rad: None,
+        verdict: None,
+        why: None,
+        overruled: None,
+        budget: None,
+        noise_density,
+        snr_db: found.noise.as_ref().map(|_| 10.0 * tone.snr.max(1e-30).log10()),
+        drift_hz: None,
+        drift_db: None,
+        tags: wanted.tags.clone(),
+        order: None,
+        agreement_db: agreement(&readings),
+        readings,
+    }
+}
+
+fn agreement(readings: &[PaneReading]) -> Option<f64> {
+    let clear = readings.iter().filter(|r| r.state == ReadingState::Clear);
+    let levels: Vec<f64> = clear.map(|r| r.level_db).collect();
+    let max = levels.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+    let min = levels.iter().copied().fold(f64::INFINITY, f64::min);
+    (levels.len() > 1).then_some(max - min)
+}
+
+/// One cell of the table. `frequency` (bins) is where the tone is looked for, and what a flat-top borrows.
+fn pane_reading(
+    spectra: &Spectra,
+    request: &Request,
+    pane: usize,
+    frequency: f64,
+    held: bool,
+    disturbance: &Disturbance,
+) -> (PaneReading, LoneReading) {
+    let view = PaneView { spectra, pane, removal: request.removal };
+    let window = &spectra.windows()[pane];
+    let mut state = match disturbance.state() {
+        State::Clear => ReadingState::Clear,
+        State::Crowded => ReadingState::Crowded,
+        State::UnderSkirt => ReadingState::UnderSkirt,
+        State::BelowFloor => ReadingState::BelowFloor,
+    };
+    let borrowed = held || window.is_flat_top();
+    let maximum = if borrowed || state == ReadingState::BelowFloor { None } else { view.read_near(frequency) };
+    if maximum.is_none() && !borrowed && state == ReadingState::Clear {
+        // Nothing rises here: whatever the skirts predict, they cover the tone.
+        state = ReadingState::UnderSkirt;
+    }
+    let lone = maximum.unwrap_or_else(|| view.read_at(frequency));
+    let factor = request.scale.units_per_full_scale();
+    let amplitude = lone.amplitude.norm() * factor;
+    let ledger = ledger(&request.scale, &lone, spectra.sums(pane).s1);
+    let reading = PaneReading {
+        window: window.to_string(),
+        state,
+        peak_hz: lone.nu * spectra.line_spacing_hz(),
+        borrowed,
+        amplitude,
+        level_db: level_db(&request.scale, amplitude),
+        u_db: (disturbance.noise_db > 0.0).then_some(disturbance.noise_db),
+        predicted_leak_db: None,
+        ledger,
+    };
+    (reading, lone)
+}
+
+/// The corrections from the raw line to the level; they sum to it.
+fn ledger(scale: &Scale, lone: &LoneReading, s1: f64) -> Vec<LedgerStep> {
+    let amplitude = (lone.amplitude.norm() * scale.units_per_full_scale()).max(LEAST_AMPLITUDE);
+    let factor = scale.units_per_full_scale();
+    let line = lone.line_magnitude.max(f64::MIN_POSITIVE);
+    let magnitude = lone.magnitude.max(f64::MIN_POSITIVE);
+    let steps = [
+        ("line", db(line)),
+        ("window", db(2.0 / s1)),
+        ("offset", db(magnitude) - db(line)),
+        ("image", db(amplitude / factor) - db(magnitude) - db(2.0 / s1)),
+        ("smear", 0.0),
+        ("detector", db(scale.detector.of_unit_peak())),
+        ("factor", db(factor)),
+        ("response", 0.0),
+        ("quantity", 0.0),
+        ("weighting", 0.0),
+        ("reference", -db(scale.reference_value())),
+    ];
+    steps.into_iter().map(|(step, db)| LedgerStep { step, db }).collect()
+}

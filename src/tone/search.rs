@@ -1,0 +1,163 @@
+//! Finding the tones of a segment, whatever panes are open.
+//!
+//! Three windows of its own look at the segment, from the sharpest to the one with the lowest side lobes. A local
+//! maximum counts when it stands over the local floor by more than noise would, and over what the tones found so far
+//! leak into that window by more than their side lobes could.
+
+use realfft::num_complex::Complex64;
+
+use super::lone::PaneView;
+use super::threshold::detection_threshold;
+use crate::signal::{Cancelled, Removal, Watch};
+use crate::spectrum::{Floor, Spectra};
+use crate::window::Window;
+
+/// A tone found, in bins and full scales.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct FoundTone {
+    /// Where it is, bins.
+    pub nu: f64,
+    /// Peak amplitude and cosine phase at the first sample, A e^{jφ}.
+    pub amplitude: Complex64,
+    /// Its power over one rectangular line's mean noise; 0 without a floor.
+    pub snr: f64,
+}
+
+/// What a search gives.
+#[derive(Debug, Clone)]
+pub struct Search {
+    /// The tones, by frequency.
+    pub tones: Vec<FoundTone>,
+    /// One-sided noise, as |X\[k\]|² of the rectangular window; `None` where the segment is too short to tell.
+    pub noise: Option<Noise>,
+    /// How many tones were left out, being the weakest over their floor.
+    pub n_left_out: usize,
+}
+
+/// The local noise of a segment.
+#[derive(Debug, Clone)]
+pub struct Noise {
+    floor: Floor,
+    /// S2 of the window the floor was taken from.
+    s2: f64,
+}
+
+impl Noise {
+    /// The mean noise power |Y|² a line at `nu` bins, of a window with the sum S2.
+    pub fn line_power(&self, nu: f64, s2: f64) -> f64 {
+        self.floor.at(nu) / self.s2 * s2
+    }
+
+    /// The median of [`Noise::line_power`] over the band.
+    pub fn typical_line_power(&self, s2: f64) -> f64 {
+        self.floor.typical() / self.s2 * s2
+    }
+}
+
+/// The search's own windows, sharpest first; the last has the lowest side lobes and gives the floor.
+const WINDOWS: [&str; 3] = ["hann", "blackman", "blackman-harris"];
+
+/// Tones nearer to 0 Hz or half the rate than this are not looked for, bins.
+const MARGIN: f64 = 1.5;
+
+/// Lines left out of the floor at either end: the main lobe of the window it is taken from.
+const FLOOR_MARGIN: usize = 4;
+
+/// A peak counts when it stands this much over the skirts of the tones found so far (an amplitude ratio).
+const OVER_SKIRT: f64 = 2.0;
+
+/// Two tones nearer than this are one, bins.
+const SAME: f64 = 0.5;
+
+/// Peaks looked at in each window, strongest first.
+const MOST_CANDIDATES: usize = 20_000;
+
+/// Tones kept while searching, before the weakest are left out.
+const MOST_FOUND: usize = 400;
+
+/// Looks for tones in the segment of `spectra`, whose own panes do not matter.
+///
+/// `false_alarm` is the chance that noise alone gives any tone, `max_tones` how many are kept (those that stand highest
+/// over their floor).
+///
+/// # Errors
+/// [`Cancelled`] where the watch says so.
+pub fn search(
+    spectra: &Spectra,
+    removal: Removal,
+    false_alarm: f64,
+    max_tones: usize,
+    watch: &Watch,
+) -> Result<Search, Cancelled> {
+    let windows: Vec<Window> = WINDOWS.iter().filter_map(|name| Window::parse(name).ok()).collect();
+    let looks = spectra.with_windows(&windows, watch)?;
+    let quietest = windows.len() - 1;
+    let Some(floor) = Floor::of(looks.power(quietest), FLOOR_MARGIN) else {
+        return Ok(Search { tones: Vec::new(), noise: None, n_left_out: 0 });
+    };
+    let noise = Noise { floor, s2: looks.sums(quietest).s2 };
+    let n_lines = looks.power(quietest).len();
+    // Lines of a tapered window are not independent: half of them count towards the floor.
+    let floor_lines = (Floor::LENGTH.min(n_lines) / 2).max(1);
+    let z = detection_threshold(n_lines, floor_lines, false_alarm / WINDOWS.len() as f64);
+    let mut found = Vec::new();
+    for pane in 0..windows.len() {
+        let view = PaneView { spectra: &looks, pane, removal };
+        look(&view, &noise, z, &mut found, watch)?;
+    }
+    let n_found = found.len();
+    found.sort_by(|a, b| b.snr.total_cmp(&a.snr));
+    found.truncate(max_tones);
+    found.sort_by(|a, b| a.nu.total_cmp(&b.nu));
+    Ok(Search { n_left_out: n_found - found.len(), tones: found, noise: Some(noise) })
+}
+
+/// Adds to `found` what one window sees beyond it.
+fn look(
+    view: &PaneView<'_>,
+    noise: &Noise,
+    z: f64,
+    found: &mut Vec<FoundTone>,
+    watch: &Watch,
+) -> Result<(), Cancelled> {
+    let sums = view.spectra.sums(view.pane);
+    for line in candidates(view, noise, z) {
+        watch.check()?;
+        if found.len() == MOST_FOUND {
+            break;
+        }
+        let magnitude = view.spectra.power(view.pane)[line].sqrt();
+        if magnitude < OVER_SKIRT * skirt(view, found, line as f64) {
+            continue;
+        }
+        let Some(reading) = view.read_near(line as f64) else { continue };
+        let inside = reading.nu >= MARGIN && reading.nu <= view.spectra.n_samples() as f64 / 2.0 - MARGIN;
+        if !inside || found.iter().any(|f| (f.nu - reading.nu).abs() < SAME) {
+            continue;
+        }
+        // |X|² of the tone in a rectangular pane over that pane's mean noise a line.
+        let n = view.spectra.n_samples() as f64;
+        let snr = (reading.amplitude.norm() * n / 2.0).powi(2) / noise.line_power(reading.nu, n);
+        debug_assert!(sums.s1 > 0.0);
+        found.push(FoundTone { nu: reading.nu, amplitude: reading.amplitude, snr });
+    }
+    Ok(())
+}
+
+/// Lines that are local maxima over the threshold, strongest first.
+fn candidates(view: &PaneView<'_>, noise: &Noise, z: f64) -> Vec<usize> {
+    let power = view.spectra.power(view.pane);
+    let s2 = view.spectra.sums(view.pane).s2;
+    let is_top = |k: &usize| power[*k] > power[k - 1] && power[*k] >= power[k + 1];
+    let counts = |k: &usize| power[*k] > z * noise.line_power(*k as f64, s2);
+    let mut lines: Vec<usize> = (1..power.len().saturating_sub(1)).filter(is_top).filter(counts).collect();
+    lines.sort_by(|&a, &b| power[b].total_cmp(&power[a]));
+    lines.truncate(MOST_CANDIDATES);
+    lines
+}
+
+/// The most that the tones found so far can put at `nu` in this window, as |Y|.
+fn skirt(view: &PaneView<'_>, found: &[FoundTone], nu: f64) -> f64 {
+    let kernel = |mu: f64| view.spectra.kernel_at(view.pane, mu).norm();
+    found.iter().map(|f| f.amplitude.norm() / 2.0 * (kernel(nu - f.nu) + kernel(nu + f.nu))).sum()
+}

@@ -1,0 +1,88 @@
+//! How far other tones disturb a pane's reading of one.
+
+use realfft::num_complex::Complex64;
+
+use super::search::FoundTone;
+use crate::spectrum::Spectra;
+use crate::units::db;
+
+/// What stands in the way of one reading.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Disturbance {
+    /// Whether another tone stands inside the pane's main lobe and moves the level by more than 0.01 dB.
+    pub crowded: bool,
+    /// What the other tones together can do to the level, dB, whatever the tone's own phase (0 or more).
+    pub leak_db: f64,
+    /// What noise does to the level, one standard uncertainty, dB.
+    pub noise_db: f64,
+    /// The tone's power over the pane's mean noise a line.
+    pub over_floor: f64,
+}
+
+/// A neighbour that moves the level by less than this does not crowd, whatever the distance.
+const CROWDING_DB: f64 = 0.01;
+
+/// Leakage under this does not count, dB.
+const LEAK_DB: f64 = 0.1;
+
+/// A reading whose power is less than this over the pane's noise is covered by the floor.
+const OVER_FLOOR: f64 = 4.0;
+
+/// What a reading can be, judged from the tones known.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum State {
+    /// Nothing stands in the way.
+    Clear,
+    /// Another tone stands inside the main lobe.
+    Crowded,
+    /// Leakage moves the level more than 0.1 dB and more than noise does.
+    UnderSkirt,
+    /// The pane's floor covers the tone.
+    BelowFloor,
+}
+
+impl Disturbance {
+    /// Of tone `of` among `tones`, in pane `pane`, whose mean noise a line there is `noise_power` (as |Y|²; 0 if not
+    /// known).
+    pub fn of(spectra: &Spectra, pane: usize, tones: &[FoundTone], of: usize, noise_power: f64) -> Self {
+        let Some(tone) = tones.get(of) else {
+            return Self { crowded: false, leak_db: 0.0, noise_db: 0.0, over_floor: 0.0 };
+        };
+        let n = spectra.n_samples();
+        let half_width = spectra.windows().get(pane).map_or(0.0, |w| w.main_lobe_half_width_bins(n));
+        let own = tone.amplitude.norm() / 2.0 * spectra.kernel_at(pane, 0.0).norm();
+        let mut leak = Complex64::ZERO;
+        let mut crowded = false;
+        for (i, other) in tones.iter().enumerate() {
+            if i == of {
+                continue;
+            }
+            let distance = tone.nu - other.nu;
+            let near = other.amplitude / 2.0 * spectra.kernel_at(pane, distance);
+            let image = other.amplitude.conj() / 2.0 * spectra.kernel_at(pane, tone.nu + other.nu);
+            leak += near + image;
+            crowded |= distance.abs() < half_width && db(1.0 + near.norm() / own) > CROWDING_DB;
+        }
+        // Of the noise |Y|² only the part in phase with the tone moves its level: half the power.
+        Self {
+            crowded,
+            leak_db: db(1.0 + leak.norm() / own),
+            noise_db: db(1.0 + (noise_power / 2.0).sqrt() / own),
+            over_floor: own * own / noise_power,
+        }
+    }
+
+    /// The word for it.
+    pub fn state(&self) -> State {
+        // Without a known floor nothing is covered: a ratio to no noise is infinite, or not a number for no tone.
+        if self.over_floor < OVER_FLOOR {
+            State::BelowFloor
+        } else if self.crowded {
+            State::Crowded
+        } else if self.leak_db > LEAK_DB && self.leak_db > self.noise_db {
+            State::UnderSkirt
+        } else {
+            State::Clear
+        }
+    }
+}
