@@ -11,3 +11,6 @@ pub use output::{
     ScaleFacts, SegmentFacts, SkirtPeak, Tone, Verdict, Warning,
 };
 pub use request::Request;
+
+#[cfg(test)]
+mod tests;

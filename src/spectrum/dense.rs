@@ -110,7 +110,10 @@ fn taps(part: f64) -> [f64; TAPS] {
 
 fn series_of_taps() -> [[f64; TAPS]; SERIES] {
     let angle = |j: usize| std::f64::consts::PI * (j as f64 + 0.5) / SERIES as f64;
-    let value = |tap: usize, j: usize| phi((angle(j).cos() + 1.0) / 2.0 + TAPS as f64 / 2.0 - 1.0 - tap as f64);
+    let value = |tap: usize, j: usize| {
+        let part = f64::midpoint(angle(j).cos(), 1.0);
+        phi(part + TAPS as f64 / 2.0 - 1.0 - tap as f64)
+    };
     std::array::from_fn(|order| {
         let norm = if order == 0 { 1.0 } else { 2.0 } / SERIES as f64;
         std::array::from_fn(|tap| {

@@ -1,0 +1,186 @@
+//! Readings of invented segments whose tones are known.
+
+use rand_core::{Rng as _, SeedableRng as _};
+
+use super::{Reading, ReadingError, ReadingState, Request, Segment, Tone, analyse};
+use crate::session::{CaptureRef, HandTone, Session};
+use crate::signal::{Span, Stored, Watch};
+use crate::units::{Detector, Factor, Quantity, Scale, db};
+
+const RATE_HZ: f64 = 8192.0;
+
+struct Made {
+    frequency_hz: f64,
+    peak: f64,
+    phase: f64,
+}
+
+fn made(frequency_hz: f64, peak: f64) -> Made {
+    Made { frequency_hz, peak, phase: 0.7 * frequency_hz }
+}
+
+/// White Gaussian noise of standard deviation `noise` under the tones (Box and Muller's method, fixed seed).
+fn capture(tones: &[Made], noise: f64, n: usize) -> Stored {
+    let mut random = rand_pcg::Pcg64Mcg::seed_from_u64(11);
+    let mut uniform = move || ((random.next_u64() >> 11) as f64 + 0.5) / (1_u64 << 53) as f64;
+    let sample = |i: usize| {
+        let t = i as f64 / RATE_HZ;
+        let tones: f64 =
+            tones.iter().map(|m| m.peak * (std::f64::consts::TAU * m.frequency_hz * t + m.phase).cos()).sum();
+        tones + noise * (-2.0 * uniform().ln()).sqrt() * (std::f64::consts::TAU * uniform()).cos()
+    };
+    Stored::new(RATE_HZ, 1, (0..n).map(sample).collect())
+}
+
+fn request(n: usize) -> Request {
+    let capture = CaptureRef {
+        path: "made.wav".to_owned(),
+        blake3: String::new(),
+        sample_rate_hz: RATE_HZ,
+        channels: 1,
+        frames: n as u64,
+        format: "made".to_owned(),
+    };
+    Request::from_session(&Session::new(capture))
+}
+
+fn read(tones: &[Made], noise: f64, n: usize) -> Reading {
+    let analysis = analyse(&capture(tones, noise, n), &request(n), None, &Watch::new()).unwrap();
+    Reading::clone(&analysis.reading)
+}
+
+fn nearest(reading: &Reading, frequency_hz: f64) -> &Tone {
+    let distance = |t: &&Tone| (t.frequency_hz - frequency_hz).abs();
+    reading.tones.iter().min_by(|a, b| distance(a).total_cmp(&distance(b))).unwrap()
+}
+
+fn state(tone: &Tone, window: &str) -> ReadingState {
+    tone.readings.iter().find(|r| r.window == window).unwrap().state
+}
+
+/// The pump's steady segment in little: a pair 3.8 lines apart, and a weak tone 62 dB under one 7.9 lines off.
+fn pump() -> Vec<Made> {
+    vec![
+        made(24.96, 0.42),
+        made(99.84, 0.11),
+        made(100.00, 0.23),
+        made(124.47, 4.9e-4),
+        made(124.80, 0.61),
+        made(249.6, 0.05),
+    ]
+}
+
+#[test]
+fn no_single_window_reads_the_pump_but_the_table_does() {
+    let reading = read(&pump(), 1e-3, 24 * 8192);
+    let found: Vec<f64> = reading.tones.iter().map(|t| (t.frequency_hz * 100.0).round() / 100.0).collect();
+    assert_eq!(found, [24.96, 99.84, 100.0, 124.47, 124.8, 249.6]);
+    for made in pump() {
+        let tone = nearest(&reading, made.frequency_hz);
+        let error = db(tone.amplitude / made.peak);
+        assert!(error.abs() < 0.15, "{} Hz: {error} dB", made.frequency_hz);
+        assert!(tone.agreement_db.is_some() || made.frequency_hz > 99.0);
+    }
+    let (pair, weak) = (nearest(&reading, 99.84), nearest(&reading, 124.47));
+    assert_eq!(state(pair, "blackman-harris"), ReadingState::Crowded);
+    assert_eq!(state(pair, "flat-top"), ReadingState::Crowded);
+    assert_eq!(state(pair, "hann"), ReadingState::Clear);
+    assert_eq!(state(weak, "rectangular"), ReadingState::UnderSkirt);
+    assert_eq!(state(weak, "hann"), ReadingState::UnderSkirt);
+    assert_eq!(state(weak, "blackman-harris"), ReadingState::Clear);
+    assert_eq!(state(weak, "flat-top"), ReadingState::Clear);
+    assert!(weak.readings.iter().find(|r| r.window == "flat-top").unwrap().borrowed);
+    assert!(weak.verdict.is_none() && weak.why.is_none() && weak.amplitude_u95.is_none());
+}
+
+#[test]
+fn every_ledger_sums_to_its_level() {
+    let n = 8192;
+    let mut request = request(n);
+    request.scale = Scale {
+        quantity: Quantity::Acceleration,
+        unit: "g".to_owned(),
+        factor: Factor::UnitsPerFullScale(10.0),
+        detector: Detector::PeakToPeak,
+        reference: None,
+    };
+    let analysis = analyse(&capture(&[made(100.3, 0.5)], 1e-4, n), &request, None, &Watch::new()).unwrap();
+    let tone = &analysis.reading.tones[0];
+    // 0.5 of full scale, 10 g at full scale: 5 g peak, 10 g peak to peak; re 1 µm/s².
+    let expected = db(10.0 * 9.806_65 / 1e-6);
+    for reading in &tone.readings {
+        let sum: f64 = reading.ledger.iter().map(|s| s.db).sum();
+        assert!((sum - reading.level_db).abs() < 1e-9);
+        assert!((reading.level_db - expected).abs() < 0.01, "{}: {}", reading.window, reading.level_db);
+    }
+    assert!((tone.level - 10.0).abs() < 0.01);
+}
+
+#[test]
+fn noise_alone_gives_no_tones() {
+    let with_tones = (1..=20).filter(|i| !read(&[], 0.1, 3000 + 500 * i).tones.is_empty()).count();
+    assert_eq!(with_tones, 0);
+}
+
+#[test]
+fn the_floor_is_that_of_the_noise() {
+    let reading = read(&[made(1000.0, 0.5)], 0.01, 1 << 16);
+    // White noise of variance s² has the one-sided density 2s²/fs.
+    let density = nearest(&reading, 1000.0).noise_density.unwrap();
+    assert!((density / (2.0 * 1e-4 / RATE_HZ) - 1.0).abs() < 0.2, "{density:e}");
+    // A rectangular line's mean noise has the peak amplitude 2s/√N: re a full-scale sine.
+    let floor = reading.panes[0].floor_db.unwrap();
+    assert!((floor - db(2.0 * 0.01 / 256.0)).abs() < 0.5, "{floor}");
+}
+
+#[test]
+fn a_tone_named_by_hand_is_read_where_it_is_held() {
+    let n = 8192;
+    let mut request = request(n);
+    request.hand_tones = vec![
+        HandTone { frequency_hz: 100.0, held: true },
+        HandTone { frequency_hz: 300.2, held: false },
+        HandTone { frequency_hz: 99_999.0, held: false },
+    ];
+    let analysis = analyse(&capture(&[made(100.3, 0.5)], 1e-4, n), &request, None, &Watch::new()).unwrap();
+    let tones = &analysis.reading.tones;
+    assert_eq!(tones.len(), 2);
+    assert_eq!(tones[0].tags, ["by-hand", "held"]);
+    assert!(tones[0].readings.iter().all(|r| r.peak_hz == 100.0 && r.borrowed));
+    assert_eq!(tones[1].tags, ["by-hand"]);
+}
+
+#[test]
+fn the_weakest_are_left_out_and_said_to_be() {
+    let n = 8192;
+    let tones: Vec<Made> = (1..=10).map(|i| made(f64::from(i) * 200.0 + 0.3, 0.01 * f64::from(i))).collect();
+    let mut request = request(n);
+    request.tuning.max_tones = 3;
+    let reading = analyse(&capture(&tones, 1e-5, n), &request, None, &Watch::new()).unwrap().reading;
+    assert_eq!(reading.tones.len(), 3);
+    assert!(reading.tones.iter().all(|t| t.frequency_hz > 1500.0));
+    assert!(reading.warnings.iter().any(|w| w.code == "more-tones" && w.text.starts_with("7 more")));
+}
+
+#[test]
+fn what_cannot_be_read_is_refused_with_a_reason() {
+    let source = Stored::new(RATE_HZ, 1, vec![0.0, 1.0, f64::NAN, 2.0, 0.0, 1.0, 0.0, 1.0, 5.0, 3.0]);
+    let spanning = |start, samples| Request { span: Span { start, samples }, ..request(10) };
+    let error = |request: &Request| analyse(&source, request, None, &Watch::new()).unwrap_err();
+    assert_eq!(error(&spanning(0, 10)), ReadingError::NotFinite { at: 2 });
+    assert_eq!(error(&spanning(0, 7)), ReadingError::TooShort { samples: 7 });
+    assert_eq!(error(&spanning(0, Segment::MOST + 1)), ReadingError::TooLong { samples: Segment::MOST + 1 });
+    assert!(matches!(error(&spanning(3, 9)), ReadingError::Signal(_)));
+    assert!(matches!(error(&Request { sample_rate_hz: 0.0, ..spanning(3, 8) }), ReadingError::NoRate { .. }));
+}
+
+#[test]
+fn silence_and_the_shortest_segments_are_read() {
+    for n in [8, 9, 16, 31, 64, 100] {
+        let source = Stored::new(RATE_HZ, 1, vec![0.0; n]);
+        let reading = analyse(&source, &request(n), None, &Watch::new()).unwrap().reading;
+        assert!(reading.tones.is_empty(), "N = {n}");
+        let json = serde_json::to_string(&*reading).unwrap();
+        assert!(!json.contains("NaN") && !json.contains("inf"));
+    }
+}
