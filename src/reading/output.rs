@@ -115,6 +115,14 @@ pub struct PaneFacts {
     pub n_skirts: Option<usize>,
 }
 
+impl PaneFacts {
+    /// The pane's window as it is written: `kaiser=8.6`.
+    pub fn written(&self) -> String {
+        let parameters: Vec<_> = self.parameter.iter().map(f64::to_string).collect();
+        if parameters.is_empty() { self.window.clone() } else { format!("{}={}", self.window, parameters.join(",")) }
+    }
+}
+
 /// No parameter is `null`, one is a number, more are a list.
 fn parameter<S: Serializer>(parameters: &[f64], serializer: S) -> Result<S::Ok, S::Error> {
     match parameters {

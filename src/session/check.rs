@@ -77,7 +77,13 @@ impl Session {
     }
 }
 
+/// No session has given so many ids; room is left to go on counting.
+const MAX_ID: u32 = 1 << 30;
+
 fn check_ids(what: &'static str, ids: impl Iterator<Item = u32>, last: u32) -> Result<(), DocumentError> {
+    if last > MAX_ID {
+        return Err(DocumentError::Id { what, id: last });
+    }
     let mut seen = std::collections::BTreeSet::new();
     for id in ids {
         if id > last || !seen.insert(id) {

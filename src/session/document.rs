@@ -2,6 +2,7 @@
 
 use serde::{Deserialize, Serialize};
 
+use crate::capture::Capture;
 use crate::signal::{Removal, Span};
 use crate::units::Scale;
 use crate::window::Window;
@@ -25,6 +26,20 @@ pub struct CaptureRef {
     pub frames: u64,
     /// The format in words: `WAV, 24-bit integer`.
     pub format: String,
+}
+
+impl CaptureRef {
+    /// What an open capture is; `blake3` is empty while it is not known yet.
+    pub fn of(capture: &Capture, blake3: String) -> Self {
+        Self {
+            path: capture.path.to_string_lossy().into_owned(),
+            blake3,
+            sample_rate_hz: capture.source.sample_rate_hz(),
+            channels: capture.source.n_channels(),
+            frames: capture.source.n_frames(),
+            format: capture.format.clone(),
+        }
+    }
 }
 
 /// Identifies a segment for life.

@@ -142,7 +142,7 @@ fn write(
 
 /// A value as the program writes it to its own files.
 pub(super) fn to_ron<T: Serialize>(value: &T) -> Result<String, ron::Error> {
-    let pretty = PrettyConfig::new().struct_names(true).new_line("\n").indentor("  ").compact_arrays(true);
+    let pretty = PrettyConfig::new().struct_names(true).new_line("\n").indentor("  ");
     let mut text = ron::Options::default().to_string_pretty(value, pretty)?;
     text.push('\n');
     Ok(text)

@@ -1,0 +1,171 @@
+//! How values are written on the command line.
+
+use crate::session::{HandTone, MAX_PANES};
+use crate::signal::{Removal, Span};
+use crate::units::{Detector, Quantity};
+use crate::window::Window;
+
+/// One edge of a segment.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) enum Edge {
+    Seconds(f64),
+    Sample(u64),
+}
+
+/// A segment as it is written.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) struct SegmentWish {
+    written: String,
+    start: Edge,
+    end: Edge,
+}
+
+/// Windows as they are written.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) struct WindowList(pub Vec<Window>);
+
+pub(super) fn segment(text: &str) -> Result<SegmentWish, String> {
+    let shape = || "write START..END, in seconds (9.0..33.0) or in samples (0n..4096n)".to_owned();
+    let (start, end) = text.split_once("..").ok_or_else(shape)?;
+    let edge = |text: &str| {
+        let text = text.trim();
+        match text.strip_suffix('n') {
+            Some(samples) => samples.parse().ok().map(Edge::Sample),
+            None => text.parse().ok().filter(|s: &f64| s.is_finite() && *s >= 0.0).map(Edge::Seconds),
+        }
+        .ok_or_else(shape)
+    };
+    Ok(SegmentWish { written: text.to_owned(), start: edge(start)?, end: edge(end)? })
+}
+
+impl SegmentWish {
+    /// The samples meant in a capture of `frames` at `rate_hz`, seconds rounded to the nearest sample.
+    pub(super) fn span(&self, rate_hz: f64, frames: u64) -> Result<Span, String> {
+        let sample = |edge| match edge {
+            // A product too large for an index saturates and is then refused as past the end.
+            Edge::Seconds(seconds) => (seconds * rate_hz).round() as u64,
+            Edge::Sample(sample) => sample,
+        };
+        let (start, end) = (sample(self.start), sample(self.end));
+        if end > frames {
+            let s = frames as f64 / rate_hz;
+            let written = &self.written;
+            return Err(format!(
+                "segment {written} ends past the capture's end, {s} s or {frames}n: give an END in it"
+            ));
+        }
+        if start >= end {
+            return Err(format!("segment {} holds no sample: give an END after START", self.written));
+        }
+        Ok(Span::from_range(start..end))
+    }
+}
+
+/// Windows parted by commas; a comma before anything but a letter goes on with the parameters: `taylor=4,35,hann`.
+pub(super) fn windows(text: &str) -> Result<WindowList, String> {
+    let mut written: Vec<String> = Vec::new();
+    for part in text.split(',') {
+        match written.last_mut() {
+            Some(last) if !part.trim_start().starts_with(char::is_alphabetic) => {
+                last.push(',');
+                last.push_str(part);
+            }
+            _ => written.push(part.to_owned()),
+        }
+    }
+    if written.len() > MAX_PANES {
+        return Err(format!("{} windows are more than the {MAX_PANES} there can be panes", written.len()));
+    }
+    let windows = written.iter().map(|text| Window::parse(text).map_err(|error| error.to_string()));
+    windows.collect::<Result<_, _>>().map(WindowList)
+}
+
+/// A hand-named tone: `124.47` or `124.47,held`.
+pub(super) fn tone(text: &str) -> Result<HandTone, String> {
+    let (frequency, held) = match text.split_once(',') {
+        Some((frequency, word)) if word.trim() == "held" => (frequency, true),
+        Some(_) => return Err("write HZ or HZ,held".to_owned()),
+        None => (text, false),
+    };
+    Ok(HandTone { frequency_hz: positive(frequency)?, held })
+}
+
+pub(super) fn positive(text: &str) -> Result<f64, String> {
+    let value = text.trim().parse().ok().filter(|v: &f64| v.is_finite() && *v > 0.0);
+    value.ok_or_else(|| "give a number above 0".to_owned())
+}
+
+pub(super) fn quantity(text: &str) -> Result<Quantity, String> {
+    Quantity::parse(text).ok_or_else(|| one_of(&Quantity::ALL.map(Quantity::name)))
+}
+
+pub(super) fn detector(text: &str) -> Result<Detector, String> {
+    Detector::parse(text).ok_or_else(|| one_of(&Detector::ALL.map(Detector::name)))
+}
+
+pub(super) fn removal(text: &str) -> Result<Removal, String> {
+    match text {
+        "none" => Ok(Removal::None),
+        "mean" => Ok(Removal::Mean),
+        "line" => Ok(Removal::Line),
+        _ => Err(one_of(&["none", "mean", "line"])),
+    }
+}
+
+fn one_of(names: &[&str]) -> String {
+    format!("give one of {}", names.join(", "))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn segments_in_seconds_and_samples() {
+        let span = |text: &str| segment(text).unwrap().span(8192.0, 327_680);
+        assert_eq!(span("9.0..33.0"), Ok(Span { start: 73_728, samples: 196_608 }));
+        assert_eq!(span("0n..4096n"), Ok(Span { start: 0, samples: 4096 }));
+        assert_eq!(span("0.00006..1n"), Ok(Span { start: 0, samples: 1 }));
+        assert_eq!(span("0..40"), Ok(Span { start: 0, samples: 327_680 }));
+    }
+
+    #[test]
+    fn segments_that_cannot_be() {
+        for text in ["", "9", "9..", "..9", "9..x", "-1..2", "NaN..2", "0..inf", "1.5n..2n", "0n..4096nn"] {
+            assert!(segment(text).is_err(), "{text}");
+        }
+        let span = |text: &str| segment(text).unwrap().span(8192.0, 327_680).unwrap_err();
+        assert_eq!(span("33..9"), "segment 33..9 holds no sample: give an END after START");
+        assert!(span("5n..5n").contains("holds no sample"));
+        assert!(span("9..41").contains("ends past the capture's end, 40 s or 327680n"));
+        assert!(span("0..1e300").contains("ends past"));
+        assert!(span("0n..18446744073709551615n").contains("ends past"));
+    }
+
+    #[test]
+    fn a_comma_parts_windows_only_before_a_letter() {
+        let written = |text: &str| windows(text).map(|l| l.0.iter().map(ToString::to_string).collect::<Vec<_>>());
+        assert_eq!(written("hann, rectangular").unwrap(), ["hann", "rectangular"]);
+        let error = windows("hann,no-such=4,35").unwrap_err();
+        assert!(error.contains("no-such"), "{error}");
+        assert!(windows("").is_err());
+        assert!(windows("hann,").is_err());
+        assert!(windows(&["hann"; 9].join(",")).unwrap_err().starts_with("9 windows are more than the 8"));
+    }
+
+    #[test]
+    fn hand_tones_may_be_held() {
+        assert_eq!(tone("124.47"), Ok(HandTone { frequency_hz: 124.47, held: false }));
+        assert_eq!(tone("124.47,held"), Ok(HandTone { frequency_hz: 124.47, held: true }));
+        for text in ["", "0", "-3", "124.47,kept", "inf"] {
+            assert!(tone(text).is_err(), "{text}");
+        }
+    }
+
+    #[test]
+    fn words_that_are_none_are_answered_with_those_that_are() {
+        assert_eq!(removal("all").unwrap_err(), "give one of none, mean, line");
+        assert_eq!(detector("r.m.s.").unwrap_err(), "give one of rms, peak, peak-to-peak");
+        assert!(quantity("loudness").unwrap_err().contains("sound-pressure"));
+    }
+}

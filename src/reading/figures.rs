@@ -1,0 +1,27 @@
+//! The figures of a Reading that a session keeps.
+
+use super::Reading;
+use crate::session::{Figures, PaneFigures, ToneFigures};
+use crate::signal::Span;
+
+/// What a session keeps of a Reading, so that a recheck can tell which figures moved.
+pub fn figures_of(reading: &Reading) -> Figures {
+    let tones = reading.tones.iter().map(|tone| ToneFigures {
+        frequency_hz: tone.frequency_hz,
+        amplitude: tone.amplitude,
+        level_db: tone.level_db,
+        readings: tone
+            .readings
+            .iter()
+            .map(|r| PaneFigures { state: r.state.word().to_owned(), peak_hz: r.peak_hz, level_db: r.level_db })
+            .collect(),
+    });
+    Figures {
+        channel: reading.segment.channel.saturating_sub(1),
+        segment: Span { start: reading.segment.start_sample, samples: reading.segment.samples },
+        sample_rate_hz: reading.capture.sample_rate_hz,
+        reference: reading.scale.reference_label.clone(),
+        windows: reading.panes.iter().map(|pane| pane.written()).collect(),
+        tones: tones.collect(),
+    }
+}

@@ -1,0 +1,81 @@
+//! The tone table as comma-separated values.
+
+use super::ReportError;
+use crate::reading::{Reading, Tone};
+use crate::units::Detector;
+
+/// The tone table as comma-separated values, UTF-8, a row a tone: the tone's figures in the machine-readable output's
+/// names, then for each pane its level, peak frequency, state and raw line. Numbers are full precision.
+///
+/// # Errors
+/// [`ReportError::Csv`].
+pub fn csv_table(reading: &Reading) -> Result<Vec<u8>, ReportError> {
+    let mut writer = csv::Writer::from_writer(Vec::new());
+    writer.write_record(head(reading))?;
+    for tone in &reading.tones {
+        writer.write_record(row(reading, tone))?;
+    }
+    writer.into_inner().map_err(|error| ReportError::Csv(error.into_error().into()))
+}
+
+fn head(reading: &Reading) -> Vec<String> {
+    let tone =
+        ["frequency_hz", "amplitude", "level", "level_db", "agreement_db", "unit", "detector", "reference", "tags"];
+    let mut cells: Vec<String> = tone.map(String::from).to_vec();
+    for (i, pane) in reading.panes.iter().enumerate() {
+        let pane = format!("pane {} {}", i + 1, pane.written());
+        cells.extend(["level_db", "peak_hz", "state", "u_db"].map(|what| format!("{pane} {what}")));
+    }
+    cells
+}
+
+fn row(reading: &Reading, tone: &Tone) -> Vec<String> {
+    let scale = &reading.scale;
+    let mut cells = vec![
+        tone.frequency_hz.to_string(),
+        tone.amplitude.to_string(),
+        tone.level.to_string(),
+        tone.level_db.to_string(),
+        optional(tone.agreement_db),
+        scale.unit.clone(),
+        Detector::name(scale.detector).to_owned(),
+        scale.reference.to_string(),
+        tone.tags.join("; "),
+    ];
+    for pane in &tone.readings {
+        cells.extend([
+            pane.level_db.to_string(),
+            pane.peak_hz.to_string(),
+            pane.state.word().to_owned(),
+            optional(pane.u_db),
+        ]);
+    }
+    cells
+}
+
+/// A figure that cannot be given is an empty cell.
+fn optional(value: Option<f64>) -> String {
+    value.map(|v| v.to_string()).unwrap_or_default()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::report::sample::reading;
+
+    #[test]
+    fn every_row_has_a_cell_for_each_head_and_numbers_come_back_exactly() {
+        let reading = reading();
+        let bytes = csv_table(&reading).unwrap();
+        let mut table = csv::Reader::from_reader(bytes.as_slice());
+        let head: Vec<_> = table.headers().unwrap().iter().map(str::to_owned).collect();
+        let rows: Vec<_> = table.records().collect::<Result<_, _>>().unwrap();
+        assert_eq!(rows.len(), reading.tones.len());
+        let cell = |name: &str| rows[0].get(head.iter().position(|h| h == name).unwrap()).unwrap().to_owned();
+        assert_eq!(cell("level_db").parse::<f64>().unwrap().to_bits(), reading.tones[0].level_db.to_bits());
+        assert_eq!(cell("pane 1 rectangular state"), "under-skirt");
+        assert_eq!(cell("pane 2 kaiser=8.6 peak_hz").parse::<f64>().unwrap(), 24.96);
+        assert_eq!(cell("pane 2 kaiser=8.6 u_db"), "");
+        assert_eq!((cell("unit"), cell("detector")), ("m/s²".to_owned(), "rms".to_owned()));
+    }
+}

@@ -1,0 +1,105 @@
+//! A Reading made by hand, for tests.
+
+use crate::reading::{
+    CaptureFacts, LedgerStep, PaneFacts, PaneReading, Reading, ReadingState, ScaleFacts, SegmentFacts, Tone, Warning,
+};
+use crate::signal::{Removal, Removed};
+use crate::units::Detector;
+
+/// Two panes over 24 s of an invented pump, one tone.
+pub(super) fn reading() -> Reading {
+    Reading {
+        schema: Reading::SCHEMA,
+        version: "0.1.0".to_owned(),
+        capture: CaptureFacts {
+            path: "pump.wav".to_owned(),
+            blake3: None,
+            sample_rate_hz: 8192.0,
+            channels: 2,
+            frames: 327_680,
+            format: "WAV, 24-bit integer".to_owned(),
+        },
+        segment: SegmentFacts {
+            channel: 1,
+            start_sample: 73_728,
+            samples: 196_608,
+            start_s: 9.0,
+            duration_s: 24.0,
+            kind: None,
+            removed: Removed { what: Removal::Mean, offset: 0.01, slope_per_s: 0.0 },
+        },
+        scale: ScaleFacts {
+            quantity: "acceleration",
+            unit: "m/s²".to_owned(),
+            detector: Detector::Rms,
+            reference: 1e-6,
+            reference_label: "dB re 1 µm/s² (r.m.s.)".to_owned(),
+            factor: 100.0,
+        },
+        panes: vec![pane("rectangular", &[], Some(f64::NEG_INFINITY)), pane("kaiser", &[8.6], None)],
+        advice: Vec::new(),
+        tones: vec![tone()],
+        skirts: Vec::new(),
+        warnings: vec![Warning { code: "assumed-segment", text: "the longest steady stretch was read".to_owned() }],
+    }
+}
+
+pub(super) fn without_tones() -> Reading {
+    Reading { tones: Vec::new(), ..reading() }
+}
+
+fn pane(window: &str, parameter: &[f64], floor_db: Option<f64>) -> PaneFacts {
+    PaneFacts {
+        window: window.to_owned(),
+        parameter: parameter.to_vec(),
+        coherent_gain: 1.0,
+        enbw_bins: 1.0,
+        enbw_hz: 1.0 / 24.0,
+        line_spacing_hz: 1.0 / 24.0,
+        floor_db,
+        expected_worst_error_db: None,
+        n_skirts: None,
+    }
+}
+
+fn tone() -> Tone {
+    Tone {
+        frequency_hz: 24.96,
+        frequency_u95_hz: None,
+        amplitude: std::f64::consts::SQRT_2,
+        amplitude_u95: None,
+        level: 1.0,
+        level_db: 120.000_000_000_000_01,
+        level_u95_db: None,
+        phase_rad: None,
+        verdict: None,
+        why: None,
+        overruled: None,
+        budget: None,
+        noise_density: None,
+        snr_db: None,
+        drift_hz: None,
+        drift_db: None,
+        tags: Vec::new(),
+        order: None,
+        agreement_db: Some(0.01),
+        readings: vec![
+            read("rectangular", ReadingState::UnderSkirt, 120.01, Some(0.001)),
+            read("kaiser=8.6", ReadingState::Clear, 120.0, None),
+        ],
+    }
+}
+
+fn read(window: &str, state: ReadingState, level_db: f64, u_db: Option<f64>) -> PaneReading {
+    PaneReading {
+        window: window.to_owned(),
+        state,
+        peak_hz: 24.96,
+        borrowed: false,
+        amplitude: 1.4,
+        level_db,
+        u_db,
+        predicted_leak_db: None,
+        ledger: vec![LedgerStep { step: "raw line", db: level_db }],
+    }
+}

@@ -1,0 +1,184 @@
+//! The tone table for the terminal.
+
+use super::CAUTION;
+use super::table::{Align, Table};
+use crate::reading::{PaneReading, Reading, Tone};
+use crate::session::Figure;
+
+/// The tone table as text: what was read and how levels are stated, a line a tone with a column a pane, then what a
+/// reader of the figures should know.
+pub fn tone_table(reading: &Reading) -> String {
+    let mut text = head(reading);
+    text.push('\n');
+    if reading.tones.is_empty() {
+        text.push_str("No tone stands over the floor.\n");
+    } else {
+        text.push_str(&table(reading));
+    }
+    if !reading.warnings.is_empty() {
+        text.push('\n');
+    }
+    let notes = reading.warnings.iter().map(|w| format!("Note ({}): {}\n", w.code, plain(&w.text)));
+    text.extend(notes);
+    text + "\n" + CAUTION + "\n"
+}
+
+fn head(reading: &Reading) -> String {
+    let (capture, segment, scale) = (&reading.capture, &reading.segment, &reading.scale);
+    let channel = format!("channel {} of {}", segment.channel, capture.channels);
+    let end_s = segment.start_s + segment.duration_s;
+    let spacing = reading.panes.first().map(|p| format!("; lines {} apart", short(p.line_spacing_hz, "Hz")));
+    format!(
+        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: amplitude in {} peak, levels in {}\n",
+        plain(&capture.path),
+        capture.format,
+        short(capture.sample_rate_hz, "Hz"),
+        segment.start_s,
+        segment.samples,
+        short(segment.duration_s, "s"),
+        spacing.unwrap_or_default(),
+        capital(scale.quantity),
+        scale.unit,
+        scale.reference_label,
+    )
+}
+
+fn table(reading: &Reading) -> String {
+    let mut columns = vec![Align::Right; 4];
+    let mut names: Vec<String> = ["frequency", "amplitude", "level", "agreement"].map(String::from).to_vec();
+    let mut units: Vec<String> = ["Hz", &reading.scale.unit, "dB", "dB"].map(String::from).to_vec();
+    for pane in &reading.panes {
+        columns.extend([Align::Right, Align::Left]);
+        // The window's name stands over both of the pane's columns.
+        names.extend([String::new(), pane.written()]);
+        units.extend(["dB".to_owned(), "state".to_owned()]);
+    }
+    let tagged = reading.tones.iter().any(|tone| !tone.tags.is_empty());
+    if tagged {
+        columns.push(Align::Left);
+        names.push(String::new());
+        units.push("tags".to_owned());
+    }
+    let mut table = Table::new(columns);
+    table.head(names);
+    table.head(units);
+    let decimals = frequency_decimals(reading);
+    for tone in &reading.tones {
+        table.row(row(tone, decimals, tagged));
+    }
+    table.text()
+}
+
+fn row(tone: &Tone, decimals: usize, tagged: bool) -> Vec<String> {
+    let mut cells = vec![
+        format!("{:.decimals$}", tone.frequency_hz),
+        digits(tone.amplitude, 5),
+        format!("{:.3}", tone.level_db),
+        tone.agreement_db.map_or_else(|| "-".to_owned(), |db| format!("{db:.3}")),
+    ];
+    cells.extend(tone.readings.iter().flat_map(cell));
+    if tagged {
+        cells.push(tone.tags.join(", "));
+    }
+    cells
+}
+
+/// A level that the pane's floor covers, or that a neighbour has part in, is shown with its state's word beside it.
+fn cell(reading: &PaneReading) -> [String; 2] {
+    [format!("{:.3}", reading.level_db), reading.state.word().to_owned()]
+}
+
+/// Decimals that show a hundredth of a line.
+fn frequency_decimals(reading: &Reading) -> usize {
+    let hundredth_hz = reading.panes.first().map_or(0.01, |p| p.line_spacing_hz / 100.0);
+    (-hundredth_hz.log10()).ceil().clamp(0.0, 9.0) as usize
+}
+
+/// A number in `n` significant digits.
+fn digits(value: f64, n: i32) -> String {
+    if value == 0.0 || !value.is_finite() {
+        return value.to_string();
+    }
+    let exponent = value.abs().log10().floor();
+    if (-4.0..9.0).contains(&exponent) {
+        let decimals = (n - 1 - exponent as i32).max(0) as usize;
+        format!("{value:.decimals$}")
+    } else {
+        format!("{value:.*e}", n as usize - 1)
+    }
+}
+
+/// A number in few digits with its unit.
+fn short(value: f64, unit: &str) -> String {
+    let text = digits(value, 6);
+    let text = if text.contains('.') && !text.contains('e') {
+        text.trim_end_matches('0').trim_end_matches('.')
+    } else {
+        &text
+    };
+    format!("{text} {unit}")
+}
+
+/// A figure of a recheck as text.
+pub fn figure_text(figure: &Figure) -> String {
+    match figure {
+        Figure::None => "none".to_owned(),
+        Figure::Number(number) => number.to_string(),
+        Figure::Word(word) => plain(word),
+    }
+}
+
+/// Text from outside on one line of a terminal: control characters are shown, not obeyed.
+pub(super) fn plain(text: &str) -> String {
+    text.chars().map(|c| if c.is_control() { '\u{fffd}' } else { c }).collect()
+}
+
+fn capital(word: &str) -> String {
+    let mut letters = word.replace('-', " ").chars().collect::<Vec<_>>();
+    if let Some(first) = letters.first_mut() {
+        *first = first.to_ascii_uppercase();
+    }
+    letters.into_iter().collect()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::report::sample::{reading, without_tones};
+
+    #[test]
+    fn numbers_keep_their_significant_digits() {
+        for (value, expected) in [
+            (0.0, "0"),
+            (14.142_135, "14.142"),
+            (0.001_234_567, "0.0012346"),
+            (123_456.7, "123457"),
+            (1e-9, "1.0000e-9"),
+            (f64::NAN, "NaN"),
+        ] {
+            assert_eq!(digits(value, 5), expected);
+        }
+        assert_eq!(short(24.0, "s"), "24 s");
+        assert_eq!(short(8192.0, "Hz"), "8192 Hz");
+        assert_eq!(short(100.0, "Hz"), "100 Hz");
+    }
+
+    #[test]
+    fn a_tone_is_a_line_with_a_level_and_a_word_for_each_pane() {
+        let text = tone_table(&reading());
+        let row = text.lines().find(|line| line.contains("24.9600")).unwrap();
+        assert_eq!(
+            row.split_whitespace().collect::<Vec<_>>(),
+            ["24.9600", "1.4142", "120.000", "0.010", "120.010", "under-skirt", "120.000", "clear"]
+        );
+        assert!(text.contains("Acceleration: amplitude in m/s² peak, levels in dB re 1 µm/s² (r.m.s.)"));
+        assert!(text.contains("Segment 9.000 s to 33.000 s: 196608 samples, 24 s; lines 0.0416667 Hz apart"));
+        assert!(text.contains("Note (assumed-segment): "));
+        assert!(text.trim_end().ends_with(CAUTION));
+    }
+
+    #[test]
+    fn no_tones_are_said() {
+        assert!(tone_table(&without_tones()).contains("No tone stands over the floor."));
+    }
+}
