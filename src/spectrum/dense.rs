@@ -75,6 +75,73 @@ impl Dense {
     }
 }
 
+/// How many moments [`Dense::moments_at`] gives.
+pub const MOMENTS: usize = 3;
+
+impl Dense {
+    /// Σ_n x\[n\] m^p e^{-j2πνm/N} for p = 0, 1, 2, with m = n - (N-1)/2 counted from the segment's middle.
+    ///
+    /// The p-th is the p-th derivative of the transform, times (jN/2π)^p: the interpolating function is differentiated
+    /// in its place. Errors stay below 1e-13, 3e-12 and 1e-9 of Σ|x|·(N/2)^p.
+    pub fn moments_at(&self, nu: f64) -> [Complex64; MOMENTS] {
+        let place = 2.0 * nu;
+        let first = place.floor() as i64 - TAPS as i64 / 2 + 1;
+        let mut lines = [Complex64::ZERO; TAPS];
+        self.doubled.copy_from(first, &mut lines);
+        let n = self.n as f64;
+        let middle = self.n / 2;
+        let quarter_turns = std::f64::consts::PI * middle as f64 / n;
+        // e^{jπjn0/N} of line j, reduced before it is turned into a phase: j is large, n0/N near a half.
+        let turn_of = (first as f64 * quarter_turns).rem_euclid(std::f64::consts::TAU);
+        let mut turn = Complex64::cis(turn_of);
+        let step = Complex64::cis(quarter_turns);
+        let weights = tap_derivatives(place - place.floor());
+        let mut sums = [Complex64::ZERO; MOMENTS];
+        for (i, line) in lines.iter().enumerate() {
+            for (sum, weights) in sums.iter_mut().zip(&weights) {
+                *sum += turn * line * weights[i];
+            }
+            turn *= step;
+        }
+        // φ is a function of 2ν; d/dν brings a 2, and Σ x (n - n0)^p e^{...} a jN/2π, each time.
+        let per_order = Complex64::I * (n / std::f64::consts::PI);
+        let about_line = [sums[0], sums[1] * per_order, sums[2] * per_order * per_order];
+        let shift = middle as f64 - (n - 1.0) / 2.0;
+        let turn = Complex64::cis(-std::f64::consts::TAU * nu * shift / n);
+        [
+            turn * about_line[0],
+            turn * (about_line[1] + about_line[0] * shift),
+            turn * (about_line[2] + about_line[1] * (2.0 * shift) + about_line[0] * (shift * shift)),
+        ]
+    }
+}
+
+/// φ and its first two derivatives at the sixteen taps around a place that lies `part` past a line.
+fn tap_derivatives(part: f64) -> [[f64; TAPS]; MOMENTS] {
+    static SERIES_OF_DERIVATIVES: LazyLock<[[[f64; TAPS]; SERIES]; MOMENTS]> = LazyLock::new(|| {
+        let of_taps = series_of_taps();
+        let first = differentiated(&of_taps);
+        let second = differentiated(&first);
+        [of_taps, first, second]
+    });
+    std::array::from_fn(|order| clenshaw(&SERIES_OF_DERIVATIVES[order], part))
+}
+
+/// The Chebyshev series of the derivative with respect to the part of a line (half of what the series runs over).
+fn differentiated(series: &[[f64; TAPS]; SERIES]) -> [[f64; TAPS]; SERIES] {
+    let mut derivative = [[0.0; TAPS]; SERIES];
+    for order in (1..SERIES).rev() {
+        for tap in 0..TAPS {
+            let above = if order + 1 < SERIES { derivative[order + 1][tap] } else { 0.0 };
+            derivative[order - 1][tap] = above + 2.0 * order as f64 * series[order][tap];
+        }
+    }
+    for tap in 0..TAPS {
+        derivative[0][tap] /= 2.0;
+    }
+    derivative.map(|row| row.map(|c| 2.0 * c))
+}
+
 /// Coefficients of a cosine sum that are used.
 const MOST_TERMS: usize = 16;
 
@@ -95,17 +162,21 @@ const SERIES: usize = 24;
 /// φ at the sixteen taps around a place that lies `part` (0 to 1) past a line.
 fn taps(part: f64) -> [f64; TAPS] {
     static SERIES_OF_TAPS: LazyLock<[[f64; TAPS]; SERIES]> = LazyLock::new(series_of_taps);
+    clenshaw(&SERIES_OF_TAPS, part)
+}
+
+/// Clenshaw's recurrence, all taps side by side.
+fn clenshaw(series: &[[f64; TAPS]; SERIES], part: f64) -> [f64; TAPS] {
     let x = 2.0 * part - 1.0;
-    // Clenshaw's recurrence, all taps side by side.
     let (mut next, mut after) = ([0.0; TAPS], [0.0; TAPS]);
-    for coefficients in SERIES_OF_TAPS.iter().skip(1).rev() {
+    for coefficients in series.iter().skip(1).rev() {
         for tap in 0..TAPS {
             let value = 2.0 * x * next[tap] - after[tap] + coefficients[tap];
             after[tap] = next[tap];
             next[tap] = value;
         }
     }
-    std::array::from_fn(|tap| x * next[tap] - after[tap] + SERIES_OF_TAPS[0][tap])
+    std::array::from_fn(|tap| x * next[tap] - after[tap] + series[0][tap])
 }
 
 fn series_of_taps() -> [[f64; TAPS]; SERIES] {
@@ -198,6 +269,30 @@ mod tests {
             let nu = 0.3 * f64::from(i);
             let error = (dense.windowed_at(&terms, nu) - slow(&windowed, nu)).norm();
             assert!(error < ERROR * 300.0, "ν = {nu}: {error:e}");
+        }
+    }
+
+    #[test]
+    fn moments_equal_their_sums() {
+        for n in [8, 17, 100, 1009] {
+            let samples = some_samples(n);
+            let dense = Dense::of(&samples);
+            let size: f64 = samples.iter().map(|x| x.abs()).sum();
+            let middle = (n as f64 - 1.0) / 2.0;
+            for i in 0..60 {
+                let nu = 0.37 * f64::from(i);
+                let turn = -std::f64::consts::TAU * nu / n as f64;
+                let moments = dense.moments_at(nu);
+                for (p, moment) in (0..).zip(moments) {
+                    let term = |(i, x): (usize, &f64)| {
+                        let m = i as f64 - middle;
+                        Complex64::cis(turn * m) * x * m.powi(p)
+                    };
+                    let sum: Complex64 = samples.iter().enumerate().map(term).sum();
+                    let error = (moment - sum).norm() / (size * (n as f64 / 2.0).powi(p));
+                    assert!(error < [1e-13, 3e-12, 1e-9][p as usize], "N = {n}, ν = {nu}, p = {p}: {error:e}");
+                }
+            }
         }
     }
 

@@ -8,7 +8,7 @@ mod panes;
 mod spectra;
 mod transform;
 
-pub use dense::Dense;
+pub use dense::{Dense, MOMENTS};
 pub use floor::Floor;
 pub use panes::{cosine_pane_powers, sampled_pane_power};
 pub use spectra::{Curve, LEAST_DB, Spectra};

@@ -1,10 +1,12 @@
 //! Peaks over the floor, pane readings and what disturbs them. In bins and full scales; hertz and units come above.
 
+mod fit;
 mod lone;
 mod search;
 mod state;
 mod threshold;
 
+pub use fit::{JointFit, SteadyTone, UnitUncertainty, fit_jointly};
 pub use lone::{LoneReading, PaneView};
 pub use search::{FoundTone, Noise, Search, search};
 pub use state::{Disturbance, State};

@@ -1,0 +1,8 @@
+//! The joint fit of all tones of a segment.
+
+mod joint;
+mod normal;
+mod sums;
+
+pub use joint::{JointFit, UnitUncertainty, fit_jointly};
+pub use normal::SteadyTone;
