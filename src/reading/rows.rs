@@ -59,10 +59,9 @@ fn with_hand_tones(spectra: &Spectra, request: &Request, found: &Search) -> (Vec
         let i = nearest.unwrap_or_else(|| {
             let read = if hand.held { None } else { view.read_near(nu) };
             let read = read.unwrap_or_else(|| view.read_at(nu));
-            let n = spectra.n_samples() as f64;
-            let power = (read.amplitude.norm() * n / 2.0).powi(2);
-            let snr = found.noise.as_ref().map_or(0.0, |noise| power / noise.line_power(read.nu, n));
-            known.push(FoundTone { nu: read.nu, amplitude: read.amplitude, snr });
+            let mut tone = FoundTone { nu: read.nu, amplitude: read.amplitude, snr: 0.0 };
+            tone.snr = found.noise.as_ref().map_or(0.0, |noise| noise.snr(&tone, spectra.n_samples() as f64));
+            known.push(tone);
             wanted.push(Wanted { held: false, tags: Vec::new() });
             known.len() - 1
         });

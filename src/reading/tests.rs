@@ -78,8 +78,10 @@ fn no_single_window_reads_the_pump_but_the_table_does() {
     for made in pump() {
         let tone = nearest(&reading, made.frequency_hz);
         let error = db(tone.amplitude / made.peak);
-        assert!(error.abs() < 0.15, "{} Hz: {error} dB", made.frequency_hz);
-        assert!(tone.agreement_db.is_some() || made.frequency_hz > 99.0);
+        // The sharpest clear pane may carry up to 0.1 dB of leakage, and the weak tone its noise.
+        assert!(error.abs() < 0.2, "{} Hz: {error} dB", made.frequency_hz);
+        let agreement = tone.agreement_db.unwrap();
+        assert!(agreement < 0.25, "{} Hz: {agreement} dB", made.frequency_hz);
     }
     let (pair, weak) = (nearest(&reading, 99.84), nearest(&reading, 124.47));
     assert_eq!(state(pair, "blackman-harris"), ReadingState::Crowded);

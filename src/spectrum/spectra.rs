@@ -186,7 +186,8 @@ impl Spectra {
         amplitude_db(self.at(pane, nu).norm_sqr(), self.sums(pane).s1)
     }
 
-    fn dense(&self) -> &Dense {
+    /// The dense transform of the segment as it is, under no window.
+    pub fn dense(&self) -> &Dense {
         self.dense.get_or_init(|| Dense::of(&self.samples))
     }
 }

@@ -2,10 +2,12 @@
 //!
 //! Three windows of its own look at the segment, from the sharpest to the one with the lowest side lobes. A local
 //! maximum counts when it stands over the local floor by more than noise would, and over what the tones found so far
-//! leak into that window by more than their side lobes could.
+//! leak into that window by more than their side lobes could. What was found is then fitted jointly, so that each tone
+//! is known free of the others' leakage.
 
 use realfft::num_complex::Complex64;
 
+use super::fit::{SteadyTone, fit_jointly};
 use super::lone::PaneView;
 use super::threshold::detection_threshold;
 use crate::signal::{Cancelled, Removal, Watch};
@@ -46,6 +48,11 @@ impl Noise {
     /// The mean noise power |Y|² a line at `nu` bins, of a window with the sum S2.
     pub fn line_power(&self, nu: f64, s2: f64) -> f64 {
         self.floor.at(nu) / self.s2 * s2
+    }
+
+    /// A tone's |X|² in a rectangular pane of `n` samples over that pane's mean noise a line.
+    pub fn snr(&self, tone: &FoundTone, n: f64) -> f64 {
+        (tone.amplitude.norm() * n / 2.0).powi(2) / self.line_power(tone.nu, n)
     }
 
     /// The median of [`Noise::line_power`] over the band.
@@ -109,7 +116,39 @@ pub fn search(
     found.sort_by(|a, b| b.snr.total_cmp(&a.snr));
     found.truncate(max_tones);
     found.sort_by(|a, b| a.nu.total_cmp(&b.nu));
+    watch.check()?;
+    refine(spectra, removal, &noise, &mut found);
     Ok(Search { n_left_out: n_found - found.len(), tones: found, noise: Some(noise) })
+}
+
+/// A joint fit that moves a tone further than this from where it was seen did not settle on it, bins.
+const MOST_MOVED: f64 = 1.0;
+
+/// Puts the jointly fitted frequencies and amplitudes in the place of those seen one at a time.
+///
+/// Where the fit does not settle (tones too close to tell apart, or a tone that moves) all stay as they were seen.
+fn refine(spectra: &Spectra, removal: Removal, noise: &Noise, found: &mut [FoundTone]) {
+    let n = spectra.n_samples() as f64;
+    let line = std::f64::consts::TAU / n;
+    let middle = (n - 1.0) / 2.0;
+    let start: Vec<SteadyTone> = found
+        .iter()
+        .map(|f| SteadyTone {
+            omega: f.nu * line,
+            middle_amplitude: f.amplitude * Complex64::cis(f.nu * line * middle),
+            held: false,
+        })
+        .collect();
+    let Some(fit) = fit_jointly(spectra.dense(), removal, &start) else { return };
+    let stayed = |(f, t): (&FoundTone, &SteadyTone)| (t.omega / line - f.nu).abs() < MOST_MOVED;
+    if !fit.converged || !found.iter().zip(&fit.tones).all(stayed) {
+        return;
+    }
+    for (found, tone) in found.iter_mut().zip(&fit.tones) {
+        found.nu = tone.omega / line;
+        found.amplitude = tone.middle_amplitude * Complex64::cis(-tone.omega * middle);
+        found.snr = noise.snr(found, n);
+    }
 }
 
 /// Adds to `found` what one window sees beyond it.
@@ -120,7 +159,6 @@ fn look(
     found: &mut Vec<FoundTone>,
     watch: &Watch,
 ) -> Result<(), Cancelled> {
-    let sums = view.spectra.sums(view.pane);
     for line in candidates(view, noise, z) {
         watch.check()?;
         if found.len() == MOST_FOUND {
@@ -135,11 +173,9 @@ fn look(
         if !inside || found.iter().any(|f| (f.nu - reading.nu).abs() < SAME) {
             continue;
         }
-        // |X|² of the tone in a rectangular pane over that pane's mean noise a line.
-        let n = view.spectra.n_samples() as f64;
-        let snr = (reading.amplitude.norm() * n / 2.0).powi(2) / noise.line_power(reading.nu, n);
-        debug_assert!(sums.s1 > 0.0);
-        found.push(FoundTone { nu: reading.nu, amplitude: reading.amplitude, snr });
+        let mut tone = FoundTone { nu: reading.nu, amplitude: reading.amplitude, snr: 0.0 };
+        tone.snr = noise.snr(&tone, view.spectra.n_samples() as f64);
+        found.push(tone);
     }
     Ok(())
 }

@@ -9,9 +9,9 @@ use crate::units::db;
 /// What stands in the way of one reading.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Disturbance {
-    /// Whether another tone stands inside the pane's main lobe and moves the level by more than 0.01 dB.
+    /// Whether another tone stands inside the pane's main lobe, not so weak that it could not matter.
     pub crowded: bool,
-    /// What the other tones together can do to the level, dB, whatever the tone's own phase (0 or more).
+    /// What the other tones together do to the level, signed, dB.
     pub leak_db: f64,
     /// What noise does to the level, one standard uncertainty, dB.
     pub noise_db: f64,
@@ -19,8 +19,9 @@ pub struct Disturbance {
     pub over_floor: f64,
 }
 
-/// A neighbour that moves the level by less than this does not crowd, whatever the distance.
-const CROWDING_DB: f64 = 0.01;
+/// A neighbour with less than this part of the tone's amplitude does not crowd it, whatever the distance: it could
+/// move the level by 0.01 dB at most.
+const CROWDING_PART: f64 = 1.15e-3;
 
 /// Leakage under this does not count, dB.
 const LEAK_DB: f64 = 0.1;
@@ -50,7 +51,8 @@ impl Disturbance {
         };
         let n = spectra.n_samples();
         let half_width = spectra.windows().get(pane).map_or(0.0, |w| w.main_lobe_half_width_bins(n));
-        let own = tone.amplitude.norm() / 2.0 * spectra.kernel_at(pane, 0.0).norm();
+        let own_peak = tone.amplitude / 2.0 * spectra.kernel_at(pane, 0.0);
+        let own = own_peak.norm();
         let mut leak = Complex64::ZERO;
         let mut crowded = false;
         for (i, other) in tones.iter().enumerate() {
@@ -61,12 +63,12 @@ impl Disturbance {
             let near = other.amplitude / 2.0 * spectra.kernel_at(pane, distance);
             let image = other.amplitude.conj() / 2.0 * spectra.kernel_at(pane, tone.nu + other.nu);
             leak += near + image;
-            crowded |= distance.abs() < half_width && db(1.0 + near.norm() / own) > CROWDING_DB;
+            crowded |= distance.abs() < half_width && other.amplitude.norm() > CROWDING_PART * tone.amplitude.norm();
         }
         // Of the noise |Y|² only the part in phase with the tone moves its level: half the power.
         Self {
             crowded,
-            leak_db: db(1.0 + leak.norm() / own),
+            leak_db: db((own_peak + leak).norm() / own),
             noise_db: db(1.0 + (noise_power / 2.0).sqrt() / own),
             over_floor: own * own / noise_power,
         }
@@ -79,7 +81,7 @@ impl Disturbance {
             State::BelowFloor
         } else if self.crowded {
             State::Crowded
-        } else if self.leak_db > LEAK_DB && self.leak_db > self.noise_db {
+        } else if self.leak_db.abs() > LEAK_DB && self.leak_db.abs() > self.noise_db {
             State::UnderSkirt
         } else {
             State::Clear
