@@ -1,5 +1,13 @@
 //! Recording files: readers, overview, what is wrong with them. Captures are only ever read.
+//!
+//! A reader is one file here and one line in the registry of `open.rs`: it tells by the first bytes whether a file is
+//! its own, and opens it as a [`crate::signal::Source`].
 
+mod error;
+mod foreign;
 mod open;
+mod riff;
+mod wav;
 
-pub use open::{Capture, CaptureError, open};
+pub use error::CaptureError;
+pub use open::{Capture, open};

@@ -1,0 +1,71 @@
+//! Why a capture cannot be opened.
+
+use std::path::PathBuf;
+
+/// Why a capture cannot be opened: one sentence that says which file, what is wrong and what to do.
+#[derive(Debug, thiserror::Error)]
+#[non_exhaustive]
+pub enum CaptureError {
+    /// The system refused.
+    #[error("{}: {reason}", .path.display())]
+    Io {
+        /// The file.
+        path: PathBuf,
+        /// What the system said.
+        reason: std::io::Error,
+    },
+    /// The path leads to a folder or a device.
+    #[error("{} is not an ordinary file: choose a recording", .path.display())]
+    NotAFile {
+        /// The path.
+        path: PathBuf,
+    },
+    /// The file has no bytes.
+    #[error("{} is empty (0 bytes): copy it from the recorder again", .path.display())]
+    Empty {
+        /// The file.
+        path: PathBuf,
+    },
+    /// Nothing in the file's first bytes says that it is a recording.
+    #[error("{} is not a WAV file{}: this version opens WAV recordings", .path.display(), .seems.map(|s| format!(" but {s}")).unwrap_or_default())]
+    NotARecording {
+        /// The file.
+        path: PathBuf,
+        /// What it seems to be: `a FLAC file`.
+        seems: Option<&'static str>,
+    },
+    /// The file breaks the rules of its format so that its samples cannot be trusted.
+    #[error("{} is damaged: {what}; export or copy it from the recorder again", .path.display())]
+    Malformed {
+        /// The file.
+        path: PathBuf,
+        /// Which field, what it says, what would be right.
+        what: String,
+    },
+    /// The file is in order, but of a kind that this version does not read.
+    #[error("{}: {what}; this version reads WAV with 8, 16, 24 or 32-bit integer or 32-bit float samples, so export it as one of these", .path.display())]
+    Unsupported {
+        /// The file.
+        path: PathBuf,
+        /// What it holds.
+        what: String,
+    },
+    /// The header is in order, but there is not one frame.
+    #[error("{} holds no samples: the recorder may not have finished it, so copy or repair it there", .path.display())]
+    NoFrames {
+        /// The file.
+        path: PathBuf,
+    },
+    /// The header states no sample rate.
+    #[error("{} states a sample rate of 0 Hz, so no frequency can be read from it: export it with its rate", .path.display())]
+    NoRate {
+        /// The file.
+        path: PathBuf,
+    },
+    /// The header states no channel.
+    #[error("{} states 0 channels: export it again", .path.display())]
+    NoChannels {
+        /// The file.
+        path: PathBuf,
+    },
+}
