@@ -1,0 +1,126 @@
+//! What can be given, and what is said to what cannot.
+
+use std::fs;
+use std::process::Stdio;
+
+use crate::shop::{Ran, Shop};
+
+#[test]
+fn help_tells_the_commands_with_examples_and_the_exit_statuses() {
+    let shop = Shop::new();
+    let help = shop.run(&["--help"]).done();
+    for part in ["read", "recheck", "windows", "Examples:", "Exit status:", "CAPTURE|SESSION"] {
+        assert!(help.contains(part), "{part} in:\n{help}");
+    }
+    let help = shop.run(&["read", "--help"]).done();
+    for option in [
+        "--channel",
+        "--segment",
+        "--windows",
+        "--quantity",
+        "--unit",
+        "--factor",
+        "--sensitivity",
+        "--full-scale-volts",
+        "--detector",
+        "--reference",
+        "--rate",
+        "--remove",
+        "--tone",
+        "--max-tones",
+        "--false-alarm",
+        "--json",
+        "--csv",
+        "--save",
+    ] {
+        assert!(help.contains(option), "{option} in:\n{help}");
+    }
+    assert_eq!(shop.run(&["--version"]).done(), concat!("panewise ", env!("CARGO_PKG_VERSION"), "\n"));
+}
+
+#[test]
+fn bad_usage_is_told_in_one_line() {
+    let shop = Shop::new();
+    shop.pump("pump.wav");
+    for (arguments, part) in [
+        (&["read"][..], "CAPTURE"),
+        (&["--no-such"], "--no-such"),
+        (&["recheck"], "SESSION"),
+        (&["pump.wav", "other.wav"], "other.wav"),
+        (&["read", "pump.wav", "--to", "velocity"], "--to"),
+        (&["read", "pump.wav", "--json", "--csv"], "--csv"),
+        (&["read", "pump.wav", "--segment", "9"], "START..END"),
+        (&["read", "pump.wav", "--segment", "3..2"], "END after START"),
+        (&["read", "pump.wav", "--segment", "0..9"], "8 s or 32768n"),
+        (&["read", "pump.wav", "--segment", "0n..4n"], "mark at least 8"),
+        (&["read", "pump.wav", "--channel", "0"], "give 1 to 2"),
+        (&["read", "pump.wav", "--channel", "3"], "give 1 to 2"),
+        (&["read", "pump.wav", "--channel", "x"], "--channel"),
+        (&["read", "pump.wav", "--windows", "hann,nosuch"], "nosuch"),
+        (&["read", "pump.wav", "--windows", ""], "--windows"),
+        (&["read", "pump.wav", "--quantity", "loudness"], "sound-pressure"),
+        (&["read", "pump.wav", "--quantity", "velocity", "--unit", "Pa", "--factor", "1"], "unit 'Pa'"),
+        (&["read", "pump.wav", "--unit", "g"], "needs a factor"),
+        (&["read", "pump.wav", "--factor", "2"], "--unit"),
+        (&["read", "pump.wav", "--unit", "g", "--factor", "0"], "above 0"),
+        (&["read", "pump.wav", "--unit", "g", "--factor", "-5"], "above 0"),
+        (&["read", "pump.wav", "--unit", "g", "--factor", "NaN"], "above 0"),
+        (&["read", "pump.wav", "--sensitivity", "0.01"], "--full-scale-volts"),
+        (&["read", "pump.wav", "--detector", "loud"], "peak-to-peak"),
+        (&["read", "pump.wav", "--rate", "0"], "above 0"),
+        (&["read", "pump.wav", "--remove", "all"], "none, mean, line"),
+        (&["read", "pump.wav", "--tone", "5000"], "below half the sample rate"),
+        (&["read", "pump.wav", "--tone", "50,kept"], "HZ,held"),
+        (&["read", "pump.wav", "--max-tones", "0"], "--max-tones"),
+        (&["read", "pump.wav", "--false-alarm", "1"], "--false-alarm"),
+        (&["read", "pump.wav", "--save", "pump.wav"], ".session.ron"),
+        (&["read", "pump.wav", "--save", "nowhere/pump.session.ron"], "nowhere"),
+    ] {
+        let said = shop.run(arguments).refused();
+        assert!(said.contains(part), "{arguments:?}: {said}");
+    }
+}
+
+#[test]
+fn bad_input_is_told_in_one_line_that_names_it() {
+    let shop = Shop::new();
+    fs::write(shop.path("empty.wav"), "").unwrap();
+    fs::write(shop.path("garbage.wav"), vec![0x5a; 5000]).unwrap();
+    fs::create_dir(shop.path("folder.wav")).unwrap();
+    fs::create_dir(shop.path("folder.session.ron")).unwrap();
+    fs::write(shop.path("garbage.session.ron"), "Session(format: 1, program: 3)").unwrap();
+    fs::write(shop.path("newer.session.ron"), "Session(format: 2, what: [(1, 2)])").unwrap();
+    for name in ["missing", "empty", "garbage", "folder"] {
+        let said = shop.run(&["read", &format!("{name}.wav")]).refused();
+        assert!(said.contains(&format!("{name}.wav")), "{said}");
+    }
+    for command in ["read", "recheck"] {
+        for name in ["missing", "garbage", "folder", "newer"] {
+            let said = shop.run(&[command, &format!("{name}.session.ron")]).refused();
+            assert!(said.contains(&format!("{name}.session.ron")), "{said}");
+        }
+    }
+    let said = shop.run(&["read", "newer.session.ron"]).refused();
+    assert!(said.contains("was written by a newer Panewise (format 2; this one reads 1)"), "{said}");
+    let said = shop.run(&["read", "garbage.session.ron"]).refused();
+    assert!(said.contains("line:column 1:"), "{said}");
+}
+
+#[test]
+fn a_reader_that_stops_reading_is_no_failure() {
+    let shop = Shop::new();
+    let mut child = shop.command(&["windows", "--json"]).stdout(Stdio::piped()).stderr(Stdio::piped()).spawn().unwrap();
+    drop(child.stdout.take());
+    let ran = Ran::of(child.wait_with_output().unwrap());
+    assert_eq!((ran.status, ran.err.as_str()), (0, ""));
+}
+
+#[cfg(target_os = "linux")]
+#[test]
+fn a_full_disk_is_a_failure() {
+    let shop = Shop::new();
+    let full = fs::File::options().write(true).open("/dev/full").unwrap();
+    let output = shop.command(&["windows"]).stdout(full).output().unwrap();
+    let said = Ran::of(output).refused();
+    assert!(said.contains("could not be written"), "{said}");
+}
