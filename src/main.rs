@@ -6,7 +6,7 @@ use std::process::ExitCode;
 use panewise::cli::{self, Outcome, Streams};
 
 fn main() -> ExitCode {
-    let (mut out, mut err) = (stdout().lock(), stderr());
+    let (mut out, mut err) = (stdout(), stderr());
     let mut streams = Streams { out: &mut out, err: &mut err };
     let status = match cli::run(std::env::args_os(), &mut streams) {
         Outcome::Done(status) => status,
