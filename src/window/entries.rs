@@ -46,7 +46,7 @@ pub(super) const CATALOGUE: &[Entry] = &[
         "triangular",
         &[],
         shape::triangular,
-        "Plain taper met in older work; side lobes never change sign, but Hann does better at like width",
+        "Plain taper met in older work, whose transform is never negative; Hann does better at little more width",
         HARRIS,
     ),
     formula(
@@ -79,7 +79,7 @@ pub(super) const CATALOGUE: &[Entry] = &[
     cosine_sum(
         "cosine-fourth",
         &[0.375, 0.5, 0.125],
-        "Far weak tones under strong ones: side lobes fall by 30 dB an octave; a third wider than Hann",
+        "Far weak tones under strong ones: side lobes fall by 30 dB an octave; over a quarter wider than Hann",
         HARRIS,
     ),
     cosine_sum(

@@ -7,26 +7,16 @@ use realfft::RealFftPlanner;
 use realfft::num_complex::Complex64;
 
 use super::angle::{Position, cis_turns};
-use super::bessel::i0_scaled;
+use super::taps::{BEFORE, N_TAPS, taps, transform_of_taps};
 
 /// Up to this many samples every value is a plain sum.
 const PLAIN_UP_TO: usize = 64;
-
-/// Table entries that make one value, and half of them.
-const WIDTH: f64 = 16.0;
-const HALF_WIDTH: f64 = WIDTH / 2.0;
-
-/// The interpolating function's shape, π·width·(1 - 1/4): best for a table of two entries a bin.
-const BETA: f64 = PI * WIDTH * 0.75;
 
 /// The transform of N samples that are symmetric, sample 0 apart or not.
 ///
 /// About the middle the transform is real, R(ν), and R is limited in band because the segment is limited in time. So a
 /// table at half bins of the samples, each divided by the interpolating function's own transform, gives R anywhere
-/// from the 16 nearest entries, to about 1e-14 of Σ|w|. The interpolating function is the Kaiser-Bessel one.
-///
-/// # Reference
-/// J. I. Jackson et al., IEEE Trans. Medical Imaging 10 (1991) 473-478 (gridding with the Kaiser-Bessel function).
+/// from the 16 nearest entries, to about 1e-14 of Σ|w|.
 #[derive(Debug)]
 pub(super) struct Gridded {
     samples: Vec<f64>,
@@ -73,9 +63,14 @@ impl Gridded {
             return self.plain(bins);
         }
         let place = 2.0 * bins.abs();
-        let first = (place - HALF_WIDTH).ceil() as i64;
-        let last = (place + HALF_WIDTH).floor() as i64;
-        (first..=last).map(|m| self.entry(table, m) * interpolant((place - m as f64) / HALF_WIDTH)).sum()
+        let before = place.floor();
+        let weights = taps(place - before);
+        let first = before as i64 - i64::from(BEFORE);
+        let inside = usize::try_from(first).ok().and_then(|first| table.get(first..first + N_TAPS));
+        match inside {
+            Some(entries) => entries.iter().zip(weights).map(|(entry, weight)| entry * weight).sum(),
+            None => (first..).zip(weights).map(|(m, weight)| self.entry(table, m) * weight).sum(),
+        }
     }
 
     /// The table continued beyond 0 and N, where R is even and repeats with a sign.
@@ -106,18 +101,6 @@ impl Gridded {
     /// The interpolant's transform at sample `i`, whose distance from the middle is its frequency along the table.
     fn weight(&self, i: usize) -> f64 {
         let n = self.samples.len();
-        let distance = (2 * i).abs_diff(self.twice_middle) as f64 / (4 * n) as f64;
-        let root = (BETA * BETA - (PI * WIDTH * distance).powi(2)).sqrt();
-        0.5 * WIDTH * ((root - BETA).exp() - (-root - BETA).exp()) / root
+        transform_of_taps((2 * i).abs_diff(self.twice_middle) as f64 / (4 * n) as f64)
     }
-}
-
-/// e^{-β}·I_0(β√(1-x²)).
-fn interpolant(x: f64) -> f64 {
-    let square = (1.0 - x) * (1.0 + x);
-    if square <= 0.0 {
-        return (-BETA).exp();
-    }
-    let argument = BETA * square.sqrt();
-    (argument - BETA).exp() * i0_scaled(argument)
 }

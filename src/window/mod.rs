@@ -18,6 +18,7 @@ mod lobes;
 mod merit;
 mod overlap;
 mod shape;
+mod taps;
 #[cfg(test)]
 mod tests;
 mod text;

@@ -1,0 +1,103 @@
+//! Interpolation of a function limited in band from samples taken twice as densely as it needs.
+//!
+//! The interpolating function is the Kaiser-Bessel one, φ(u) = I_0(β√(1-(u/8)²))/I_0(β), |u| <= 8: sixteen samples make
+//! a value. If the samples are those of the function divided by φ's own transform along the other axis, the error is
+//! about 1e-14 of the largest value that the samples could add up to.
+//!
+//! # Reference
+//! J. I. Jackson et al., IEEE Trans. Medical Imaging 10 (1991) 473-478 (gridding with the Kaiser-Bessel function).
+
+use std::f64::consts::PI;
+use std::sync::LazyLock;
+
+use super::bessel::i0_scaled;
+
+/// How many samples make a value.
+pub(crate) const N_TAPS: usize = 16;
+
+/// The sample before the place is number 7 of the sixteen, counted from 0.
+pub(crate) const BEFORE: u8 = 7;
+
+const WIDTH: f64 = N_TAPS as f64;
+
+/// Best for samples twice as dense as needed: π·width·(1 - 1/4).
+const BETA: f64 = PI * WIDTH * 0.75;
+
+/// Terms of the Chebyshev series of φ over one step between samples; the last are below 1e-17.
+const N_TERMS: usize = 24;
+
+/// The weights of the sixteen samples around a place that lies `part` (0 to 1) of a step past sample [`BEFORE`].
+pub(crate) fn taps(part: f64) -> [f64; N_TAPS] {
+    static SERIES: LazyLock<[[f64; N_TAPS]; N_TERMS]> = LazyLock::new(series);
+    let twice = 4.0 * part - 2.0;
+    let (mut next, mut after) = ([0.0; N_TAPS], [0.0; N_TAPS]);
+    let [constant, others @ ..] = &*SERIES;
+    // Clenshaw's recurrence, all taps side by side.
+    for terms in others.iter().rev() {
+        for ((next, after), term) in next.iter_mut().zip(&mut after).zip(terms) {
+            (*next, *after) = (twice * *next - *after + term, *next);
+        }
+    }
+    let mut weights = *constant;
+    for ((weight, next), after) in weights.iter_mut().zip(next).zip(after) {
+        *weight += 0.5 * twice * next - after;
+    }
+    weights
+}
+
+/// φ's transform ∫ φ(u) cos(2πut) du at `cycles_per_step` t, |t| <= 1/4: what samples are divided by beforehand.
+pub(crate) fn transform_of_taps(cycles_per_step: f64) -> f64 {
+    let root = (BETA * BETA - (PI * WIDTH * cycles_per_step).powi(2)).sqrt();
+    0.5 * WIDTH * ((root - BETA).exp() - (-root - BETA).exp()) / (root * i0_scaled(BETA))
+}
+
+fn series() -> [[f64; N_TAPS]; N_TERMS] {
+    let angle = |node: usize| PI * (node as f64 + 0.5) / N_TERMS as f64;
+    let value = |tap: usize, node: usize| {
+        let part = 0.5 * (angle(node).cos() + 1.0);
+        interpolant(part + f64::from(BEFORE) - tap as f64)
+    };
+    std::array::from_fn(|order| {
+        let norm = if order == 0 { 1.0 } else { 2.0 } / N_TERMS as f64;
+        std::array::from_fn(|tap| {
+            let term = |node: usize| value(tap, node) * (order as f64 * angle(node)).cos();
+            norm * (0..N_TERMS).map(term).sum::<f64>()
+        })
+    })
+}
+
+/// φ(u).
+fn interpolant(u: f64) -> f64 {
+    let x = 2.0 * u / WIDTH;
+    let root = ((1.0 - x) * (1.0 + x)).max(0.0).sqrt();
+    (BETA * (root - 1.0)).exp() * i0_scaled(BETA * root) / i0_scaled(BETA)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_series_is_the_function() {
+        for step in 0..=100 {
+            let part = f64::from(step) / 100.0;
+            for (tap, weight) in taps(part).into_iter().enumerate() {
+                let exact = interpolant(part + 7.0 - tap as f64);
+                assert!((weight - exact).abs() < 1e-14, "{part} {tap}: {weight} {exact}");
+            }
+        }
+    }
+
+    #[test]
+    fn a_cosine_below_the_limit_is_interpolated() {
+        for cycles in [0.0, 0.1, 0.2, 0.25] {
+            let wave = |u: f64| (2.0 * PI * cycles * u).cos();
+            for step in 0..20 {
+                let part = f64::from(step) / 20.0;
+                let sum: f64 = taps(part).into_iter().enumerate().map(|(tap, weight)| weight * wave(tap as f64)).sum();
+                let value = sum / transform_of_taps(cycles);
+                assert!((value - wave(7.0 + part)).abs() < 1e-13, "{cycles} {part}: {:e}", value - wave(7.0 + part));
+            }
+        }
+    }
+}
