@@ -1,6 +1,6 @@
 //! The figures of a Reading that a session keeps.
 
-use super::Reading;
+use super::{PaneFacts, Reading};
 use crate::session::{Figures, PaneFigures, ToneFigures};
 use crate::signal::Span;
 
@@ -21,7 +21,7 @@ pub fn figures_of(reading: &Reading) -> Figures {
         segment: Span { start: reading.segment.start_sample, samples: reading.segment.samples },
         sample_rate_hz: reading.capture.sample_rate_hz,
         reference: reading.scale.reference_label.clone(),
-        windows: reading.panes.iter().map(|pane| pane.written()).collect(),
+        windows: reading.panes.iter().map(PaneFacts::written).collect(),
         tones: tones.collect(),
     }
 }

@@ -5,6 +5,7 @@
 
 mod command_line;
 mod layering;
+mod readme;
 mod recheck;
 mod session_file;
 mod shop;
