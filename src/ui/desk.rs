@@ -1,0 +1,201 @@
+//! What lies on the desk: the open capture, the document about it, and its newest figures.
+
+use std::path::{Path, PathBuf};
+use std::sync::Arc;
+
+use super::worker::Latest;
+use crate::capture::{Capture, Overview};
+use crate::reading::{Reading, Request};
+use crate::session::{CaptureRef, History, NamedSegment, Session};
+use crate::signal::{Span, Watch};
+
+/// The open capture and all that belongs to it.
+#[derive(Debug)]
+pub(super) struct Desk {
+    /// Which opening this is; what comes from an earlier one is dropped.
+    pub(super) number: u64,
+    /// The document.
+    pub(super) session: Session,
+    /// Its steps.
+    pub(super) history: History,
+    /// The samples.
+    pub(super) capture: Arc<Capture>,
+    /// The whole of it, small; made in the background.
+    pub(super) overview: Option<Arc<Overview>>,
+    /// The stretch that is suggested.
+    pub(super) suggestion: Option<Span>,
+    /// The file the session is kept in.
+    pub(super) file: Option<PathBuf>,
+    /// The document as it was last saved, or as it was when the capture was opened.
+    saved: Session,
+    /// The figures.
+    pub(super) latest: Latest,
+    /// Calls off what is still being made of this capture.
+    pub(super) watch: Watch,
+}
+
+/// What the session says of a capture just opened.
+pub(super) fn capture_ref(capture: &Capture) -> CaptureRef {
+    CaptureRef {
+        path: capture.path.to_string_lossy().into_owned(),
+        blake3: String::new(),
+        sample_rate_hz: capture.source.sample_rate_hz(),
+        channels: capture.source.n_channels(),
+        frames: capture.source.n_frames(),
+        format: capture.format.clone(),
+    }
+}
+
+impl Desk {
+    /// A desk with a capture fresh from its file.
+    pub(super) fn fresh(number: u64, capture: Arc<Capture>) -> Self {
+        let session = Session::new(capture_ref(&capture));
+        Self::with_session(number, capture, session, None)
+    }
+
+    /// A desk with a session and the capture it is about.
+    pub(super) fn with_session(number: u64, capture: Arc<Capture>, session: Session, file: Option<PathBuf>) -> Self {
+        Self {
+            number,
+            saved: session.clone(),
+            session,
+            history: History::new(),
+            capture,
+            overview: None,
+            suggestion: None,
+            file,
+            latest: Latest::default(),
+            watch: Watch::new(),
+        }
+    }
+
+    /// Takes the document as saved.
+    pub(super) fn mark_saved(&mut self, session: Session) {
+        self.saved = session;
+    }
+
+    /// Takes the document as never saved, such as one that was recovered.
+    pub(super) fn mark_unsaved(&mut self) {
+        self.saved.panes.clear();
+    }
+
+    /// Whether there is something that saving would keep. What the axes show and what is picked goes with a saved
+    /// session but is nothing anybody would want to be asked about.
+    pub(super) fn is_unsaved(&self) -> bool {
+        !same_work(&self.session, &self.saved)
+    }
+
+    /// Whether the user has marked a segment already.
+    pub(super) fn is_unmarked(&self) -> bool {
+        let whole = Span { start: 0, samples: self.session.capture.frames };
+        self.file.is_none() && self.session.segments.len() == 1 && self.session.segments.iter().all(|s| s.span == whole)
+    }
+
+    /// Puts the suggested stretch in the place of the whole capture; not a step anybody took, so none to undo.
+    pub(super) fn start_from(&mut self, span: Span) {
+        let was_saved = !self.is_unsaved();
+        if let Some(segment) = self.session.segments.first_mut() {
+            segment.span = span;
+            "steady run".clone_into(&mut segment.name);
+        }
+        if was_saved {
+            self.saved = self.session.clone();
+        }
+    }
+
+    /// What the document asks for.
+    pub(super) fn request(&self) -> Request {
+        Request::from_session(&self.session)
+    }
+
+    /// The segment read.
+    pub(super) fn segment(&self) -> Option<&NamedSegment> {
+        self.session.current_segment()
+    }
+
+    /// The newest Reading, whether or not it is the one asked for.
+    pub(super) fn reading(&self) -> Option<&Arc<Reading>> {
+        self.latest.reading.as_ref().map(|r| &r.2)
+    }
+
+    /// 1/T of the segment read.
+    pub(super) fn line_spacing_hz(&self) -> f64 {
+        let samples = self.segment().map_or(1, |s| s.span.samples.max(1));
+        self.session.sample_rate_hz() / samples as f64
+    }
+
+    /// The capture's file name.
+    pub(super) fn name(&self) -> String {
+        file_name(&self.capture.path)
+    }
+}
+
+impl Drop for Desk {
+    fn drop(&mut self) {
+        self.watch.cancel();
+    }
+}
+
+/// The last part of a path, as text.
+pub(super) fn file_name(path: &Path) -> String {
+    path.file_name().map_or_else(|| path.to_string_lossy().into_owned(), |n| n.to_string_lossy().into_owned())
+}
+
+fn same_work(a: &Session, b: &Session) -> bool {
+    let plain = |s: &Session| {
+        let mut s = s.clone();
+        s.capture.blake3.clear();
+        s.picked_hz = None;
+        s.axes = crate::session::ViewAxes::default();
+        s
+    };
+    plain(a) == plain(b)
+}
+
+/// Makes a session fit a capture that is not the one it was saved with: spans end where it ends, the channel is one
+/// it has.
+pub(super) fn adopt(session: &mut Session, capture: &Capture, blake3: String) {
+    let facts = CaptureRef { blake3, ..capture_ref(capture) };
+    for segment in &mut session.segments {
+        let clipped = segment.span.clipped_to(facts.frames);
+        segment.span = if clipped.samples == 0 { Span { start: 0, samples: facts.frames } } else { clipped };
+    }
+    session.channel = session.channel.min(facts.channels.saturating_sub(1));
+    session.scales.resize_with(facts.channels, crate::units::Scale::default);
+    session.capture = facts;
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::signal::Stored;
+
+    fn capture(frames: usize, channels: usize) -> Capture {
+        Capture {
+            path: PathBuf::from("pump.wav"),
+            format: "test".to_owned(),
+            source: Arc::new(Stored::new(100.0, channels, vec![0.0; frames * channels])),
+            doubts: Vec::new(),
+        }
+    }
+
+    #[test]
+    fn a_pick_is_not_unsaved_work_but_a_name_is() {
+        let mut desk = Desk::fresh(1, Arc::new(capture(50, 1)));
+        assert!(!desk.is_unsaved() && desk.is_unmarked());
+        desk.session.picked_hz = Some(3.0);
+        assert!(!desk.is_unsaved());
+        desk.session.segments[0].name = "run".to_owned();
+        assert!(desk.is_unsaved());
+    }
+
+    #[test]
+    fn a_shorter_capture_takes_the_session_over() {
+        let mut session = Session::new(capture_ref(&capture(100, 2)));
+        session.channel = 1;
+        session.segments[0].span = Span { start: 80, samples: 20 };
+        adopt(&mut session, &capture(50, 1), "ab".to_owned());
+        assert_eq!(session.segments[0].span, Span { start: 0, samples: 50 });
+        assert_eq!((session.channel, session.scales.len(), session.capture.frames), (0, 1, 50));
+    }
+}

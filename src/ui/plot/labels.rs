@@ -1,0 +1,66 @@
+//! Labels that keep clear of each other.
+
+use eframe::egui::{Pos2, Rect, Vec2, pos2};
+
+/// How far a label stands from the mark it belongs to.
+const AWAY: f32 = 6.0;
+
+/// Finds a place for each label, the first served first: beside its mark, inside `area`, clear of the labels placed
+/// before it, of all marks and of `taken`. `None` where there is no such place.
+pub(crate) fn place(area: Rect, marks: &[(Pos2, Vec2)], taken: &[Rect]) -> Vec<Option<Rect>> {
+    let mut busy: Vec<Rect> = taken.to_vec();
+    let spots: Vec<Rect> = marks.iter().map(|m| Rect::from_center_size(m.0, Vec2::splat(7.0))).collect();
+    let mut placed = Vec::with_capacity(marks.len());
+    for (i, &(mark, size)) in marks.iter().enumerate() {
+        let found = candidates(mark, size).into_iter().find(|rect| {
+            area.contains_rect(*rect)
+                && !busy.iter().any(|b| b.intersects(rect.expand(1.0)))
+                && !spots.iter().enumerate().any(|(j, s)| j != i && s.intersects(*rect))
+        });
+        busy.extend(found);
+        placed.push(found);
+    }
+    placed
+}
+
+/// Places beside a mark, best first.
+fn candidates(mark: Pos2, size: Vec2) -> [Rect; 6] {
+    let (w, h) = (size.x, size.y);
+    [
+        pos2(mark.x + AWAY, mark.y - h / 2.0),
+        pos2(mark.x - AWAY - w, mark.y - h / 2.0),
+        pos2(mark.x + AWAY - 2.0, mark.y - h - 3.0),
+        pos2(mark.x - AWAY + 2.0 - w, mark.y - h - 3.0),
+        pos2(mark.x - w / 2.0, mark.y - h - AWAY),
+        pos2(mark.x + AWAY, mark.y + 3.0),
+    ]
+    .map(|min| Rect::from_min_size(min, size))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use eframe::egui::vec2;
+
+    #[test]
+    fn labels_never_overlap_and_stay_inside() {
+        let area = Rect::from_min_max(pos2(0.0, 0.0), pos2(300.0, 120.0));
+        let marks: Vec<_> =
+            (0..60).map(|i| (pos2((i * 37 % 300) as f32, (i * 23 % 120) as f32), vec2(90.0, 12.0))).collect();
+        let placed: Vec<Rect> = place(area, &marks, &[]).into_iter().flatten().collect();
+        assert!(placed.len() >= 2 && placed.len() < marks.len(), "{}", placed.len());
+        for (i, a) in placed.iter().enumerate() {
+            assert!(area.contains_rect(*a));
+            assert!(placed.iter().skip(i + 1).all(|b| !a.intersects(*b)));
+        }
+    }
+
+    #[test]
+    fn the_first_is_served_first() {
+        let area = Rect::from_min_max(pos2(0.0, 0.0), pos2(110.0, 14.0));
+        let marks = [(pos2(5.0, 7.0), vec2(90.0, 12.0)), (pos2(8.0, 7.0), vec2(90.0, 12.0))];
+        let placed = place(area, &marks[..1], &[]);
+        assert!(placed[0].is_some());
+        assert!(place(area, &marks, &[])[1].is_none());
+    }
+}

@@ -1,0 +1,9 @@
+//! What a plot is made of: axes, ticks, curves, labels that keep clear of each other.
+
+mod axis;
+mod curve;
+mod labels;
+
+pub(super) use axis::{Axis, Tick};
+pub(super) use curve::{CurveCache, Trace, draw_trace};
+pub(super) use labels::place;
