@@ -4,7 +4,8 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 use super::worker::Latest;
-use crate::capture::{Capture, Overview};
+use super::overview::Overview;
+use crate::capture::Capture;
 use crate::reading::{Reading, Request};
 use crate::session::{CaptureRef, History, NamedSegment, Session};
 use crate::signal::{Span, Watch};

@@ -1,0 +1,71 @@
+//! The window: a thin shell around the [`Workbench`].
+
+use std::path::PathBuf;
+
+use eframe::egui;
+
+use super::{Services, Workbench};
+
+/// Why there is no window.
+#[derive(Debug, thiserror::Error)]
+#[non_exhaustive]
+pub enum RunError {
+    /// There is no display, or no OpenGL on it.
+    #[error("no window can be opened here ({reason}): 'panewise read CAPTURE' does the main job without one")]
+    NoWindow {
+        /// What the system said, in one line.
+        reason: String,
+    },
+}
+
+/// Opens the window, with a capture or a session on it if one is named, and returns when it is closed.
+///
+/// # Errors
+/// [`RunError::NoWindow`] where there is no display or no OpenGL.
+pub fn run(start: Option<PathBuf>) -> Result<(), RunError> {
+    let viewport = egui::ViewportBuilder::default()
+        .with_title("Panewise")
+        .with_app_id("panewise")
+        .with_inner_size([1280.0, 800.0])
+        .with_min_inner_size([800.0, 560.0])
+        .with_drag_and_drop(true);
+    let viewport = match eframe::icon_data::from_png_bytes(include_bytes!("../../assets/icon.png")) {
+        Ok(icon) => viewport.with_icon(icon),
+        Err(_) => viewport,
+    };
+    let options = eframe::NativeOptions { viewport, ..Default::default() };
+    let made = eframe::run_native("panewise", options, Box::new(move |cc| Ok(Box::new(App::new(&cc.egui_ctx, start)))));
+    made.map_err(|error| {
+        let reason = error.to_string().lines().next().unwrap_or("no reason given").to_owned();
+        RunError::NoWindow { reason }
+    })
+}
+
+struct App {
+    bench: Workbench,
+}
+
+impl App {
+    fn new(ctx: &egui::Context, start: Option<PathBuf>) -> Self {
+        Workbench::dress(ctx);
+        let mut bench = Workbench::new(Services::desktop());
+        if let Some(path) = start {
+            bench.open(&path);
+        }
+        Self { bench }
+    }
+}
+
+impl eframe::App for App {
+    fn logic(&mut self, ctx: &egui::Context, _: &mut eframe::Frame) {
+        self.bench.logic(ctx);
+    }
+
+    fn ui(&mut self, ui: &mut egui::Ui, _: &mut eframe::Frame) {
+        self.bench.ui(ui);
+    }
+
+    fn on_exit(&mut self, _: Option<&eframe::glow::Context>) {
+        self.bench.finish();
+    }
+}

@@ -1,0 +1,83 @@
+//! The card beside the table: the ledger of one cell, step by step, and what else is known of the tone.
+
+use eframe::egui::{self, Align, Layout, RichText, ScrollArea, Ui};
+
+use super::desk::Desk;
+use super::table::picked_row;
+use super::view::View;
+use super::{figure, theme, widget};
+use crate::reading::{PaneReading, Reading, ReadingState, Tone};
+
+/// Width of the card.
+pub(super) const WIDTH: f32 = 276.0;
+
+/// The tone and the pane whose ledger is shown: the cell chosen, else the sharpest pane that reads the picked tone
+/// clear of everything.
+pub(super) fn chosen<'a>(reading: &'a Reading, desk: &Desk, view: &View) -> Option<(&'a Tone, usize)> {
+    let tone = reading.tones.get(picked_row(reading, desk)?)?;
+    let sharpest = || {
+        let clear = |i: &usize| tone.readings.get(*i).is_some_and(|r| r.state == ReadingState::Clear);
+        let width = |i: &usize| reading.panes.get(*i).map_or(f64::INFINITY, |p| p.enbw_bins);
+        (0..tone.readings.len()).filter(clear).min_by(|a, b| width(a).total_cmp(&width(b)))
+    };
+    let pane = view.card_pane.filter(|p| *p < tone.readings.len()).or_else(sharpest).unwrap_or(0);
+    (!tone.readings.is_empty()).then_some((tone, pane))
+}
+
+/// Shows the card.
+pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &View, reading: &Reading) {
+    let Some((tone, pane)) = chosen(reading, desk, view) else { return };
+    let Some(cell) = tone.readings.get(pane) else { return };
+    if !desk.latest.is_current() {
+        ui.multiply_opacity(0.55);
+    }
+    ScrollArea::vertical().id_salt("card").auto_shrink(false).show(ui, |ui| {
+        let spacing = desk.line_spacing_hz();
+        let head = theme::heavy(ui.ctx(), theme::BODY);
+        let title = format!("{} Hz in {}", figure::hertz(tone.frequency_hz, spacing), cell.window);
+        ui.label(RichText::new(title).font(head));
+        state(ui, cell, spacing);
+        ui.add_space(4.0);
+        ledger(ui, cell, &reading.scale.reference_label);
+    });
+}
+
+fn state(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
+    let why = match cell.state {
+        ReadingState::Clear => "clear: nothing stands in the way",
+        ReadingState::Crowded => "crowded: another tone stands inside this window's main lobe",
+        ReadingState::UnderSkirt => "under-skirt: leakage of other tones moves this level",
+        ReadingState::BelowFloor => "below-floor: this pane's floor covers the tone",
+    };
+    widget::quiet(ui, why);
+    let peak = figure::hertz(cell.peak_hz, spacing);
+    let borrowed = if cell.borrowed { ", borrowed from a sharper pane" } else { "" };
+    widget::quiet(ui, format!("peak at {peak} Hz{borrowed}"));
+    if let Some(u) = cell.u_db {
+        widget::quiet(ui, format!("noise alone moves it by {} dB (one standard uncertainty)", figure::significant(u, 2)));
+    }
+}
+
+/// The steps in decibels, and their sum.
+fn ledger(ui: &mut Ui, cell: &PaneReading, reference: &str) {
+    let palette = theme::palette(ui.ctx());
+    for step in &cell.ledger {
+        line(ui, step.step, &figure::fixed(step.db, 3), palette.ink, false);
+    }
+    let (rect, _) = ui.allocate_exact_size(egui::vec2(ui.available_width(), 5.0), egui::Sense::hover());
+    ui.painter().hline(rect.x_range(), rect.center().y, egui::Stroke::new(1.0, palette.rule));
+    let sum: f64 = cell.ledger.iter().map(|s| s.db).sum();
+    line(ui, "level", &format!("{} dB", figure::fixed(sum, 3)), palette.ink, true);
+    widget::quiet(ui, reference);
+}
+
+fn line(ui: &mut Ui, name: &str, value: &str, ink: egui::Color32, strong: bool) {
+    let font = if strong { theme::heavy(ui.ctx(), theme::BODY) } else { theme::body() };
+    ui.horizontal(|ui| {
+        ui.label(RichText::new(name).font(font.clone()).color(ink));
+        ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
+            ui.add_space(8.0);
+            ui.label(RichText::new(value).font(font).color(ink));
+        });
+    });
+}

@@ -1,0 +1,300 @@
+//! One pane: its head, its curve, its marks, its part of the shared axes and hairline.
+
+use std::sync::Arc;
+
+use eframe::egui::{
+    self, Align2, EventFilter, Key, Modifiers, Painter, PointerButton, Rect, Response, Role, Sense, Shape, Stroke, Ui,
+    UiBuilder, WidgetInfo, pos2, vec2,
+};
+
+use super::desk::Desk;
+use super::panes::Shared;
+use super::plot::{Axis, Trace, draw_trace, place};
+use super::theme::{self, Palette};
+use super::view::{Intent, Intents, View, held_range};
+use super::{figure, pane_head, widget};
+use crate::reading::{PaneReading, Reading, ReadingState, Tone};
+use crate::session::{Command, Pane, ViewAxes};
+use crate::spectrum::Spectra;
+
+/// Room for level labels.
+const LEFT: f32 = 40.0;
+/// Room for frequency labels.
+const BOTTOM: f32 = 18.0;
+/// How near a mark takes a click, in points.
+const NEAR: f32 = 12.0;
+
+/// Shows pane `index` of the session in `rect`.
+pub(super) fn show(
+    ui: &mut Ui,
+    rect: Rect,
+    index: usize,
+    desk: &Desk,
+    view: &mut View,
+    shared: &Shared,
+    intents: &mut Intents,
+) {
+    let Some(pane) = desk.session.panes.get(index) else { return };
+    let palette = theme::palette(ui.ctx());
+    ui.painter().rect(rect, 4.0, palette.card, Stroke::new(1.0, palette.rule), egui::StrokeKind::Inside);
+    let inner = rect.shrink2(vec2(8.0, 6.0));
+    let head = Rect::from_min_size(inner.min, vec2(inner.width(), pane_head::HEIGHT));
+    let area = Rect::from_min_max(
+        pos2(inner.left() + LEFT, head.bottom() + 6.0),
+        pos2(inner.right() - 2.0, inner.bottom() - BOTTOM),
+    );
+    let spectra = desk.latest.curves.as_ref().map(|c| &c.2).filter(|s| index < s.windows().len());
+    let mut head_ui = ui.new_child(UiBuilder::new().max_rect(head).id_salt(("pane head", pane.id)));
+    pane_head::show(&mut head_ui, index, pane, desk, view, shared, intents);
+    let plot = Plot {
+        index,
+        pane,
+        area,
+        frequency: shared.frequency_axis(area.left(), area.right()),
+        level: Axis::linear(shared.level.0, shared.level.1, area.bottom(), area.top()),
+        shared,
+        palette,
+    };
+    let response = ui.interact(area, egui::Id::unique(("pane plot", pane.id)), Sense::click_and_drag());
+    plot.describe(&response, desk, view);
+    plot.steer(ui, &response, desk, view, intents);
+    plot.draw(ui, spectra, desk, view);
+    if response.has_focus() {
+        let ring = Stroke::new(1.5, palette.accent);
+        ui.painter().rect_stroke(rect, 4.0, ring, egui::StrokeKind::Inside);
+    }
+}
+
+/// One pane's plot in a frame.
+struct Plot<'a> {
+    index: usize,
+    pane: &'a Pane,
+    area: Rect,
+    frequency: Axis,
+    level: Axis,
+    shared: &'a Shared,
+    palette: &'static Palette,
+}
+
+impl Plot<'_> {
+    /// What the plot shows, in words.
+    fn describe(&self, response: &Response, desk: &Desk, view: &View) {
+        let (lo, hi) = (self.frequency.lo, self.frequency.hi);
+        let spacing = self.shared.spacing_hz;
+        let hairline = view.hairline_hz.map_or(String::new(), |hz| format!(", hairline at {} Hz", figure::hertz(hz, spacing)));
+        let n_clear = desk.reading().map_or(0, |r| {
+            r.tones.iter().filter(|t| t.readings.get(self.index).is_some_and(|x| x.state == ReadingState::Clear)).count()
+        });
+        let text = format!(
+            "Spectrum {}, {}: {} to {} Hz, {} tones clear{hairline}",
+            self.index + 1,
+            self.pane.window,
+            figure::hertz(lo, spacing),
+            figure::hertz(hi, spacing),
+            n_clear,
+        );
+        response.widget_info(|| WidgetInfo::labeled(Role::Figure, true, &text));
+    }
+
+    fn draw(&self, ui: &Ui, spectra: Option<&Arc<Spectra>>, desk: &Desk, view: &mut View) {
+        let whole = ui.painter().clone();
+        self.draw_grid(&whole, desk);
+        let painter = whole.with_clip_rect(self.area.intersect(whole.clip_rect()));
+        let (hue, dashed) = theme::pane_hue(self.palette, self.pane.id);
+        if let Some(reading) = desk.reading() {
+            self.draw_floor(&painter, reading);
+        }
+        if let Some(spectra) = spectra {
+            let ppp = ui.ctx().pixels_per_point();
+            let n = ((self.area.width() * ppp).round().max(1.0) as usize).min(4096);
+            let columns = view.curves.columns(spectra, self.index, &self.frequency, n);
+            let trace = Trace { colour: hue, dashed, offset: self.shared.offset_db };
+            draw_trace(&painter, &columns, (self.area.left(), self.area.width() / n as f32), &self.level, trace);
+        }
+        self.draw_hairline(&painter, spectra, view);
+        if let Some(reading) = desk.reading() {
+            self.draw_marks(&painter, reading, desk);
+        }
+    }
+
+    fn draw_grid(&self, painter: &Painter, desk: &Desk) {
+        let rule = Stroke::new(1.0, self.palette.rule.gamma_multiply(0.7));
+        let area = self.area;
+        for tick in self.level.ticks(26.0) {
+            let y = painter.round_to_pixel_center(self.level.at(tick.value));
+            painter.hline(area.x_range(), y, rule);
+            let text = tick.label.unwrap_or_default();
+            let at = pos2(area.left() - 5.0, y);
+            widget::write(painter, at, Align2::RIGHT_CENTER, &text, theme::quiet(), self.palette.quiet);
+        }
+        let unit = "Hz";
+        let unit_width = widget::text_size(painter, unit, theme::quiet()).x + 8.0;
+        let mut free_from = area.left() - LEFT;
+        for tick in self.frequency.ticks(62.0) {
+            let x = painter.round_to_pixel_center(self.frequency.at(tick.value));
+            painter.vline(x, area.y_range(), rule);
+            let Some(text) = tick.label else { continue };
+            let half = 0.5 * widget::text_size(painter, &text, theme::quiet()).x;
+            if x - half > free_from && x + half < area.right() - unit_width {
+                let at = pos2(x, area.bottom() + 3.0);
+                widget::write(painter, at, Align2::CENTER_TOP, &text, theme::quiet(), self.palette.quiet);
+                free_from = x + half + 8.0;
+            }
+        }
+        let at = pos2(area.right(), area.bottom() + 3.0);
+        widget::write(painter, at, Align2::RIGHT_TOP, unit, theme::quiet(), self.palette.quiet);
+        let _ = desk;
+    }
+
+    fn draw_floor(&self, painter: &Painter, reading: &Reading) {
+        let Some(floor) = reading.panes.get(self.index).and_then(|p| p.floor_db) else { return };
+        let y = painter.round_to_pixel_center(self.level.at(floor));
+        let points = [pos2(self.area.left(), y), pos2(self.area.right(), y)];
+        painter.extend(Shape::dashed_line(&points, Stroke::new(1.0, self.palette.quiet), 2.0, 3.0));
+    }
+
+    fn draw_hairline(&self, painter: &Painter, spectra: Option<&Arc<Spectra>>, view: &View) {
+        let Some(hz) = view.hairline_hz.filter(|hz| (self.frequency.lo..=self.frequency.hi).contains(hz)) else {
+            return;
+        };
+        let x = painter.round_to_pixel_center(self.frequency.at(hz));
+        painter.vline(x, self.area.y_range(), Stroke::new(1.0, self.palette.accent));
+        if let Some(spectra) = spectra {
+            let y = self.level.at(spectra.value_db(self.index, hz) + self.shared.offset_db);
+            painter.hline(x - 4.0..=x + 4.0, y, Stroke::new(2.0, self.palette.ink));
+        }
+    }
+
+    /// Marks of tones, the strongest labelled first; what has no room is left out.
+    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk) {
+        let stale = !desk.latest.is_current();
+        let ink = if stale { self.palette.quiet.gamma_multiply(0.6) } else { self.palette.ink };
+        let mut marks: Vec<(&Tone, &PaneReading, egui::Pos2)> =
+            reading.tones.iter().filter_map(|t| self.mark(t).map(|(r, at)| (t, r, at))).collect();
+        for (tone, reading, at) in &marks {
+            if self.is_picked(tone, desk) {
+                painter.circle_stroke(*at, 7.0, Stroke::new(1.5, self.palette.accent));
+            }
+            widget::state_mark(painter, *at, reading.state, ink);
+        }
+        marks.retain(|(tone, r, _)| r.state == ReadingState::Clear || self.is_picked(tone, desk));
+        marks.sort_by(|a, b| {
+            let first = |m: &(&Tone, _, _)| self.is_picked(m.0, desk);
+            first(b).cmp(&first(a)).then(b.1.level_db.total_cmp(&a.1.level_db))
+        });
+        marks.truncate(40);
+        let texts: Vec<String> = marks.iter().map(|(tone, r, _)| label(tone, r)).collect();
+        let sized: Vec<_> = marks
+            .iter()
+            .zip(&texts)
+            .map(|(m, text)| (m.2, widget::text_size(painter, text, theme::quiet())))
+            .collect();
+        for ((found, text), (tone, _, _)) in place(self.area, &sized, &[]).into_iter().zip(&texts).zip(&marks) {
+            let Some(rect) = found else { continue };
+            painter.rect_filled(rect.expand2(vec2(2.0, 0.0)), 2.0, self.palette.card.gamma_multiply(0.85));
+            let colour = if self.is_picked(tone, desk) { self.palette.accent } else { ink };
+            widget::write(painter, rect.min, Align2::LEFT_TOP, text, theme::quiet(), colour);
+        }
+    }
+
+    fn is_picked(&self, tone: &Tone, desk: &Desk) -> bool {
+        is_picked(tone.frequency_hz, desk.session.picked_hz, self.shared.spacing_hz)
+    }
+
+    /// Where a tone's mark stands in this pane, if it is in sight.
+    fn mark<'t>(&self, tone: &'t Tone) -> Option<(&'t PaneReading, egui::Pos2)> {
+        let reading = tone.readings.get(self.index)?;
+        let shown = (self.frequency.lo..=self.frequency.hi).contains(&reading.peak_hz);
+        let at = pos2(self.frequency.at(reading.peak_hz), self.level.at(reading.level_db));
+        (shown && reading.state != ReadingState::BelowFloor && self.area.contains(at)).then_some((reading, at))
+    }
+
+    /// Pointer and keys.
+    fn steer(&self, ui: &Ui, response: &Response, desk: &Desk, view: &mut View, intents: &mut Intents) {
+        if let Some(at) = response.hover_pos() {
+            let hz = self.frequency.value(at.x);
+            if view.hairline_hz != Some(hz) && ui.input(|i| i.pointer.delta() != egui::Vec2::ZERO) {
+                view.hairline_hz = Some(hz);
+            }
+            let (scroll, zoom) = ui.input(|i| (i.smooth_scroll_delta(), i.zoom_delta()));
+            let wheel = f64::from(-scroll.y / 200.0).exp() / f64::from(zoom);
+            if (wheel - 1.0).abs() > 1e-6 {
+                self.show_range(self.frequency.zoomed(wheel, hz), desk, intents);
+            } else if scroll.x != 0.0 {
+                self.show_range(self.frequency.panned(scroll.x), desk, intents);
+            }
+        }
+        if response.dragged_by(PointerButton::Primary) && response.drag_delta().x != 0.0 {
+            self.show_range(self.frequency.panned(response.drag_delta().x), desk, intents);
+        }
+        if response.clicked() || response.drag_started() {
+            response.request_focus();
+        }
+        if response.clicked() || response.has_focus() {
+            view.pane = Some(self.pane.id);
+        }
+        if response.double_clicked() {
+            intents.push(Intent::Change(Command::SetAxes(ViewAxes { frequency_hz: None, ..desk.session.axes })));
+        } else if response.clicked()
+            && let Some(at) = response.interact_pointer_pos()
+        {
+            self.pick(at, desk, view, intents);
+        }
+        if response.has_focus() {
+            self.keys(ui, response, view);
+        }
+    }
+
+    fn show_range(&self, range: (f64, f64), desk: &Desk, intents: &mut Intents) {
+        let frequency_hz = held_range(range, 4.0 * self.shared.spacing_hz, self.shared.nyquist_hz);
+        let axes = ViewAxes { frequency_hz, ..desk.session.axes };
+        if axes != desk.session.axes {
+            intents.push(Intent::Change(Command::SetAxes(axes)));
+        }
+    }
+
+    /// Picks the tone whose mark is nearest to a click, if it is near.
+    fn pick(&self, at: egui::Pos2, desk: &Desk, view: &mut View, intents: &mut Intents) {
+        let Some(reading) = desk.reading() else { return };
+        let near = reading
+            .tones
+            .iter()
+            .filter_map(|t| Some((t, self.mark(t)?.1.distance(at))))
+            .filter(|(_, d)| *d <= NEAR)
+            .min_by(|a, b| a.1.total_cmp(&b.1));
+        if let Some((tone, _)) = near {
+            intents.push(Intent::Change(Command::Pick(Some(tone.frequency_hz))));
+            view.card_pane = Some(self.index);
+            view.reveal_pick = true;
+        }
+    }
+
+    /// Arrow keys move the hairline a line, with Shift ten.
+    fn keys(&self, ui: &Ui, response: &Response, view: &mut View) {
+        let filter = EventFilter { horizontal_arrows: true, ..EventFilter::default() };
+        ui.memory_mut(|m| m.set_focus_lock_filter(response.id, filter));
+        let mut lines = 0.0;
+        ui.input_mut(|input| {
+            for (modifiers, step) in [(Modifiers::SHIFT, 10.0), (Modifiers::NONE, 1.0)] {
+                lines -= step * input.count_and_consume_key(modifiers, Key::ArrowLeft) as f64;
+                lines += step * input.count_and_consume_key(modifiers, Key::ArrowRight) as f64;
+            }
+        });
+        if lines != 0.0 {
+            let spacing = self.shared.spacing_hz;
+            let from = view.hairline_hz.unwrap_or(0.5 * (self.frequency.lo + self.frequency.hi));
+            let line = (from / spacing).round() + lines;
+            view.hairline_hz = Some((line * spacing).clamp(0.0, self.shared.nyquist_hz));
+        }
+    }
+}
+
+/// Whether a tone is the one picked: its frequency moves a little as windows and segments change.
+pub(super) fn is_picked(tone_hz: f64, picked_hz: Option<f64>, spacing_hz: f64) -> bool {
+    picked_hz.is_some_and(|hz| (hz - tone_hz).abs() <= spacing_hz)
+}
+
+fn label(tone: &Tone, reading: &PaneReading) -> String {
+    let hz = if reading.borrowed { tone.frequency_hz } else { reading.peak_hz };
+    format!("{} Hz  {} dB", figure::fixed(hz, 2), figure::fixed(reading.level_db, 1))
+}

@@ -1,0 +1,56 @@
+//! What is going on: opening, computing, failed.
+
+use std::time::Duration;
+
+use eframe::egui::{ProgressBar, RichText, Ui};
+
+use super::desk::Desk;
+use super::view::{Intent, Intents, View};
+use super::{theme, widget};
+use crate::signal::Watch;
+
+/// A capture that is being opened, and how to call that off.
+pub(super) fn opening(ui: &mut Ui, name: &str, watch: &Watch) {
+    ui.horizontal(|ui| {
+        ui.label(format!("Opening {name}"));
+        let bar = ProgressBar::new(watch.progress() as f32).desired_width(160.0).desired_height(8.0);
+        ui.add(bar).accessible_name("Opening");
+        if ui.button("Cancel").accessible_name("Cancel opening").clicked() {
+            watch.cancel();
+        }
+    });
+    ui.ctx().request_repaint_after(Duration::from_millis(100));
+}
+
+/// The line over the table: whether its figures are those asked for, what they refer to, what to know of them.
+pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Intents) {
+    let palette = theme::palette(ui.ctx());
+    ui.horizontal(|ui| {
+        ui.set_min_height(24.0);
+        let font = theme::heavy(ui.ctx(), theme::BODY);
+        ui.label(RichText::new("Tones").font(font).color(palette.accent));
+        if let Some(failure) = &desk.latest.failure {
+            ui.label(RichText::new(failure).color(palette.alarm));
+            if ui.button("Try again").clicked() {
+                intents.push(Intent::Retry);
+            }
+        } else if desk.latest.called_off && !desk.latest.is_current() {
+            ui.label("Called off; the figures below are older than the segment.");
+            if ui.button("Compute").clicked() {
+                intents.push(Intent::Retry);
+            }
+        } else if desk.latest.is_busy() && !view.marking {
+            widget::quiet(ui, "computing; figures shown are older");
+            if ui.button("Cancel").accessible_name("Cancel computing").clicked() {
+                intents.push(Intent::CallOff);
+            }
+            ui.ctx().request_repaint_after(Duration::from_millis(100));
+        } else if let Some(reading) = desk.reading() {
+            let text = format!("{} over the floor  ·  levels in {}", reading.tones.len(), reading.scale.reference_label);
+            widget::quiet(ui, text);
+            for warning in &reading.warnings {
+                ui.label(RichText::new(&warning.text).font(theme::quiet()).color(palette.alarm)).on_hover_text(warning.code);
+            }
+        }
+    });
+}

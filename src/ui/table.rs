@@ -1,0 +1,244 @@
+//! The tone table: a row a tone, a column a pane.
+
+use eframe::egui::{
+    self, Align, Align2, Key, Layout, Modifiers, Rect, Response, Role, ScrollArea, Sense, Ui, WidgetInfo, pos2, vec2,
+};
+use egui_extras::{Column, TableBuilder, TableRow};
+
+use super::desk::Desk;
+use super::pane::is_picked;
+use super::theme::{self, Palette};
+use super::view::{Cell, Intent, Intents, View};
+use super::{figure, widget};
+use crate::reading::{PaneReading, Reading, ReadingState, Tone};
+use crate::session::Command;
+
+const ROW: f32 = 24.0;
+
+/// Shows the table; figures that are not those asked for are dimmed.
+pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
+    let Some(reading) = desk.reading().cloned() else {
+        nothing_yet(ui, desk);
+        return;
+    };
+    if !desk.latest.is_current() {
+        ui.multiply_opacity(0.55);
+    }
+    if reading.tones.is_empty() {
+        ui.add_space(8.0);
+        ui.label("No tone stands over the floor of this segment. Mark a longer one, or name a tone at the hairline.");
+        return;
+    }
+    let table = Table { desk, reading: &reading, picked: picked_row(&reading, desk), palette: theme::palette(ui.ctx()) };
+    ScrollArea::horizontal().id_salt("tone table, sideways").auto_shrink(false).show(ui, |ui| {
+        table.show(ui, view, intents);
+    });
+}
+
+fn nothing_yet(ui: &mut Ui, desk: &Desk) {
+    ui.add_space(8.0);
+    let text = match &desk.latest.failure {
+        Some(_) => "There are no figures for this segment.",
+        None if desk.latest.called_off => "The computation was called off.",
+        None => "Reading the tones…",
+    };
+    widget::quiet(ui, text);
+}
+
+/// The row of the tone that is picked.
+pub(super) fn picked_row(reading: &Reading, desk: &Desk) -> Option<usize> {
+    let picked = desk.session.picked_hz?;
+    let spacing = desk.line_spacing_hz();
+    let near = |i: &usize| reading.tones.get(*i).map_or(f64::INFINITY, |t| (t.frequency_hz - picked).abs());
+    (0..reading.tones.len())
+        .filter(|i| reading.tones.get(*i).is_some_and(|t| is_picked(t.frequency_hz, Some(picked), spacing)))
+        .min_by(|a, b| near(a).total_cmp(&near(b)))
+}
+
+struct Table<'a> {
+    desk: &'a Desk,
+    reading: &'a Reading,
+    picked: Option<usize>,
+    palette: &'static Palette,
+}
+
+impl Table<'_> {
+    fn show(&self, ui: &mut Ui, view: &mut View, intents: &mut Intents) {
+        ui.spacing_mut().item_spacing = vec2(4.0, 0.0);
+        let has_verdicts = self.reading.tones.iter().any(|t| t.verdict.is_some());
+        let n_panes = self.reading.panes.len();
+        let mut builder = TableBuilder::new(ui)
+            .id_salt(("tone table", n_panes, has_verdicts))
+            .sense(Sense::click())
+            .auto_shrink(false)
+            .cell_layout(Layout::right_to_left(Align::Center))
+            .column(Column::exact(92.0))
+            .column(Column::exact(112.0))
+            .column(Column::exact(68.0));
+        if has_verdicts {
+            builder = builder.column(Column::exact(84.0));
+        }
+        builder = builder.column(Column::exact(88.0));
+        for pane in &self.reading.panes {
+            builder = builder.column(Column::exact((pane.window.len() as f32 * 7.5 + 16.0).max(98.0)));
+        }
+        builder = builder.column(Column::remainder().at_least(120.0).clip(true));
+        if std::mem::take(&mut view.reveal_pick)
+            && let Some(row) = self.picked
+        {
+            builder = builder.scroll_to_row(row, None);
+        }
+        builder.header(ROW, |row| self.head(row, has_verdicts)).body(|body| {
+            body.rows(ROW, self.reading.tones.len(), |row| self.row(row, has_verdicts, view, intents));
+        });
+    }
+
+    fn head(&self, mut row: TableRow<'_, '_>, has_verdicts: bool) {
+        let scale = &self.reading.scale;
+        let level = format!("level, {} {}", scale.unit, scale.detector.title());
+        let mut heads = vec!["frequency, Hz".to_owned(), level, "level, dB".to_owned()];
+        if has_verdicts {
+            heads.push("verdict".to_owned());
+        }
+        heads.push("agreement, dB".to_owned());
+        heads.extend(self.desk.session.panes.iter().take(self.reading.panes.len()).map(|p| p.window.to_string()));
+        heads.resize(self.reading.panes.len() + 4 + usize::from(has_verdicts), String::new());
+        for head in heads {
+            row.col(|ui| {
+                ui.add(egui::Label::new(egui::RichText::new(head).color(self.palette.quiet)).truncate());
+            });
+        }
+        row.col(|ui| {
+            ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
+                ui.add_space(12.0);
+                ui.label(egui::RichText::new("note").color(self.palette.quiet));
+            });
+        });
+    }
+
+    fn row(&self, mut row: TableRow<'_, '_>, has_verdicts: bool, view: &mut View, intents: &mut Intents) {
+        let index = row.index();
+        let Some(tone) = self.reading.tones.get(index) else { return };
+        let spacing = self.desk.line_spacing_hz();
+        row.set_selected(self.picked == Some(index));
+        let frequency = figure::hertz(tone.frequency_hz, spacing);
+        row.col(|ui| drop(ui.add(egui::Label::new(&frequency).selectable(false))));
+        row.col(|ui| drop(ui.add(egui::Label::new(figure::significant(tone.level, 4)).selectable(false))));
+        row.col(|ui| drop(ui.add(egui::Label::new(figure::fixed(tone.level_db, 2)).selectable(false))));
+        if has_verdicts {
+            row.col(|_| {});
+        }
+        let agreement = tone.agreement_db.map_or_else(|| "–".to_owned(), |a| figure::fixed(a, 3));
+        row.col(|ui| drop(ui.add(egui::Label::new(agreement).selectable(false))));
+        let mut chosen: Option<Option<usize>> = None;
+        for (pane, reading) in tone.readings.iter().enumerate() {
+            row.col(|ui| {
+                if self.cell(ui, &frequency, pane, reading, Cell { tone: index, pane }, view).clicked() {
+                    chosen = Some(Some(pane));
+                }
+            });
+        }
+        row.col(|ui| self.note(ui, tone, spacing));
+        let response = row.response();
+        let name = format!("Tone {frequency} Hz");
+        let picked = self.picked == Some(index);
+        response.widget_info(|| WidgetInfo::selected(Role::Row, true, picked, &name));
+        if response.clicked() && chosen.is_none() {
+            chosen = Some(None);
+        }
+        if let Some(pane) = chosen {
+            intents.push(Intent::Change(Command::Pick(Some(tone.frequency_hz))));
+            view.card_pane = pane;
+        }
+    }
+
+    /// One cell: the level, or the word for why it is not to be trusted; a mark of its state beside it.
+    fn cell(&self, ui: &mut Ui, frequency: &str, pane: usize, reading: &PaneReading, cell: Cell, view: &View) -> Response {
+        let rect = ui.available_rect_before_wrap();
+        let response = ui.interact(rect, egui::Id::unique(("cell", cell.tone, cell.pane)), Sense::click());
+        let level = figure::fixed(reading.level_db, 2);
+        let word = reading.state.word();
+        let window = &reading.window;
+        let name = format!("{frequency} Hz in pane {}, {window}: {level} dB, {word}", pane + 1);
+        response.widget_info(|| WidgetInfo::labeled(Role::Button, true, &name));
+        let painter = ui.painter();
+        let chosen = self.picked == Some(cell.tone) && view.card_pane == Some(pane);
+        if chosen || response.has_focus() || response.hovered() {
+            let stroke = egui::Stroke::new(if response.hovered() && !chosen { 1.0 } else { 1.5 }, self.palette.accent);
+            painter.rect_stroke(rect.shrink(1.0), 3.0, stroke, egui::StrokeKind::Inside);
+        }
+        let clear = reading.state == ReadingState::Clear;
+        let (text, ink) = if clear { (level, self.palette.ink) } else { (word.to_owned(), self.palette.quiet) };
+        let right = pos2(rect.right() - 4.0, rect.center().y);
+        let taken: Rect = widget::write(painter, right, Align2::RIGHT_CENTER, &text, theme::body(), ink);
+        if !clear {
+            widget::state_mark(painter, pos2(taken.left() - 10.0, rect.center().y), reading.state, ink);
+        }
+        response.on_hover_text(format!("{name}. Click for its ledger."))
+    }
+
+    fn note(&self, ui: &mut Ui, tone: &Tone, spacing: f64) {
+        let notes = &self.desk.session.notes;
+        let mine = notes.iter().find(|n| n.frequency_hz.is_some_and(|hz| (hz - tone.frequency_hz).abs() <= spacing));
+        let tags = tone.tags.join(", ");
+        let text = match (mine, tags.is_empty()) {
+            (Some(note), true) => note.text.clone(),
+            (Some(note), false) => format!("{} ({tags})", note.text),
+            (None, _) => tags,
+        };
+        ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
+            ui.add_space(12.0);
+            ui.add(egui::Label::new(text).selectable(false).truncate());
+        });
+    }
+}
+
+/// Up and down move the pick while nothing else wants these keys.
+pub(super) fn keys(ui: &Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
+    let free = ui.memory(|m| m.focused().is_none());
+    if !free {
+        return;
+    }
+    let down = ui.input_mut(|i| i.count_and_consume_key(Modifiers::NONE, Key::ArrowDown)) as i64;
+    let up = ui.input_mut(|i| i.count_and_consume_key(Modifiers::NONE, Key::ArrowUp)) as i64;
+    if down != up {
+        step(desk, view, intents, down - up);
+    }
+}
+
+/// Moves the pick `by` rows.
+pub(super) fn step(desk: &Desk, view: &mut View, intents: &mut Intents, by: i64) {
+    let Some(reading) = desk.reading().filter(|r| !r.tones.is_empty()) else { return };
+    let last = reading.tones.len() as i64 - 1;
+    let start = if by > 0 { -1 } else { last + 1 };
+    let row = (picked_row(reading, desk).map_or(start, |r| r as i64) + by).clamp(0, last);
+    if let Some(tone) = reading.tones.get(row as usize) {
+        intents.push(Intent::Change(Command::Pick(Some(tone.frequency_hz))));
+        view.reveal_pick = true;
+    }
+}
+
+/// The table as tab-separated text, units in the head, a full stop as the decimal mark.
+pub(super) fn as_text(reading: &Reading) -> String {
+    let scale = &reading.scale;
+    let mut text = format!(
+        "frequency (Hz)\tlevel ({} {})\tlevel ({})\tagreement (dB)",
+        scale.unit,
+        scale.detector.title(),
+        scale.reference_label
+    );
+    let windows = reading.tones.first().map(|t| t.readings.iter().map(|r| r.window.clone()).collect::<Vec<_>>());
+    for window in windows.unwrap_or_default() {
+        text.push_str(&format!("\t{window} (dB)\t{window} state"));
+    }
+    text.push('\n');
+    for tone in &reading.tones {
+        text.push_str(&format!("{}\t{}\t{}\t", tone.frequency_hz, tone.level, tone.level_db));
+        text.push_str(&tone.agreement_db.map(|a| a.to_string()).unwrap_or_default());
+        for reading in &tone.readings {
+            text.push_str(&format!("\t{}\t{}", reading.level_db, reading.state.word()));
+        }
+        text.push('\n');
+    }
+    text
+}
