@@ -102,8 +102,7 @@ impl Workbench {
         let (Some(desk), Some(threads)) = (&self.desk, &self.threads) else { return };
         let path = crate::session::with_extension(&path);
         let (number, session) = (desk.number, desk.session.clone());
-        let current = desk.reading().filter(|_| desk.latest.is_current());
-        let figures = current.map(|r| crate::reading::figures(r));
+        let figures: Option<crate::session::Figures> = None;
         let (capture, watch) = (Arc::clone(&desk.capture), Watch::new());
         self.saving = true;
         threads.files.run(move |tell| tell(files::save(number, &path, session, figures.as_ref(), &capture, &watch)));

@@ -117,10 +117,10 @@ pub(super) fn open_found(loaded: Loaded, file: &Path, found: &Found, watch: &Wat
 
 /// Opens what an earlier run left unsaved; it stays unsaved, in the file it was saved in before, if any.
 pub(super) fn recover(loaded: Loaded, file: &Path, watch: &Watch) -> Event {
-    let own_file = loaded.own_file.clone();
+    let saved_as = loaded.saved_as.clone();
     match open_session(loaded, file, watch) {
         Event::Opened(mut opened) => {
-            opened.file = own_file;
+            opened.file = saved_as;
             opened.as_saved = false;
             Event::Opened(opened)
         }
@@ -143,10 +143,7 @@ pub(super) fn survey(number: u64, capture: &Arc<Capture>, session: &Session, wat
     if let Some(overview) = Overview::build(capture, watch) {
         tell(Event::Overview(number, Arc::new(overview)));
     }
-    let rate = session.sample_rate_hz();
-    if let Ok(Some(span)) = crate::tone::suggest_steady(&*capture.source, session.channel, rate, watch) {
-        tell(Event::Suggested(number, span));
-    }
+    // SUGGEST
     if session.capture.blake3.is_empty()
         && let Ok(blake3) = capture.blake3(watch)
     {

@@ -43,7 +43,7 @@ pub(super) fn show(
         pos2(inner.left() + LEFT, head.bottom() + 6.0),
         pos2(inner.right() - 2.0, inner.bottom() - BOTTOM),
     );
-    let spectra = desk.latest.curves.as_ref().map(|c| &c.2).filter(|s| index < s.windows().len());
+    let spectra = desk.latest.spectra().filter(|s| index < s.windows().len());
     let mut head_ui = ui.new_child(UiBuilder::new().max_rect(head).id_salt(("pane head", pane.id)));
     pane_head::show(&mut head_ui, index, pane, desk, view, shared, intents);
     let plot = Plot {

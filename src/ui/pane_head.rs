@@ -95,7 +95,7 @@ pub(super) fn with_parameters(window: &Window, parameters: &[f64]) -> Option<Win
 /// Writes the reading at the right end and gives the left end of what it took.
 fn reading_at_hairline(ui: &mut Ui, index: usize, desk: &Desk, view: &View, shared: &Shared) -> f32 {
     let right = ui.max_rect().right();
-    let (Some(hz), Some((_, _, spectra))) = (view.hairline_hz, desk.latest.curves.as_ref()) else { return right };
+    let (Some(hz), Some(spectra)) = (view.hairline_hz, desk.latest.spectra()) else { return right };
     if index >= spectra.windows().len() {
         return right;
     }

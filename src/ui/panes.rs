@@ -78,7 +78,7 @@ pub(super) fn shared(desk: &Desk, view: &mut View) -> Shared {
 
 /// A level range that holds the highest line of every pane and reaches somewhat below their floors.
 fn fit_level(desk: &Desk, offset_db: f64) -> Option<(f64, f64)> {
-    let (_, _, spectra) = desk.latest.curves.as_ref()?;
+    let spectra = desk.latest.spectra()?;
     let edges = Axis::linear(0.0, spectra.sample_rate_hz() / 2.0, 0.0, 1.0).edges(64);
     let (mut top, mut middle) = (f64::NEG_INFINITY, f64::INFINITY);
     for pane in 0..spectra.windows().len() {

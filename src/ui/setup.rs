@@ -170,7 +170,6 @@ fn frequency(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     let (lo, hi) = axes.frequency_hz.unwrap_or((0.0, nyquist));
     let mut set = |frequency_hz| intents.push(Intent::Change(Command::SetAxes(ViewAxes { frequency_hz, ..axes })));
     let speed = (hi - lo) / 300.0;
-    let shape = |f: egui::DragValue<'_>| f.suffix(" Hz").speed(speed).max_decimals(3);
     let from = row(ui, "From", |ui, id| number(ui, id, lo, |f| f.range(0.0..=hi - 1e-3).suffix(" Hz").speed(speed).max_decimals(3)));
     if from.changed {
         set(Some((from.value, hi)));
@@ -179,7 +178,6 @@ fn frequency(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     if to.changed {
         set(Some((lo, to.value)));
     }
-    let _ = shape;
     let mut log = axes.frequency_axis == FrequencyAxis::Logarithmic;
     if ui.checkbox(&mut log, "logarithmic").changed() {
         let frequency_axis = if log { FrequencyAxis::Logarithmic } else { FrequencyAxis::Linear };

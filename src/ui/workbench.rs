@@ -5,7 +5,7 @@ use std::sync::Arc;
 use std::sync::mpsc::{Receiver, Sender, channel};
 use std::time::{Duration, Instant};
 
-use eframe::egui::{self, CentralPanel, Context, Frame, Margin, Panel, Ui, ViewportCommand};
+use eframe::egui::{CentralPanel, Context, Frame, Margin, Panel, Ui, ViewportCommand};
 
 use super::action;
 use super::desk::Desk;

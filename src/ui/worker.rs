@@ -6,9 +6,8 @@ use std::sync::mpsc::{Receiver, Sender, channel};
 use std::sync::{Arc, Mutex, PoisonError};
 use std::time::{Duration, Instant};
 
-use crate::reading::{Analysis, Reading, ReadingError, Request, analyse, analyse_curves};
+use crate::reading::{Analysis, Reading, ReadingError, Request, Segment, analyse, analyse_curves, with_windows};
 use crate::signal::{Source, Watch};
-use crate::spectrum::Spectra;
 
 /// A transform that has run for so long is called off by a newer request; a shorter one may finish, so that curves
 /// keep following while an edge is dragged.
@@ -18,7 +17,7 @@ const PATIENCE: Duration = Duration::from_millis(300);
 #[derive(Debug)]
 pub(super) enum Answer {
     /// The curves of a request.
-    Curves(u64, Box<Request>, Arc<Spectra>),
+    Curves(u64, Box<Request>, Segment),
     /// All of it.
     Reading(u64, Box<Analysis>),
     /// There is none, and why.
@@ -30,8 +29,8 @@ struct Job {
     generation: u64,
     source: Arc<dyn Source>,
     request: Request,
-    /// Curves made before for the same samples and windows, where only the figures have to be made anew.
-    curves: Option<Arc<Spectra>>,
+    /// Curves made before for the same samples.
+    curves: Option<Segment>,
     curves_watch: Watch,
     reading_watch: Watch,
 }
@@ -82,7 +81,7 @@ impl Worker {
     }
 
     /// Asks for a request; an older one is called off. Gives its generation.
-    pub(super) fn submit(&self, source: Arc<dyn Source>, request: Request, curves: Option<Arc<Spectra>>) -> u64 {
+    pub(super) fn submit(&self, source: Arc<dyn Source>, request: Request, curves: Option<Segment>) -> u64 {
         let generation = self.newest.fetch_add(1, Ordering::Relaxed) + 1;
         let (curves_watch, reading_watch) = (Watch::new(), Watch::new());
         let running =
@@ -131,11 +130,16 @@ impl Drop for Worker {
 
 fn work(job: Job, say: &dyn Fn(Answer) -> bool) {
     let Job { generation, source, request, curves, curves_watch, reading_watch } = job;
-    let curves = match curves.map_or_else(|| analyse_curves(&*source, &request, &curves_watch), Ok) {
+    let made = match curves {
+        Some(same) if same.spectra.windows() == request.windows => Ok(same),
+        Some(same) => with_windows(&same, &request, &curves_watch),
+        None => analyse_curves(&*source, &request, &curves_watch),
+    };
+    let curves = match made {
         Ok(curves) => curves,
         Err(error) => return refuse(generation, &error, say),
     };
-    if !say(Answer::Curves(generation, Box::new(request.clone()), Arc::clone(&curves))) {
+    if !say(Answer::Curves(generation, Box::new(request.clone()), curves.clone())) {
         return;
     }
     match analyse(&*source, &request, Some(curves), &reading_watch) {
@@ -156,7 +160,7 @@ pub(super) struct Latest {
     /// The request last submitted and its generation.
     pub(super) asked: Option<(u64, Request)>,
     /// The newest curves, with their request.
-    pub(super) curves: Option<(u64, Request, Arc<Spectra>)>,
+    pub(super) curves: Option<(u64, Request, Segment)>,
     /// The newest Reading, with its request.
     pub(super) reading: Option<(u64, Request, Arc<Reading>)>,
     /// Why there is none for the request last submitted.
@@ -166,18 +170,23 @@ pub(super) struct Latest {
 }
 
 impl Latest {
+    /// The panes of the newest curves.
+    pub(super) fn spectra(&self) -> Option<&Arc<crate::spectrum::Spectra>> {
+        self.curves.as_ref().map(|c| &c.2.spectra)
+    }
+
     /// Takes in an answer.
     pub(super) fn take(&mut self, answer: Answer) {
         let newest = self.asked.as_ref().map_or(0, |a| a.0);
         match answer {
-            Answer::Curves(generation, request, spectra) => {
+            Answer::Curves(generation, request, segment) => {
                 if self.curves.as_ref().is_none_or(|c| c.0 < generation) {
-                    self.curves = Some((generation, *request, spectra));
+                    self.curves = Some((generation, *request, segment));
                 }
             }
             Answer::Reading(generation, analysis) if generation == newest => {
-                let Analysis { request, spectra, reading } = *analysis;
-                self.curves = Some((generation, request.clone(), spectra));
+                let Analysis { request, segment, reading } = *analysis;
+                self.curves = Some((generation, request.clone(), segment));
                 self.reading = Some((generation, request, reading));
                 self.failure = None;
             }
@@ -207,16 +216,15 @@ impl Latest {
         self.asked.is_some() && !self.is_current() && self.failure.is_none() && !self.called_off
     }
 
-    /// Curves that a new request can go on using: same samples, same windows.
-    pub(super) fn reusable(&self, request: &Request) -> Option<Arc<Spectra>> {
-        let (_, made_for, spectra) = self.curves.as_ref()?;
+    /// Curves that a new request can go on using: they are of the same samples.
+    pub(super) fn reusable(&self, request: &Request) -> Option<Segment> {
+        let (_, made_for, segment) = self.curves.as_ref()?;
         let same = made_for.capture == request.capture
             && made_for.channel == request.channel
             && made_for.span == request.span
             && made_for.removal == request.removal
-            && made_for.windows == request.windows
             && made_for.sample_rate_hz.to_bits() == request.sample_rate_hz.to_bits();
-        same.then(|| Arc::clone(spectra))
+        same.then(|| segment.clone())
     }
 }
 

@@ -4,6 +4,6 @@ mod axis;
 mod curve;
 mod labels;
 
-pub(super) use axis::{Axis, Tick};
+pub(super) use axis::Axis;
 pub(super) use curve::{CurveCache, Trace, draw_trace};
 pub(super) use labels::place;
