@@ -190,8 +190,8 @@ fn on_panes(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
 
 fn on_tones(desk: &Desk, view: &mut View, action: Action, intents: &mut Intents) -> Option<Command> {
     match action {
-        Action::NextTone => table::step(desk, view, intents, 1),
-        Action::PreviousTone => table::step(desk, view, intents, -1),
+        Action::NextTone => table::step(desk, view, intents, true),
+        Action::PreviousTone => table::step(desk, view, intents, false),
         Action::HairlineToTone => view.hairline_hz = desk.session.picked_hz.or(view.hairline_hz),
         Action::Unpick => return Some(Command::Pick(None)),
         Action::NameTone => {

@@ -60,8 +60,7 @@ pub(super) enum Menu {
 }
 
 impl Menu {
-    pub(super) const ALL: [Self; 6] =
-        [Self::Capture, Self::Segment, Self::Panes, Self::Tones, Self::View, Self::Help];
+    pub(super) const ALL: [Self; 6] = [Self::Capture, Self::Segment, Self::Panes, Self::Tones, Self::View, Self::Help];
 
     pub(super) fn title(self) -> &'static str {
         match self {

@@ -54,7 +54,10 @@ fn state(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
     let borrowed = if cell.borrowed { ", borrowed from a sharper pane" } else { "" };
     widget::quiet(ui, format!("peak at {peak} Hz{borrowed}"));
     if let Some(u) = cell.u_db {
-        widget::quiet(ui, format!("noise alone moves it by {} dB (one standard uncertainty)", figure::significant(u, 2)));
+        widget::quiet(
+            ui,
+            format!("noise alone moves it by {} dB (one standard uncertainty)", figure::significant(u, 2)),
+        );
     }
 }
 

@@ -98,9 +98,9 @@ impl Workbench {
     }
 
     /// Saves the session in a file.
-    pub(super) fn save_to(&mut self, path: PathBuf) {
+    pub(super) fn save_to(&mut self, path: &Path) {
         let (Some(desk), Some(threads)) = (&self.desk, &self.threads) else { return };
-        let path = crate::session::with_extension(&path);
+        let path = crate::session::with_extension(path);
         let (number, session) = (desk.number, desk.session.clone());
         let figures: Option<crate::session::Figures> = None;
         let (capture, watch) = (Arc::clone(&desk.capture), Watch::new());
@@ -112,7 +112,7 @@ impl Workbench {
     pub(super) fn save(&mut self) {
         let Some(desk) = &self.desk else { return };
         match desk.file.clone() {
-            Some(file) => self.save_to(file),
+            Some(file) => self.save_to(&file),
             None => self.ask(Ask::SaveSession(self.proposed_name())),
         }
     }
@@ -127,7 +127,7 @@ impl Workbench {
     /// Takes in what came of file work.
     pub(super) fn take_event(&mut self, ctx: &Context, event: Event) {
         match event {
-            Event::Picked(ask, Some(path)) => self.take_picked(ask, path),
+            Event::Picked(ask, Some(path)) => self.take_picked(&ask, path),
             Event::Picked(Ask::SaveSession(_), None) => self.after_save = None,
             Event::Picked(_, None) => {}
             Event::Opened(opened) => self.take_opened(*opened),
@@ -157,7 +157,7 @@ impl Workbench {
                     desk.session.capture.blake3 = blake3;
                 }
             }
-            Event::Saved(number, path, session) => self.take_saved(ctx, number, path, *session),
+            Event::Saved(number, path, session) => self.take_saved(ctx, number, &path, *session),
             Event::Recoveries(list) if list.is_empty() => {}
             Event::Recoveries(list) => self.dialog = Some(Dialog::Recover(list)),
             Event::Recent(list) => self.recent = list,
@@ -168,10 +168,10 @@ impl Workbench {
         self.desk.as_mut().filter(|d| d.number == number)
     }
 
-    fn take_picked(&mut self, ask: Ask, path: PathBuf) {
+    fn take_picked(&mut self, ask: &Ask, path: PathBuf) {
         match ask {
             Ask::Capture | Ask::Session => self.want_open(&path),
-            Ask::SaveSession(_) => self.save_to(path),
+            Ask::SaveSession(_) => self.save_to(&path),
             Ask::Locate => {
                 if let Some(Dialog::Missing(loaded, file, _)) = self.dialog.take() {
                     self.locate(*loaded, file, path);
@@ -240,19 +240,19 @@ impl Workbench {
         }
     }
 
-    fn take_saved(&mut self, ctx: &Context, number: u64, path: PathBuf, session: crate::session::Session) {
+    fn take_saved(&mut self, ctx: &Context, number: u64, path: &Path, session: crate::session::Session) {
         self.saving = false;
         let Some(desk) = self.desk_of(number) else { return };
         desk.session.capture.blake3.clone_from(&session.capture.blake3);
         desk.mark_saved(session);
-        desk.file = Some(path.clone());
+        desk.file = Some(path.to_owned());
         let unsaved = desk.is_unsaved();
         if let (false, Some(threads)) = (unsaved, &self.threads) {
             let slot = self.slot.clone();
             threads.files.run(move |_| slot.clear());
             self.autosave_due = None;
         }
-        self.note_recent(&path);
+        self.note_recent(path);
         self.notices.tell(&format!("Saved in {}.", path.display()));
         if let Some(after) = self.after_save.take() {
             self.go_on(ctx, after);

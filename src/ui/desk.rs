@@ -3,8 +3,8 @@
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
-use super::worker::Latest;
 use super::overview::Overview;
+use super::worker::Latest;
 use crate::capture::Capture;
 use crate::reading::{Reading, Request};
 use crate::session::{CaptureRef, History, NamedSegment, Session};

@@ -146,7 +146,10 @@ fn keys(ui: &mut Ui, said: &mut Option<Said>) {
             }
             for (key, what) in [
                 ("Tab", "To the next part of the screen"),
-                ("Left, Right", "In a pane: hairline by one line (Shift: ten); at a segment's edge: one sample (Shift: ten)"),
+                (
+                    "Left, Right",
+                    "In a pane: hairline by one line (Shift: ten); at a segment's edge: one sample (Shift: ten)",
+                ),
                 ("Up, Down", "The tone above or below"),
                 ("Wheel", "Zoom about the pointer"),
                 ("Drag", "In the strip: mark; in a pane: move along"),
@@ -196,11 +199,11 @@ fn missing(ui: &mut Ui, loaded: &Loaded, text: &mut String, said: &mut Option<Sa
     ui.label("Say where it is now; it is checked against what the session knows of it.");
     ui.add(TextEdit::singleline(text).desired_width(f32::INFINITY)).accessible_name("Path of the capture");
     let typed = !text.trim().is_empty();
-    buttons(ui, said, &[
-        ("Use this path", Said::Yes, typed),
-        ("Look for it…", Said::Other, true),
-        ("Cancel", Said::No, true),
-    ]);
+    buttons(
+        ui,
+        said,
+        &[("Use this path", Said::Yes, typed), ("Look for it…", Said::Other, true), ("Cancel", Said::No, true)],
+    );
 }
 
 fn changed_capture(ui: &mut Ui, changed: &Changed, said: &mut Option<Said>) {
@@ -210,16 +213,19 @@ fn changed_capture(ui: &mut Ui, changed: &Changed, said: &mut Option<Said>) {
         ui.label(format!("The session was saved with these figures ({}):", figures.reference));
         ScrollArea::vertical().max_height(160.0).show(ui, |ui| {
             for tone in &figures.tones {
-                widget::quiet(ui, format!("{} Hz  {} dB", figure::fixed(tone.frequency_hz, 3), figure::fixed(tone.level_db, 2)));
+                widget::quiet(
+                    ui,
+                    format!("{} Hz  {} dB", figure::fixed(tone.frequency_hz, 3), figure::fixed(tone.level_db, 2)),
+                );
             }
         });
     }
     ui.label("They do not stand for what is in the file now.");
-    buttons(ui, said, &[
-        ("Compute anew", Said::Yes, true),
-        ("Look for the old one…", Said::Other, true),
-        ("Cancel", Said::No, true),
-    ]);
+    buttons(
+        ui,
+        said,
+        &[("Compute anew", Said::Yes, true), ("Look for the old one…", Said::Other, true), ("Cancel", Said::No, true)],
+    );
 }
 
 fn recover(ui: &mut Ui, list: &[Recovered], said: &mut Option<Said>) {

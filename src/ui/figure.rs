@@ -35,7 +35,7 @@ pub(super) fn significant(value: f64, digits: usize) -> String {
     if !(-6..7).contains(&power) {
         return format!("{:.*e}", digits.saturating_sub(1), value).replace('-', "−");
     }
-    fixed(value, (digits as i32 - 1 - power).max(0) as usize)
+    fixed(value, (i32::try_from(digits).unwrap_or(9) - 1 - power).max(0) as usize)
 }
 
 /// A count with thin spaces between thousands.

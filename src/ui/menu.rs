@@ -40,7 +40,15 @@ impl Menus<'_> {
             self.add_pane(ui, intents);
         }
         for entry in ENTRIES.iter().filter(|e| e.menu == menu) {
-            if matches!(entry.action, Action::Save | Action::Undo | Action::Quit | Action::ShowSegment | Action::EnlargePane | Action::NameTone) {
+            if matches!(
+                entry.action,
+                Action::Save
+                    | Action::Undo
+                    | Action::Quit
+                    | Action::ShowSegment
+                    | Action::EnlargePane
+                    | Action::NameTone
+            ) {
                 ui.separator();
             }
             self.item(ui, entry, view, intents);
@@ -60,9 +68,7 @@ impl Menus<'_> {
         let (name, enabled) = self.state(entry);
         let on = match entry.action {
             Action::ToggleSetup => view.setup_open,
-            Action::ToggleLog => {
-                self.desk.is_some_and(|d| d.session.axes.frequency_axis == FrequencyAxis::Logarithmic)
-            }
+            Action::ToggleLog => self.desk.is_some_and(|d| d.session.axes.frequency_axis == FrequencyAxis::Logarithmic),
             _ => false,
         };
         let button = Button::new(name).shortcut_text(key).selected(on);
@@ -160,8 +166,12 @@ fn facts(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     let seconds = desk.session.capture.frames as f64 / rate;
     let quiet = theme::palette(ui.ctx()).quiet;
     ui.add_space(4.0);
-    let text =
-        format!("{} Hz, {} s, {}", figure::significant(rate, 6).trim_end_matches(".00").trim_end_matches(".0"), figure::fixed(seconds, 1), desk.capture.format);
+    let text = format!(
+        "{} Hz, {} s, {}",
+        figure::significant(rate, 6).trim_end_matches(".00").trim_end_matches(".0"),
+        figure::fixed(seconds, 1),
+        desk.capture.format
+    );
     ui.label(RichText::new(text).color(quiet));
     channel(ui, desk, intents);
     let unsaved = if desk.is_unsaved() { " (not saved)" } else { "" };

@@ -8,13 +8,13 @@ const BLOCK: usize = 256;
 
 /// Extremes of every channel of a capture.
 #[derive(Debug)]
-pub struct Overview {
+pub(super) struct Overview {
     channels: Vec<Pyramid>,
 }
 
 impl Overview {
     /// Reads the capture through; `None` where it was called off or cannot be read.
-    pub fn build(capture: &Capture, watch: &Watch) -> Option<Self> {
+    pub(super) fn build(capture: &Capture, watch: &Watch) -> Option<Self> {
         let source = &capture.source;
         let n_channels = source.n_channels();
         let mut channels = vec![Pyramid::new(BLOCK); n_channels];
@@ -34,7 +34,7 @@ impl Overview {
     }
 
     /// The extremes of `n` columns over the frames `from` to `to`.
-    pub fn columns(&self, channel: usize, (from, to): (f64, f64), n: usize) -> Vec<Extent> {
+    pub(super) fn columns(&self, channel: usize, (from, to): (f64, f64), n: usize) -> Vec<Extent> {
         let Some(pyramid) = self.channels.get(channel) else { return Vec::new() };
         let edge = |i: usize| ((from + (to - from) * i as f64 / n as f64) / BLOCK as f64).max(0.0) as usize;
         (0..n).map(|i| pyramid.blocks(edge(i)..edge(i + 1).max(edge(i) + 1))).collect()

@@ -81,9 +81,13 @@ impl Plot<'_> {
     fn describe(&self, response: &Response, desk: &Desk, view: &View) {
         let (lo, hi) = (self.frequency.lo, self.frequency.hi);
         let spacing = self.shared.spacing_hz;
-        let hairline = view.hairline_hz.map_or(String::new(), |hz| format!(", hairline at {} Hz", figure::hertz(hz, spacing)));
+        let hairline =
+            view.hairline_hz.map_or(String::new(), |hz| format!(", hairline at {} Hz", figure::hertz(hz, spacing)));
         let n_clear = desk.reading().map_or(0, |r| {
-            r.tones.iter().filter(|t| t.readings.get(self.index).is_some_and(|x| x.state == ReadingState::Clear)).count()
+            r.tones
+                .iter()
+                .filter(|t| t.readings.get(self.index).is_some_and(|x| x.state == ReadingState::Clear))
+                .count()
         });
         let text = format!(
             "Spectrum {}, {}: {} to {} Hz, {} tones clear{hairline}",
@@ -184,11 +188,8 @@ impl Plot<'_> {
         });
         marks.truncate(40);
         let texts: Vec<String> = marks.iter().map(|(tone, r, _)| label(tone, r)).collect();
-        let sized: Vec<_> = marks
-            .iter()
-            .zip(&texts)
-            .map(|(m, text)| (m.2, widget::text_size(painter, text, theme::quiet())))
-            .collect();
+        let sized: Vec<_> =
+            marks.iter().zip(&texts).map(|(m, text)| (m.2, widget::text_size(painter, text, theme::quiet()))).collect();
         for ((found, text), (tone, _, _)) in place(self.area, &sized, &[]).into_iter().zip(&texts).zip(&marks) {
             let Some(rect) = found else { continue };
             painter.rect_filled(rect.expand2(vec2(2.0, 0.0)), 2.0, self.palette.card.gamma_multiply(0.85));

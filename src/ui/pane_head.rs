@@ -1,8 +1,8 @@
 //! A pane's head: the window's shape drawn small, its name and parameters, the reading at the hairline; below, quietly,
 //! its noise bandwidth and highest side lobe.
 
-use eframe::egui::{self, Align, Button, Layout, Rect, RichText, Sense, Ui, UiBuilder, vec2};
 use eframe::egui::containers::menu::MenuButton;
+use eframe::egui::{self, Align, Button, Layout, Rect, RichText, Sense, Ui, UiBuilder, vec2};
 
 use super::desk::Desk;
 use super::panes::Shared;
@@ -34,16 +34,19 @@ pub(super) fn show(
     let shape = Rect::from_min_size(rect.min + vec2(0.0, 4.0), vec2(32.0, 18.0));
     widget::glyph(ui.painter(), shape, &shape_of(ui, &pane.window), hue);
     let line = Rect::from_min_max(rect.min + vec2(38.0, 0.0), egui::pos2(rect.right(), rect.top() + 26.0));
-    let mut first = ui.new_child(UiBuilder::new().max_rect(line).layout(Layout::left_to_right(Align::Center)).id_salt("first"));
+    let mut first =
+        ui.new_child(UiBuilder::new().max_rect(line).layout(Layout::left_to_right(Align::Center)).id_salt("first"));
     let right = reading_at_hairline(&mut first, index, desk, view, shared);
     first.spacing_mut().item_spacing.x = 4.0;
     let rest = Rect::from_min_max(line.min, egui::pos2(right - 4.0, line.bottom()));
-    let mut first = ui.new_child(UiBuilder::new().max_rect(rest).layout(Layout::left_to_right(Align::Center)).id_salt("name"));
+    let mut first =
+        ui.new_child(UiBuilder::new().max_rect(rest).layout(Layout::left_to_right(Align::Center)).id_salt("name"));
     first.set_clip_rect(rest.expand(2.0).intersect(ui.clip_rect()));
     name(&mut first, index, pane, view, intents);
     parameters(&mut first, index, pane, intents);
     let below = Rect::from_min_max(egui::pos2(line.left(), line.bottom()), rect.max);
-    let mut second = ui.new_child(UiBuilder::new().max_rect(below).layout(Layout::left_to_right(Align::Center)).id_salt("second"));
+    let mut second =
+        ui.new_child(UiBuilder::new().max_rect(below).layout(Layout::left_to_right(Align::Center)).id_salt("second"));
     merits(&mut second, pane, desk, shared);
 }
 

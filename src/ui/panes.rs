@@ -59,11 +59,11 @@ pub(super) fn shared(desk: &Desk, view: &mut View) -> Shared {
     let rate = desk.session.sample_rate_hz();
     let offset_db = offset_db(&desk.session.scale());
     let due = view.refit_level && !view.marking && desk.latest.curves_are_current();
-    if due || view.fitted_level.is_none() {
-        if let Some(fitted) = fit_level(desk, offset_db) {
-            view.fitted_level = Some(fitted);
-            view.refit_level = !desk.latest.curves_are_current();
-        }
+    if (due || view.fitted_level.is_none())
+        && let Some(fitted) = fit_level(desk, offset_db)
+    {
+        view.fitted_level = Some(fitted);
+        view.refit_level = !desk.latest.curves_are_current();
     }
     let level = axes.level_db.or(view.fitted_level).unwrap_or((offset_db - 140.0, offset_db));
     Shared {
@@ -165,7 +165,9 @@ fn free_cell(ui: &mut Ui, rect: Rect, intents: &mut Intents) {
     let place = Rect::from_center_size(rect.center(), vec2(110.0, 28.0));
     let mut inner = ui.new_child(UiBuilder::new().max_rect(place).id_salt("free cell"));
     inner.vertical_centered(|ui| {
-        ui.menu_button("Add pane", |ui| pane_menu::choose(ui, |w| intents.push(Intent::Change(crate::session::Command::AddPane(w)))));
+        ui.menu_button("Add pane", |ui| {
+            pane_menu::choose(ui, |w| intents.push(Intent::Change(crate::session::Command::AddPane(w))));
+        });
     });
 }
 

@@ -170,11 +170,15 @@ fn frequency(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     let (lo, hi) = axes.frequency_hz.unwrap_or((0.0, nyquist));
     let mut set = |frequency_hz| intents.push(Intent::Change(Command::SetAxes(ViewAxes { frequency_hz, ..axes })));
     let speed = (hi - lo) / 300.0;
-    let from = row(ui, "From", |ui, id| number(ui, id, lo, |f| f.range(0.0..=hi - 1e-3).suffix(" Hz").speed(speed).max_decimals(3)));
+    let from = row(ui, "From", |ui, id| {
+        number(ui, id, lo, |f| f.range(0.0..=hi - 1e-3).suffix(" Hz").speed(speed).max_decimals(3))
+    });
     if from.changed {
         set(Some((from.value, hi)));
     }
-    let to = row(ui, "To", |ui, id| number(ui, id, hi, |f| f.range(lo + 1e-3..=nyquist).suffix(" Hz").speed(speed).max_decimals(3)));
+    let to = row(ui, "To", |ui, id| {
+        number(ui, id, hi, |f| f.range(lo + 1e-3..=nyquist).suffix(" Hz").speed(speed).max_decimals(3))
+    });
     if to.changed {
         set(Some((lo, to.value)));
     }
@@ -194,12 +198,14 @@ fn level(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
         intents.push(Intent::Change(Command::SetAxes(ViewAxes { level_db, ..axes })));
     }
     let Some((lo, hi)) = axes.level_db else { return };
-    let mut set = |level_db| intents.push(Intent::Change(Command::SetAxes(ViewAxes { level_db: Some(level_db), ..axes })));
+    let mut set =
+        |level_db| intents.push(Intent::Change(Command::SetAxes(ViewAxes { level_db: Some(level_db), ..axes })));
     let top = row(ui, "Top", |ui, id| number(ui, id, hi, |f| f.range(lo + 5.0..=400.0).suffix(" dB").max_decimals(1)));
     if top.changed {
         set((lo, top.value));
     }
-    let low = row(ui, "Bottom", |ui, id| number(ui, id, lo, |f| f.range(-400.0..=hi - 5.0).suffix(" dB").max_decimals(1)));
+    let low =
+        row(ui, "Bottom", |ui, id| number(ui, id, lo, |f| f.range(-400.0..=hi - 5.0).suffix(" dB").max_decimals(1)));
     if low.changed {
         set((low.value, hi));
     }

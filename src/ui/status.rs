@@ -41,15 +41,19 @@ pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Inten
             }
         } else if desk.latest.is_busy() && !view.marking {
             widget::quiet(ui, "computing; figures shown are older");
+            let bar = ProgressBar::new(desk.latest.progress as f32).desired_width(120.0).desired_height(8.0);
+            ui.add(bar).accessible_name("Computing");
             if ui.button("Cancel").accessible_name("Cancel computing").clicked() {
                 intents.push(Intent::CallOff);
             }
             ui.ctx().request_repaint_after(Duration::from_millis(100));
         } else if let Some(reading) = desk.reading() {
-            let text = format!("{} over the floor  ·  levels in {}", reading.tones.len(), reading.scale.reference_label);
+            let text =
+                format!("{} over the floor  ·  levels in {}", reading.tones.len(), reading.scale.reference_label);
             widget::quiet(ui, text);
             for warning in &reading.warnings {
-                ui.label(RichText::new(&warning.text).font(theme::quiet()).color(palette.alarm)).on_hover_text(warning.code);
+                ui.label(RichText::new(&warning.text).font(theme::quiet()).color(palette.alarm))
+                    .on_hover_text(warning.code);
             }
         }
     });

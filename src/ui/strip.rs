@@ -90,7 +90,8 @@ fn draw_wave(ui: &Ui, painter: &Painter, desk: &Desk, view: &mut View, axis: &Ax
     let n = ((wave.width() * ppp).round().max(1.0) as usize).min(8192);
     let columns = view.strip_cache.columns(desk, overview, (axis.lo, axis.hi), n);
     let top = columns.iter().filter(|c| !c.is_empty()).fold(0.0_f32, |m, c| m.max(c.max.abs()).max(c.min.abs()));
-    let height = Axis::linear(f64::from(-top.max(1e-9)) * 1.05, f64::from(top.max(1e-9)) * 1.05, wave.bottom(), wave.top());
+    let height =
+        Axis::linear(f64::from(-top.max(1e-9)) * 1.05, f64::from(top.max(1e-9)) * 1.05, wave.bottom(), wave.top());
     let width = wave.width() / n as f32;
     let colour = palette.quiet.gamma_multiply(0.75);
     let mut mesh = egui::Mesh::default();
@@ -168,9 +169,7 @@ fn steer(ui: &Ui, response: &Response, desk: &Desk, view: &mut View, axis: &Axis
     if response.drag_started_by(PointerButton::Primary) && !shift {
         view.mark_from = ui.input(|i| i.pointer.press_origin()).map(|p| axis.value(p.x));
     }
-    if let (Some(from), Some(at), true) =
-        (view.mark_from, pointer, response.dragged_by(PointerButton::Primary))
-    {
+    if let (Some(from), Some(at), true) = (view.mark_from, pointer, response.dragged_by(PointerButton::Primary)) {
         view.marking = true;
         mark(desk, from, axis.value(at.x), intents);
     }
@@ -271,7 +270,8 @@ fn edge_keys(
     let at = if end { segment.span.end() } else { segment.span.start } as f64;
     let mut moved = 0.0;
     ui.input_mut(|input| {
-        let bounds = if end { (segment.span.start as f64 + 1.0, frames) } else { (0.0, segment.span.end() as f64 - 1.0) };
+        let bounds =
+            if end { (segment.span.start as f64 + 1.0, frames) } else { (0.0, segment.span.end() as f64 - 1.0) };
         for (modifiers, step) in
             [(Modifiers::COMMAND, (shown / 100.0).round().max(100.0)), (Modifiers::SHIFT, 10.0), (Modifiers::NONE, 1.0)]
         {

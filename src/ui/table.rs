@@ -29,7 +29,8 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
         ui.label("No tone stands over the floor of this segment. Mark a longer one, or name a tone at the hairline.");
         return;
     }
-    let table = Table { desk, reading: &reading, picked: picked_row(&reading, desk), palette: theme::palette(ui.ctx()) };
+    let table =
+        Table { desk, reading: &reading, picked: picked_row(&reading, desk), palette: theme::palette(ui.ctx()) };
     ScrollArea::horizontal().id_salt("tone table, sideways").auto_shrink(false).show(ui, |ui| {
         table.show(ui, view, intents);
     });
@@ -153,7 +154,15 @@ impl Table<'_> {
     }
 
     /// One cell: the level, or the word for why it is not to be trusted; a mark of its state beside it.
-    fn cell(&self, ui: &mut Ui, frequency: &str, pane: usize, reading: &PaneReading, cell: Cell, view: &View) -> Response {
+    fn cell(
+        &self,
+        ui: &mut Ui,
+        frequency: &str,
+        pane: usize,
+        reading: &PaneReading,
+        cell: Cell,
+        view: &View,
+    ) -> Response {
         let rect = ui.available_rect_before_wrap();
         let response = ui.interact(rect, egui::Id::unique(("cell", cell.tone, cell.pane)), Sense::click());
         let level = figure::fixed(reading.level_db, 2);
@@ -199,20 +208,25 @@ pub(super) fn keys(ui: &Ui, desk: &Desk, view: &mut View, intents: &mut Intents)
     if !free {
         return;
     }
-    let down = ui.input_mut(|i| i.count_and_consume_key(Modifiers::NONE, Key::ArrowDown)) as i64;
-    let up = ui.input_mut(|i| i.count_and_consume_key(Modifiers::NONE, Key::ArrowUp)) as i64;
-    if down != up {
-        step(desk, view, intents, down - up);
+    if ui.input_mut(|i| i.consume_key(Modifiers::NONE, Key::ArrowDown)) {
+        step(desk, view, intents, true);
+    }
+    if ui.input_mut(|i| i.consume_key(Modifiers::NONE, Key::ArrowUp)) {
+        step(desk, view, intents, false);
     }
 }
 
-/// Moves the pick `by` rows.
-pub(super) fn step(desk: &Desk, view: &mut View, intents: &mut Intents, by: i64) {
+/// Moves the pick to the next row, or to the one before.
+pub(super) fn step(desk: &Desk, view: &mut View, intents: &mut Intents, down: bool) {
     let Some(reading) = desk.reading().filter(|r| !r.tones.is_empty()) else { return };
-    let last = reading.tones.len() as i64 - 1;
-    let start = if by > 0 { -1 } else { last + 1 };
-    let row = (picked_row(reading, desk).map_or(start, |r| r as i64) + by).clamp(0, last);
-    if let Some(tone) = reading.tones.get(row as usize) {
+    let last = reading.tones.len() - 1;
+    let row = match (picked_row(reading, desk), down) {
+        (Some(row), true) => (row + 1).min(last),
+        (Some(row), false) => row.saturating_sub(1),
+        (None, true) => 0,
+        (None, false) => last,
+    };
+    if let Some(tone) = reading.tones.get(row) {
         intents.push(Intent::Change(Command::Pick(Some(tone.frequency_hz))));
         view.reveal_pick = true;
     }
@@ -229,16 +243,17 @@ pub(super) fn as_text(reading: &Reading) -> String {
     );
     let windows = reading.tones.first().map(|t| t.readings.iter().map(|r| r.window.clone()).collect::<Vec<_>>());
     for window in windows.unwrap_or_default() {
-        text.push_str(&format!("\t{window} (dB)\t{window} state"));
+        text.extend(["\t", &window, " (dB)\t", &window, " state"]);
     }
     text.push('\n');
     for tone in &reading.tones {
-        text.push_str(&format!("{}\t{}\t{}\t", tone.frequency_hz, tone.level, tone.level_db));
-        text.push_str(&tone.agreement_db.map(|a| a.to_string()).unwrap_or_default());
+        let agreement = tone.agreement_db.map(|a| a.to_string()).unwrap_or_default();
+        let mut cells =
+            vec![tone.frequency_hz.to_string(), tone.level.to_string(), tone.level_db.to_string(), agreement];
         for reading in &tone.readings {
-            text.push_str(&format!("\t{}\t{}", reading.level_db, reading.state.word()));
+            cells.extend([reading.level_db.to_string(), reading.state.word().to_owned()]);
         }
-        text.push('\n');
+        text.extend([cells.join("\t").as_str(), "\n"]);
     }
     text
 }

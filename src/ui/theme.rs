@@ -33,15 +33,7 @@ const fn rgb(value: u32) -> Color32 {
 }
 
 const fn hues(values: [u32; 7]) -> [Color32; 7] {
-    [
-        rgb(values[0]),
-        rgb(values[1]),
-        rgb(values[2]),
-        rgb(values[3]),
-        rgb(values[4]),
-        rgb(values[5]),
-        rgb(values[6]),
-    ]
+    [rgb(values[0]), rgb(values[1]), rgb(values[2]), rgb(values[3]), rgb(values[4]), rgb(values[5]), rgb(values[6])]
 }
 
 /// By daylight.

@@ -36,6 +36,7 @@ pub(super) struct Cell {
 
 /// What is shown and how.
 #[derive(Debug)]
+#[expect(clippy::struct_excessive_bools, reason = "each is a state of its own: nothing here excludes another")]
 pub(super) struct View {
     /// The frames the strip shows, first and one past the last; `None`: all.
     pub(super) strip: Option<(f64, f64)>,

@@ -27,9 +27,8 @@ pub(super) fn row<R>(ui: &mut Ui, label: &str, field: impl FnOnce(&mut Ui, Id) -
         let colour = theme::palette(ui.ctx()).quiet;
         let (rect, _) = ui.allocate_exact_size(vec2(68.0, 24.0), egui::Sense::hover());
         let text = egui::Label::new(RichText::new(label).color(colour)).selectable(false).halign(egui::Align::LEFT);
-        let mut cell = ui.new_child(
-            egui::UiBuilder::new().max_rect(rect).layout(egui::Layout::left_to_right(egui::Align::Center)),
-        );
+        let mut cell = ui
+            .new_child(egui::UiBuilder::new().max_rect(rect).layout(egui::Layout::left_to_right(egui::Align::Center)));
         let label = cell.add(text);
         field(ui, label.id)
     })

@@ -247,6 +247,7 @@ impl Workbench {
             for answer in answers {
                 desk.latest.take(answer);
             }
+            desk.latest.progress = threads.worker.progress();
         }
     }
 

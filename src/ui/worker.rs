@@ -167,6 +167,8 @@ pub(super) struct Latest {
     pub(super) failure: Option<String>,
     /// Whether the user called the work off.
     pub(super) called_off: bool,
+    /// How much of what is asked for is done, 0 to 1.
+    pub(super) progress: f64,
 }
 
 impl Latest {

@@ -52,11 +52,6 @@ impl CurveCache {
         }
         columns
     }
-
-    /// Forgets everything, so that spectra no longer shown are freed.
-    pub(crate) fn clear(&mut self) {
-        self.kept.clear();
-    }
 }
 
 /// How a curve is drawn.
@@ -70,13 +65,7 @@ pub(crate) struct Trace {
 
 /// Draws columns as one stroke that goes through the least and the greatest of each; `left` is the first column's
 /// left edge and `width` a column's width, in points.
-pub(crate) fn draw_trace(
-    painter: &Painter,
-    columns: &[Extent],
-    (left, width): (f32, f32),
-    level: &Axis,
-    trace: Trace,
-) {
+pub(crate) fn draw_trace(painter: &Painter, columns: &[Extent], (left, width): (f32, f32), level: &Axis, trace: Trace) {
     let stroke = Stroke::new(1.25, trace.colour);
     for points in strokes(columns, (left, width), level, trace.offset) {
         if trace.dashed {

@@ -1,0 +1,119 @@
+//! Save, reopen, close, recover.
+
+use eframe::egui::{Key, Modifiers};
+use egui_kittest::kittest::Queryable as _;
+use panewise::ui::Ask;
+
+use super::desk::{Desk, write_capture};
+
+#[test]
+fn a_session_saved_and_reopened_gives_the_same_figures() {
+    let desk = Desk::new();
+    let file = desk.path("pump.session.ron");
+    let mut screen = desk.open("pump.wav");
+    screen.type_number("Start", "2");
+    screen.menu("Panes", "Remove this pane");
+    screen.settle();
+    let (before, current) = screen.harness.state().reading().map(|(r, c)| (r.clone(), c)).expect("a reading");
+    assert!(current && screen.harness.state().is_unsaved());
+    desk.picker.paths.lock().unwrap().push_back(file.clone());
+    screen.key(Modifiers::COMMAND, Key::S);
+    screen.wait("it is not saved", |b| !b.is_unsaved());
+    assert!(file.is_file());
+    assert!(screen.shows("Saved in"));
+    assert_eq!(desk.picker.asked.lock().unwrap().as_slice(), [Ask::SaveSession("pump.session.ron".to_owned())]);
+    let session = screen.session();
+    drop(screen);
+
+    let screen = desk.open("pump.session.ron");
+    let (after, current) = screen.harness.state().reading().expect("a reading");
+    assert!(current);
+    assert_eq!(after.tones, before.tones, "to the last digit");
+    assert_eq!((screen.session().segments, screen.session().panes), (session.segments, session.panes));
+    assert!(!screen.harness.state().is_unsaved());
+}
+
+#[test]
+fn a_moved_capture_is_asked_for_and_a_changed_one_is_said_to_be_changed() {
+    let desk = Desk::new();
+    let file = desk.path("pump.session.ron");
+    let mut screen = desk.open("pump.wav");
+    desk.picker.paths.lock().unwrap().push_back(file.clone());
+    screen.key(Modifiers::COMMAND, Key::S);
+    screen.wait("it is not saved", |_| file.is_file());
+    screen.settle();
+    drop(screen);
+    std::fs::create_dir(desk.path("elsewhere")).unwrap();
+    std::fs::rename(desk.path("pump.wav"), desk.path("elsewhere/pump.wav")).unwrap();
+
+    let mut screen = desk.bare();
+    screen.harness.state_mut().open(&file);
+    screen.settle();
+    assert!(screen.shows("Path of the capture"));
+    screen.harness.get_by_label("Path of the capture").click();
+    screen.harness.step();
+    let there = desk.path("elsewhere/pump.wav");
+    screen.harness.get_by_label("Path of the capture").type_text(&there.to_string_lossy());
+    screen.harness.step();
+    screen.click("Use this path");
+    screen.settle();
+    assert!(screen.shows("has moved and is the same"));
+    drop(screen);
+
+    write_capture(&desk.path("pump.wav"), 0.5);
+    let mut screen = desk.bare();
+    screen.harness.state_mut().open(&file);
+    screen.settle();
+    assert!(screen.harness.state().session().is_none(), "a changed capture is not used silently");
+    assert!(screen.harness.query_by_label("Compute anew").is_some());
+    screen.click("Compute anew");
+    screen.settle();
+    assert!(screen.harness.state().is_unsaved());
+}
+
+#[test]
+fn unsaved_changes_are_asked_about_before_another_capture() {
+    let desk = Desk::new();
+    write_capture(&desk.path("other.wav"), 0.5);
+    let mut screen = desk.open("pump.wav");
+    screen.type_number("Start", "3");
+    let path = desk.path("other.wav");
+    screen.harness.state_mut().open(&path);
+    screen.harness.step();
+    screen.harness.step();
+    screen.click("Cancel");
+    assert!(screen.session().capture.path.ends_with("pump.wav"));
+    screen.harness.state_mut().open(&path);
+    screen.harness.step();
+    screen.harness.step();
+    screen.click("Discard");
+    screen.settle();
+    assert!(screen.session().capture.path.ends_with("other.wav"));
+}
+
+#[test]
+fn work_lost_in_a_crash_is_offered_again() {
+    let desk = Desk::new();
+    let mut screen = desk.open("pump.wav");
+    screen.type_number("Start", "5");
+    let start = screen.session().segments[0].span.start;
+    let kept = || std::fs::read_dir(desk.path("recovery")).map_or(0, Iterator::count);
+    screen.wait("nothing is kept", |_| kept() >= 2);
+    std::thread::sleep(std::time::Duration::from_millis(200));
+    // The program is gone without a regular end.
+    drop(screen);
+    let mut screen = desk.bare();
+    screen.wait("nothing is offered", |_| true);
+    for _ in 0..200 {
+        screen.harness.step();
+        if screen.shows("An earlier run ended without saving") {
+            break;
+        }
+        std::thread::sleep(std::time::Duration::from_millis(10));
+    }
+    screen.harness.get_by_label_contains("Recover pump.wav").click();
+    screen.harness.step();
+    screen.settle();
+    assert_eq!(screen.session().segments[0].span.start, start);
+    assert!(screen.harness.state().is_unsaved());
+}
