@@ -11,7 +11,7 @@ use super::{Services, Workbench};
 #[non_exhaustive]
 pub enum RunError {
     /// There is no display, or no OpenGL on it.
-    #[error("no window can be opened here ({reason}): 'panewise read CAPTURE' does the main job without one")]
+    #[error("no window can be opened here ({reason})")]
     NoWindow {
         /// What the system said, in one line.
         reason: String,

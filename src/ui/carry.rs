@@ -102,7 +102,8 @@ impl Workbench {
         let (Some(desk), Some(threads)) = (&self.desk, &self.threads) else { return };
         let path = crate::session::with_extension(path);
         let (number, session) = (desk.number, desk.session.clone());
-        let figures: Option<crate::session::Figures> = None;
+        let current = desk.reading().filter(|_| desk.latest.is_current());
+        let figures = current.map(|reading| crate::reading::figures_of(reading));
         let (capture, watch) = (Arc::clone(&desk.capture), Watch::new());
         self.saving = true;
         threads.files.run(move |tell| tell(files::save(number, &path, session, figures.as_ref(), &capture, &watch)));
