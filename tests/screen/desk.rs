@@ -150,10 +150,15 @@ impl Screen<'_> {
 
     /// Opens a menu and clicks one of its entries.
     pub(crate) fn menu(&mut self, menu: &str, entry: &str) {
-        self.harness.get_by_label(menu).click();
+        self.harness.get_by_role_and_label(egui::Role::Button, menu).click();
         self.harness.step();
         self.harness.step();
-        self.harness.get_by_label_contains(entry).click();
+        let entry = entry.to_owned();
+        let found = self.harness.get_by(move |node| {
+            let acts = matches!(node.role(), egui::Role::Button | egui::Role::RadioButton);
+            acts && node.label().is_some_and(|label| label.starts_with(&entry))
+        });
+        found.click();
         self.harness.step();
         self.harness.step();
     }

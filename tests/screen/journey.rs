@@ -78,7 +78,7 @@ fn a_segment_is_marked_by_typing_and_nudged_by_keys() {
     screen.type_number("End", "12");
     assert_eq!(span(&screen), (4 * u64::from(RATE_HZ), 12 * u64::from(RATE_HZ)));
     assert!(
-        screen.harness.query_all_by(|n| n.value().is_some_and(|v| v.contains("lines every 0.1250 Hz"))).count() == 1
+        screen.harness.query_all_by(|n| n.value().is_some_and(|v| v.contains("lines every 0.1250 Hz"))).count() >= 1
     );
     screen.harness.get_by_role_and_label(Role::Slider, "Segment start").focus();
     screen.harness.step();
@@ -94,7 +94,7 @@ fn a_pane_is_added_its_parameter_changed_and_the_curve_follows() {
     let mut screen = desk.open("pump.wav");
     assert_eq!(screen.session().panes.len(), 6);
     screen.click("Add a window");
-    screen.harness.get_by_role_and_label(Role::Button, "kaiser").click();
+    screen.harness.get_by_role_and_label(Role::Button, "kaiser").click_accesskit();
     screen.harness.step();
     screen.settle();
     let session = screen.session();

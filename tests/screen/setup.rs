@@ -40,7 +40,7 @@ fn menus_show_their_keys_and_f1_lists_them() {
     screen.key(Modifiers::NONE, Key::Escape);
     assert!(screen.harness.query_by_label("Fit to the picked tone").is_none());
     screen.menu("Help", "About");
-    assert!(screen.harness.query_all_by(|n| n.value().is_some_and(|v| v.contains("qualified people"))).count() == 1);
+    assert!(screen.harness.query_all_by(|n| n.value().is_some_and(|v| v.contains("qualified people"))).count() >= 1);
 }
 
 #[test]
