@@ -175,6 +175,8 @@ mod tests {
         Capture {
             path: PathBuf::from("pump.wav"),
             format: "test".to_owned(),
+            bits_per_sample: None,
+            truncated: false,
             source: Arc::new(Stored::new(100.0, channels, vec![0.0; frames * channels])),
             doubts: Vec::new(),
         }

@@ -1,6 +1,8 @@
 //! The job walked through the screen by accessible names and keys, without a display: each step is checked on the
 //! document and on what is shown.
 
+#![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used)]
+
 mod desk;
 mod journey;
 mod keeping;

@@ -109,7 +109,7 @@ mod tests {
     #[test]
     fn every_peak_is_on_the_stroke() {
         let columns: Vec<Extent> =
-            (0..50).map(|i| Extent { min: -100.0 + i as f32, max: if i == 31 { 0.0 } else { -80.0 } }).collect();
+            (0..50).map(|i| Extent { min: -100.0 - (i % 7) as f32, max: if i == 31 { 0.0 } else { -80.0 } }).collect();
         let level = Axis::linear(-120.0, 0.0, 240.0, 0.0);
         let drawn = strokes(&columns, (10.0, 1.0), &level, 0.0);
         assert_eq!(drawn.len(), 1);

@@ -6,17 +6,21 @@ use eframe::egui::{Pos2, Rect, Vec2, pos2};
 const AWAY: f32 = 6.0;
 
 /// Finds a place for each label, the first served first: beside its mark, inside `area`, clear of the labels placed
-/// before it, of all marks and of `taken`. `None` where there is no such place.
+/// before it, of marks and of `taken`. `None` where there is no such place.
 pub(crate) fn place(area: Rect, marks: &[(Pos2, Vec2)], taken: &[Rect]) -> Vec<Option<Rect>> {
     let mut busy: Vec<Rect> = taken.to_vec();
     let spots: Vec<Rect> = marks.iter().map(|m| Rect::from_center_size(m.0, Vec2::splat(7.0))).collect();
     let mut placed = Vec::with_capacity(marks.len());
     for (i, &(mark, size)) in marks.iter().enumerate() {
-        let found = candidates(mark, size).into_iter().find(|rect| {
+        let free = |rect: &Rect| {
             area.contains_rect(*rect)
                 && !busy.iter().any(|b| b.intersects(rect.expand(1.0)))
-                && !spots.iter().enumerate().any(|(j, s)| j != i && s.intersects(*rect))
-        });
+                && !spots.iter().take(i).any(|s| s.intersects(*rect))
+        };
+        let clear = |rect: &Rect| free(rect) && !spots.iter().skip(i + 1).any(|s| s.intersects(*rect));
+        let found = candidates(mark, size).into_iter().find(clear);
+        // In a crowd a label may stand on marks that come after its own.
+        let found = found.or_else(|| candidates(mark, size).into_iter().find(free));
         busy.extend(found);
         placed.push(found);
     }
