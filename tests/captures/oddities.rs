@@ -8,7 +8,7 @@ use panewise::signal::{SignalError, Span, Watch, read_channel};
 use crate::truth::folder;
 
 /// A chunk with its length, padded to even.
-fn chunk(id: &[u8; 4], body: &[u8]) -> Vec<u8> {
+fn chunk(id: &[u8], body: &[u8]) -> Vec<u8> {
     let mut bytes = id.to_vec();
     bytes.extend((body.len() as u32).to_le_bytes());
     bytes.extend(body);
