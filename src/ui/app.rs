@@ -13,7 +13,7 @@ pub enum RunError {
     /// There is no display, or no OpenGL on it.
     #[error("no window can be opened here ({reason})")]
     NoWindow {
-        /// What the system said, in one line.
+        /// What is missing, in a few words.
         reason: String,
     },
 }
@@ -35,10 +35,20 @@ pub fn run(start: Option<PathBuf>) -> Result<(), RunError> {
     };
     let options = eframe::NativeOptions { viewport, ..Default::default() };
     let made = eframe::run_native("panewise", options, Box::new(move |cc| Ok(Box::new(App::new(&cc.egui_ctx, start)))));
-    made.map_err(|error| {
-        let reason = error.to_string().lines().next().unwrap_or("no reason given").to_owned();
-        RunError::NoWindow { reason }
-    })
+    made.map_err(|error| RunError::NoWindow { reason: reason(&error) })
+}
+
+/// Why there is no window, in a few words: what the system itself says names lines of its source.
+fn reason(error: &eframe::Error) -> String {
+    match error {
+        eframe::Error::WinitEventLoop(_) | eframe::Error::Winit(_) => "there is no display".to_owned(),
+        eframe::Error::NoGlutinConfigs(..) | eframe::Error::Glutin(_) | eframe::Error::OpenGL(_) => {
+            "the display has no OpenGL".to_owned()
+        }
+        other @ eframe::Error::AppCreation(_) => {
+            other.to_string().lines().next().unwrap_or("no reason given").to_owned()
+        }
+    }
 }
 
 struct App {
