@@ -14,17 +14,6 @@ pub enum Family {
     Design,
 }
 
-impl Family {
-    /// Its name in tables and files.
-    pub fn label(self) -> &'static str {
-        match self {
-            Self::CosineSum => "cosine-sum",
-            Self::Shape => "shape",
-            Self::Design => "design",
-        }
-    }
-}
-
 /// What a window's parameter means and where it may lie.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct ParameterSpec {

@@ -67,14 +67,6 @@ fn text_goes_round() {
 }
 
 #[test]
-fn a_list_keeps_numbers_with_their_window() {
-    let texts: Vec<String> =
-        Window::parse_list("hann,taylor=4,30, kaiser=8.6").unwrap().iter().map(Window::to_string).collect();
-    assert_eq!(texts, ["hann", "taylor=4,30", "kaiser=8.6"]);
-    assert!(Window::parse_list("hann,,blackman").is_err());
-}
-
-#[test]
 fn what_cannot_be_had_says_what_to_do() {
     for (text, part) in [
         ("", "no window is called ''"),

@@ -50,25 +50,6 @@ impl Window {
         let parameters = if parameters.is_empty() { entry.default_parameters() } else { parameters.to_vec() };
         Self::new(entry, parameters)
     }
-
-    /// Windows written one after another with commas between, as in `hann,kaiser=8.6,taylor=4,30`: a part that is a
-    /// number belongs to the window before it.
-    ///
-    /// # Errors
-    /// As [`Window::parse`], for the first that cannot be had.
-    pub fn parse_list(text: &str) -> Result<Vec<Self>, WindowError> {
-        let mut written: Vec<String> = Vec::new();
-        for part in text.split(',') {
-            match written.last_mut() {
-                Some(last) if part.trim().parse::<f64>().is_ok() => {
-                    last.push(',');
-                    last.push_str(part);
-                }
-                _ => written.push(part.to_owned()),
-            }
-        }
-        written.iter().map(|one| Self::parse(one)).collect()
-    }
 }
 
 fn find(name: &str) -> Result<&'static Entry, WindowError> {
