@@ -72,6 +72,13 @@ impl Source for WavSource {
         self.layout.frames
     }
 
+    fn bits_per_sample(&self) -> Option<u32> {
+        match self.layout.encoding {
+            Encoding::Integer(bits) => Some(u32::from(bits)),
+            Encoding::Float32 => None,
+        }
+    }
+
     fn read_frames(&self, start: u64, out: &mut [f64]) -> Result<(), SignalError> {
         let end = start.saturating_add(out.len().div_ceil(self.n_channels()) as u64);
         if end > self.layout.frames {

@@ -97,8 +97,10 @@ pub(super) fn open_capture_of(session: &Session, path: &Path) -> Result<(Capture
     Ok((capture, state, now))
 }
 
+/// What was doubtful on opening. A capture that holds less than it claims says so in one of its sentences.
 fn doubts(capture: &Capture) -> Vec<Warning> {
-    capture.doubts.iter().map(|text| Warning { code: "capture", text: text.clone() }).collect()
+    let code = if capture.truncated { "truncated" } else { "capture" };
+    capture.doubts.iter().map(|text| Warning { code, text: text.clone() }).collect()
 }
 
 /// The Reading that the document asks for.

@@ -4,6 +4,7 @@ use std::sync::Arc;
 
 use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
 use super::{Request, rows};
+use crate::capture::segment_doubts;
 use crate::signal::{Cancelled, Removed, SignalError, Source, Span, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
 use crate::tone::{Noise, Search, search};
@@ -91,7 +92,8 @@ pub fn analyse_curves(source: &dyn Source, request: &Request, watch: &Watch) -> 
         return Err(ReadingError::NoRate { rate_hz });
     }
     let mut samples = samples_of(source, request, watch)?;
-    let doubts = Vec::new();
+    let doubts = segment_doubts(&samples, source.bits_per_sample());
+    let doubts = doubts.into_iter().map(|(code, text)| Warning { code, text }).collect();
     let removed = remove(&mut samples, rate_hz, request.removal);
     let spectra = Arc::new(Spectra::new(samples.into(), rate_hz, &request.windows, watch)?);
     Ok(Segment { spectra, removed, doubts })

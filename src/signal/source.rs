@@ -59,6 +59,11 @@ pub trait Source: Send + Sync + Debug {
         None
     }
 
+    /// Bits of a sample where samples are integers, whose full scale 2^(bits-1) reads as 1.0; none for any others.
+    fn bits_per_sample(&self) -> Option<u32> {
+        None
+    }
+
     /// Fills `out` with frames from `start` on, interleaved: `out.len()` is a whole number of frames.
     ///
     /// # Errors

@@ -190,3 +190,22 @@ fn without_a_display_the_capture_is_read_as_text() {
     let bad = shop.run(&["missing.wav"]).refused();
     assert!(bad.contains("missing.wav"), "{bad}");
 }
+
+#[test]
+fn what_is_wrong_with_the_samples_is_told_beside_the_figures() {
+    let shop = Shop::new();
+    let codes = |name: &str| {
+        let reading = shop.run(&["read", name, "--json", "--segment", "0..2"]).json();
+        let warnings = reading["warnings"].as_array().unwrap();
+        warnings.iter().map(|w| w["code"].as_str().unwrap().to_owned()).collect::<Vec<_>>()
+    };
+    let whole = shop.pump("pump.wav");
+    assert_eq!(codes("pump.wav"), ["no-scale"]);
+    let mut cut = bytes(&whole);
+    cut.truncate(cut.len() / 2);
+    std::fs::write(shop.path("cut.wav"), cut).unwrap();
+    assert_eq!(codes("cut.wav"), ["truncated", "no-scale"]);
+    // Three times full scale, cut off at the top code by the recorder.
+    shop.pump_with("loud.wav", 3.0);
+    assert_eq!(codes("loud.wav")[0], "clipping");
+}

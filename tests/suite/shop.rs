@@ -44,7 +44,7 @@ impl Shop {
         };
         let mut writer = hound::WavWriter::create(&path, spec).unwrap();
         for i in 0..8 * RATE_HZ {
-            let sample = value(i) * f64::from(1 << 23);
+            let sample = value(i).clamp(-1.0, 1.0 - 1.0 / f64::from(1 << 23)) * f64::from(1 << 23);
             writer.write_sample(sample.round() as i32).unwrap();
             writer.write_sample((sample / 2.0).round() as i32).unwrap();
         }
