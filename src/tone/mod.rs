@@ -4,10 +4,12 @@ mod fit;
 mod lone;
 mod search;
 mod state;
+mod steadiness;
 mod threshold;
 
 pub use fit::{JointFit, SteadyTone, UnitUncertainty, fit_jointly};
 pub use lone::{LoneReading, PaneView};
 pub use search::{FoundTone, Noise, Search, search};
 pub use state::{Disturbance, State};
+pub use steadiness::suggest_steady;
 pub use threshold::detection_threshold;

@@ -8,4 +8,5 @@ mod samples;
 
 mod contents;
 mod oddities;
+mod steady;
 mod truth;
