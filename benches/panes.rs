@@ -27,7 +27,7 @@ fn compare(n: usize) {
     let terms: Vec<&[f64]> = windows.iter().map(|w| w.cosine_terms().unwrap()).collect();
     let plan = RealFftPlanner::<f64>::new().plan_fft_forward(n);
     let (mut input, mut output, mut scratch) = (plan.make_input_vec(), plan.make_output_vec(), plan.make_scratch_vec());
-    let lines = transform(samples.clone());
+    let lines = transform(&samples);
     let shared: std::sync::Arc<[f64]> = samples.clone().into();
     // The plan for this length is made once, as it is while the same segment is looked at.
     let rows: &mut [(&str, &mut dyn FnMut())] = &mut [
@@ -39,7 +39,7 @@ fn compare(n: usize) {
         ("six panes from it", &mut || {
             black_box(cosine_pane_powers(&lines, &terms));
         }),
-        ("transform and six panes", &mut || {
+        ("transform and six panes, as when an edge is dragged", &mut || {
             black_box(Spectra::new(shared.clone(), 8192.0, &windows, &Watch::new()).unwrap());
         }),
         ("dense transform", &mut || {

@@ -4,7 +4,7 @@ use std::sync::LazyLock;
 
 use realfft::num_complex::Complex64;
 
-use super::transform::{Transform, transform};
+use super::transform::{Transform, transform_in_place};
 
 /// Lines of the doubled transform that take part in one value.
 const TAPS: usize = 16;
@@ -34,11 +34,10 @@ impl Dense {
     pub fn of(samples: &[f64]) -> Self {
         let n = samples.len().max(1);
         let middle = (n / 2) as f64;
-        let mut doubled: Vec<f64> = Vec::with_capacity(2 * n);
         let t = |i: usize| (i as f64 - middle) / (2 * n) as f64;
-        doubled.extend(samples.iter().enumerate().map(|(i, x)| x / transform_of_phi(t(i))));
+        let mut doubled: Vec<f64> = samples.iter().enumerate().map(|(i, x)| x / transform_of_phi(t(i))).collect();
         doubled.resize(2 * n, 0.0);
-        Self { n, doubled: transform(doubled) }
+        Self { n, doubled: transform_in_place(&mut doubled) }
     }
 
     /// Samples in the segment, N.

@@ -2,6 +2,7 @@
 //!
 //! Everything here is in the samples' own normalised scale: a tone of peak amplitude A stands at |Y| = A·S1/2.
 
+mod buffers;
 mod dense;
 mod floor;
 mod panes;

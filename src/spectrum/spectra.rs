@@ -4,6 +4,7 @@ use std::sync::{Arc, OnceLock};
 
 use realfft::num_complex::Complex64;
 
+use super::buffers;
 use super::{Dense, Transform, cosine_pane_powers, sampled_pane_power, transform};
 use crate::signal::{Cancelled, Extent, Pyramid, Watch};
 use crate::window::{Kernel, Sums, Window};
@@ -50,7 +51,7 @@ impl Spectra {
     /// # Errors
     /// [`Cancelled`] where the watch says so.
     pub fn new(samples: Arc<[f64]>, sample_rate_hz: f64, windows: &[Window], watch: &Watch) -> Result<Self, Cancelled> {
-        let transform = Arc::new(transform(samples.to_vec()));
+        let transform = Arc::new(transform(&samples));
         watch.check()?;
         let panes = pane_lines(&samples, &transform, windows, watch)?;
         let dense = Arc::default();
@@ -189,6 +190,12 @@ impl Spectra {
     /// The dense transform of the segment as it is, under no window.
     pub fn dense(&self) -> &Dense {
         self.dense.get_or_init(|| Dense::of(&self.samples))
+    }
+}
+
+impl Drop for PaneLines {
+    fn drop(&mut self) {
+        buffers::REAL.give_back(std::mem::take(&mut self.power));
     }
 }
 

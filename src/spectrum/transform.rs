@@ -5,6 +5,8 @@ use std::sync::{Arc, Mutex, PoisonError};
 use realfft::num_complex::Complex64;
 use realfft::{RealFftPlanner, RealToComplex};
 
+use super::buffers;
+
 /// The lines X\[0\] to X\[N/2\] of X\[k\] = Σ_n x\[n\] e^{-j2πkn/N}, of N real samples.
 #[derive(Debug, Clone)]
 pub struct Transform {
@@ -39,20 +41,36 @@ impl Transform {
     }
 }
 
+impl Drop for Transform {
+    fn drop(&mut self) {
+        buffers::COMPLEX.give_back(std::mem::take(&mut self.lines));
+    }
+}
+
 /// The real transform of `samples`, of any length; a length is never cut or padded.
 ///
 /// No samples at all give one line of 0.
-pub fn transform(mut samples: Vec<f64>) -> Transform {
+pub fn transform(samples: &[f64]) -> Transform {
+    let mut work = buffers::REAL.take(samples.len());
+    work.copy_from_slice(samples);
+    let transform = transform_in_place(&mut work);
+    buffers::REAL.give_back(work);
+    transform
+}
+
+/// As [`transform`], using up the samples.
+pub(super) fn transform_in_place(samples: &mut [f64]) -> Transform {
     let n = samples.len();
     if n == 0 {
         return Transform { n: 1, lines: vec![Complex64::ZERO] };
     }
     let plan = plan(n);
-    let mut lines = plan.make_output_vec();
-    let mut scratch = plan.make_scratch_vec();
-    // The buffers come from the plan, so their lengths fit; the only other error is about inverse transforms.
-    let done = plan.process_with_scratch(&mut samples, &mut lines, &mut scratch);
+    let mut lines = buffers::COMPLEX.take(n / 2 + 1);
+    let mut scratch = buffers::COMPLEX.take(plan.get_scratch_len());
+    // The buffers have the plan's lengths; the only other error is about inverse transforms.
+    let done = plan.process_with_scratch(samples, &mut lines, &mut scratch);
     debug_assert!(done.is_ok(), "{done:?}");
+    buffers::COMPLEX.give_back(scratch);
     Transform { n, lines }
 }
 
@@ -101,7 +119,7 @@ mod tests {
     fn every_length_from_1_to_300_equals_the_definition() {
         for n in 1..=300 {
             let samples = some_samples(n);
-            let transform = transform(samples.clone());
+            let transform = transform(&samples);
             assert_eq!(transform.lines().len(), n / 2 + 1);
             for k in 0..n {
                 let error = (transform.at(k as i64) - slow(&samples, k)).norm();
@@ -113,12 +131,12 @@ mod tests {
     #[test]
     fn lines_repeat_and_mirror() {
         for n in [1, 2, 7, 8] {
-            let transform = transform(some_samples(n));
+            let transform = transform(&some_samples(n));
             for k in -20..20 {
                 assert_eq!(transform.at(k), transform.at(k + n as i64));
                 assert!((transform.at(k) - transform.at(-k).conj()).norm() < 1e-12);
             }
         }
-        assert_eq!(super::transform(Vec::new()).at(3), Complex64::ZERO);
+        assert_eq!(super::transform(&[]).at(3), Complex64::ZERO);
     }
 }
