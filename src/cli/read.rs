@@ -10,6 +10,7 @@ use crate::reading::{Reading, ReadingError, Request, Warning, analyse, figures_o
 use crate::report;
 use crate::session::{self, CaptureRef, CaptureState, Command, Pane, PaneId, Session};
 use crate::signal::{Span, Watch};
+use crate::tone::suggest_steady;
 use crate::units::{Factor, Quantity, Scale, Unit};
 
 /// A capture that is open, and the document that says what to read of it.
@@ -219,7 +220,7 @@ fn mark_steady(opened: &mut Opened) -> Result<(), CliError> {
     }
     let session = &mut opened.session;
     let (rate_hz, frames) = (session.sample_rate_hz(), session.capture.frames);
-    let steady = suggest(opened.capture.source.as_ref(), session.channel, rate_hz)
+    let steady = suggest_steady(opened.capture.source.as_ref(), session.channel, rate_hz, &Watch::new())
         .map_err(|reason| CliError::Signal { path: PathBuf::from(&session.capture.path), reason })?;
     let span = steady.unwrap_or(Span { start: 0, samples: frames });
     Command::MoveSegment(session.current, span).apply(session);
@@ -230,13 +231,4 @@ fn mark_steady(opened: &mut Opened) -> Result<(), CliError> {
         format!("no segment was given: {which} was read, {from_s:.3}..{to_s:.3} s ({}n..{}n)", span.start, span.end());
     opened.warnings.push(Warning { code: "assumed-segment", text });
     Ok(())
-}
-
-fn suggest(
-    source: &dyn crate::signal::Source,
-    channel: usize,
-    rate_hz: f64,
-) -> Result<Option<Span>, crate::signal::SignalError> {
-    let _ = (source, channel, rate_hz);
-    Ok(None)
 }
