@@ -54,11 +54,6 @@ pub trait Source: Send + Sync + Debug {
     /// How many frames can be read.
     fn n_frames(&self) -> u64;
 
-    /// Bits of an integer sample, where samples are integers: full scale is then 2^(bits-1) steps.
-    fn integer_bits(&self) -> Option<u32> {
-        None
-    }
-
     /// Bits of a sample where samples are integers, whose full scale 2^(bits-1) reads as 1.0; none for any others.
     fn bits_per_sample(&self) -> Option<u32> {
         None

@@ -1,28 +1,19 @@
 //! The transform between its lines: Y(ν) at any real ν in constant time.
 
-use std::sync::LazyLock;
-
 use realfft::num_complex::Complex64;
 
 use super::transform::{Transform, transform_in_place};
-
-/// Lines of the doubled transform that take part in one value.
-const TAPS: usize = 16;
-
-/// Shape of the interpolating function, π·TAPS·(1 - 1/(2σ)) for the doubling σ = 2 (Fessler and Sutton 2003).
-const BETA: f64 = std::f64::consts::PI * TAPS as f64 * 0.75;
+use crate::window::taps::{N_TAPS, tap_derivatives, taps, transform_of_taps};
 
 /// A transform that can be evaluated at any real frequency.
 ///
-/// X(ν) = Σ_n x\[n\] e^{-j2πνn/N} is interpolated from a transform of twice the length with the Kaiser-Bessel function
-/// φ(u) = I0(β√(1-(2u/T)²)), T = 16 taps, after the samples were divided by the transform of φ; the error is about
-/// 1e-14 of Σ|x| (a test holds 1e-13). Windowing by a cosine sum shifts whole lines, and so needs no transform of its
-/// own.
+/// X(ν) = Σ_n x\[n\] e^{-j2πνn/N} is interpolated from a transform of twice the length (see the taps of the window
+/// floor), after the samples were divided by the taps' own transform; the error is about 1e-14 of Σ|x| (a test holds
+/// 1e-13). Windowing by a cosine sum shifts whole lines, and so needs no transform of its own.
 ///
 /// # Reference
 /// Fessler and Sutton, Nonuniform fast Fourier transforms using min-max interpolation, IEEE Trans. Signal Processing
-/// 51(2), 2003; Potts, Steidl and Tasche, Fast Fourier transforms for nonequispaced data, 2001 (Kaiser-Bessel
-/// functions); both from memory.
+/// 51(2), 2003 (from memory).
 #[derive(Debug, Clone)]
 pub struct Dense {
     n: usize,
@@ -35,7 +26,7 @@ impl Dense {
         let n = samples.len().max(1);
         let middle = (n / 2) as f64;
         let t = |i: usize| (i as f64 - middle) / (2 * n) as f64;
-        let mut doubled: Vec<f64> = samples.iter().enumerate().map(|(i, x)| x / transform_of_phi(t(i))).collect();
+        let mut doubled: Vec<f64> = samples.iter().enumerate().map(|(i, x)| x / transform_of_taps(t(i))).collect();
         doubled.resize(2 * n, 0.0);
         Self { n, doubled: transform_in_place(&mut doubled) }
     }
@@ -56,9 +47,9 @@ impl Dense {
         let terms = &terms[..terms.len().min(MOST_TERMS)];
         let reach = 2 * terms.len().saturating_sub(1);
         let place = 2.0 * nu;
-        let first = place.floor() as i64 - TAPS as i64 / 2 + 1;
-        let mut lines = [Complex64::ZERO; TAPS + 4 * MOST_TERMS];
-        let lines = &mut lines[..TAPS + 2 * reach];
+        let first = place.floor() as i64 - N_TAPS as i64 / 2 + 1;
+        let mut lines = [Complex64::ZERO; N_TAPS + 4 * MOST_TERMS];
+        let lines = &mut lines[..N_TAPS + 2 * reach];
         self.doubled.copy_from(first - reach as i64, lines);
         let weights = taps(place - place.floor());
         // The samples were counted from the middle for φ, from the first one for the transform.
@@ -75,7 +66,7 @@ impl Dense {
 }
 
 /// How many moments [`Dense::moments_at`] gives.
-pub const MOMENTS: usize = 3;
+pub const MOMENTS: usize = crate::window::taps::N_DERIVATIVES;
 
 impl Dense {
     /// Σ_n x\[n\] m^p e^{-j2πνm/N} for p = 0, 1, 2, with m = n - (N-1)/2 counted from the segment's middle.
@@ -84,8 +75,8 @@ impl Dense {
     /// in its place. Errors stay below 1e-13, 3e-12 and 1e-9 of Σ|x|·(N/2)^p.
     pub fn moments_at(&self, nu: f64) -> [Complex64; MOMENTS] {
         let place = 2.0 * nu;
-        let first = place.floor() as i64 - TAPS as i64 / 2 + 1;
-        let mut lines = [Complex64::ZERO; TAPS];
+        let first = place.floor() as i64 - N_TAPS as i64 / 2 + 1;
+        let mut lines = [Complex64::ZERO; N_TAPS];
         self.doubled.copy_from(first, &mut lines);
         let n = self.n as f64;
         let middle = self.n / 2;
@@ -115,32 +106,6 @@ impl Dense {
     }
 }
 
-/// φ and its first two derivatives at the sixteen taps around a place that lies `part` past a line.
-fn tap_derivatives(part: f64) -> [[f64; TAPS]; MOMENTS] {
-    static SERIES_OF_DERIVATIVES: LazyLock<[[[f64; TAPS]; SERIES]; MOMENTS]> = LazyLock::new(|| {
-        let of_taps = series_of_taps();
-        let first = differentiated(&of_taps);
-        let second = differentiated(&first);
-        [of_taps, first, second]
-    });
-    std::array::from_fn(|order| clenshaw(&SERIES_OF_DERIVATIVES[order], part))
-}
-
-/// The Chebyshev series of the derivative with respect to the part of a line (half of what the series runs over).
-fn differentiated(series: &[[f64; TAPS]; SERIES]) -> [[f64; TAPS]; SERIES] {
-    let mut derivative = [[0.0; TAPS]; SERIES];
-    for order in (1..SERIES).rev() {
-        for tap in 0..TAPS {
-            let above = if order + 1 < SERIES { derivative[order + 1][tap] } else { 0.0 };
-            derivative[order - 1][tap] = above + 2.0 * order as f64 * series[order][tap];
-        }
-    }
-    for tap in 0..TAPS {
-        derivative[0][tap] /= 2.0;
-    }
-    derivative.map(|row| row.map(|c| 2.0 * c))
-}
-
 /// Coefficients of a cosine sum that are used.
 const MOST_TERMS: usize = 16;
 
@@ -153,74 +118,6 @@ fn windowed_line(lines: &[Complex64], terms: &[f64]) -> Complex64 {
         sum += (lines[middle - 2 * m] + lines[middle + 2 * m]) * half;
     }
     sum
-}
-
-/// Terms of the Chebyshev series of φ over one line of the doubled transform; the last are below 1e-17.
-const SERIES: usize = 24;
-
-/// φ at the sixteen taps around a place that lies `part` (0 to 1) past a line.
-fn taps(part: f64) -> [f64; TAPS] {
-    static SERIES_OF_TAPS: LazyLock<[[f64; TAPS]; SERIES]> = LazyLock::new(series_of_taps);
-    clenshaw(&SERIES_OF_TAPS, part)
-}
-
-/// Clenshaw's recurrence, all taps side by side.
-fn clenshaw(series: &[[f64; TAPS]; SERIES], part: f64) -> [f64; TAPS] {
-    let x = 2.0 * part - 1.0;
-    let (mut next, mut after) = ([0.0; TAPS], [0.0; TAPS]);
-    for coefficients in series.iter().skip(1).rev() {
-        for tap in 0..TAPS {
-            let value = 2.0 * x * next[tap] - after[tap] + coefficients[tap];
-            after[tap] = next[tap];
-            next[tap] = value;
-        }
-    }
-    std::array::from_fn(|tap| x * next[tap] - after[tap] + series[0][tap])
-}
-
-fn series_of_taps() -> [[f64; TAPS]; SERIES] {
-    let angle = |j: usize| std::f64::consts::PI * (j as f64 + 0.5) / SERIES as f64;
-    let value = |tap: usize, j: usize| {
-        let part = f64::midpoint(angle(j).cos(), 1.0);
-        phi(part + TAPS as f64 / 2.0 - 1.0 - tap as f64)
-    };
-    std::array::from_fn(|order| {
-        let norm = if order == 0 { 1.0 } else { 2.0 } / SERIES as f64;
-        std::array::from_fn(|tap| {
-            norm * (0..SERIES).map(|j| value(tap, j) * (order as f64 * angle(j)).cos()).sum::<f64>()
-        })
-    })
-}
-
-/// φ(u) = I0(β√(1-(2u/T)²)) / I0(β).
-fn phi(u: f64) -> f64 {
-    let x = 2.0 * u / TAPS as f64;
-    let root = (1.0 - x * x).max(0.0).sqrt();
-    scaled_i0(BETA * root) * (BETA * (root - 1.0)).exp() / *SCALED_I0_OF_BETA
-}
-
-/// ∫φ(u) e^{-j2πut} du = T sinh(√(β²-(πTt)²)) / (√(β²-(πTt)²) I0(β)), |t| up to 1/4.
-fn transform_of_phi(t: f64) -> f64 {
-    let turn = std::f64::consts::PI * TAPS as f64 * t;
-    let root = (BETA * BETA - turn * turn).sqrt();
-    let sinh = ((root - BETA).exp() - (-root - BETA).exp()) / 2.0;
-    TAPS as f64 * sinh / (root * *SCALED_I0_OF_BETA)
-}
-
-static SCALED_I0_OF_BETA: LazyLock<f64> = LazyLock::new(|| scaled_i0(BETA));
-
-/// I0(x) e^{-x} for x from 0 to a few dozen, by the ascending series of positive terms (Abramowitz and Stegun 9.6.12).
-fn scaled_i0(x: f64) -> f64 {
-    let quarter = x * x / 4.0;
-    let (mut term, mut sum) = (1.0, 1.0);
-    for k in 1..200 {
-        term *= quarter / f64::from(k * k);
-        sum += term;
-        if term < 1e-17 * sum {
-            break;
-        }
-    }
-    sum * (-x).exp()
 }
 
 #[cfg(test)]
@@ -292,14 +189,6 @@ mod tests {
                     assert!(error < [1e-13, 3e-12, 1e-9][p as usize], "N = {n}, ν = {nu}, p = {p}: {error:e}");
                 }
             }
-        }
-    }
-
-    /// Abramowitz and Stegun, Handbook of Mathematical Functions, table 9.8: e^{-x} I0(x) at 1, 5 and 10 (from memory).
-    #[test]
-    fn the_bessel_function_meets_its_table() {
-        for (x, value) in [(0.0, 1.0), (1.0, 0.465_759_607_6), (5.0, 0.183_540_812_6), (10.0, 0.127_833_337_2)] {
-            assert!((scaled_i0(x) - value).abs() < 1e-9, "{x}: {}", scaled_i0(x));
         }
     }
 }

@@ -34,9 +34,8 @@ struct PaneLines {
     power: Vec<f64>,
     pyramid: OnceLock<Pyramid>,
     kernel: OnceLock<Kernel>,
-    /// For a window that is no cosine sum: dense transforms of its own, of the windowed samples and of the window.
+    /// For a window that is no cosine sum: the dense transform of the windowed samples.
     own_dense: OnceLock<Dense>,
-    own_kernel: OnceLock<Dense>,
 }
 
 /// Lines in the lowest blocks of a pane's extremes.
@@ -112,14 +111,10 @@ impl Spectra {
         lines.own_dense.get_or_init(|| Dense::of(&windowed(&self.samples, &lines.window))).at(nu)
     }
 
-    /// The kernel W(ν) of a pane's window at the segment's length: in closed form for cosine sums, to 1e-13 of W(0)
-    /// for the others.
+    /// The kernel W(ν) of a pane's window at the segment's length.
     pub fn kernel_at(&self, pane: usize, nu: f64) -> Complex64 {
         let Some(lines) = self.panes.get(pane) else { return Complex64::ZERO };
-        if lines.window.cosine_terms().is_some() {
-            return lines.kernel.get_or_init(|| lines.window.kernel(self.n_samples())).at(nu);
-        }
-        lines.own_kernel.get_or_init(|| Dense::of(&lines.window.samples(self.n_samples()))).at(nu)
+        lines.kernel.get_or_init(|| lines.window.kernel(self.n_samples())).at(nu)
     }
 
     /// Prepares what [`Spectra::curve_db`] and [`Spectra::at`] need, so that the screen does not wait for it.
@@ -239,7 +234,6 @@ fn pane_lines(
             pyramid: OnceLock::new(),
             kernel: OnceLock::new(),
             own_dense: OnceLock::new(),
-            own_kernel: OnceLock::new(),
         });
     }
     Ok(panes)

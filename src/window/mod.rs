@@ -18,7 +18,7 @@ mod lobes;
 mod merit;
 mod overlap;
 mod shape;
-mod taps;
+pub(crate) mod taps;
 #[cfg(test)]
 mod tests;
 mod text;

@@ -29,10 +29,14 @@ const N_TERMS: usize = 24;
 /// The weights of the sixteen samples around a place that lies `part` (0 to 1) of a step past sample [`BEFORE`].
 pub(crate) fn taps(part: f64) -> [f64; N_TAPS] {
     static SERIES: LazyLock<[[f64; N_TAPS]; N_TERMS]> = LazyLock::new(series);
+    clenshaw(&SERIES, part)
+}
+
+/// Clenshaw's recurrence for series over a part of a step, all taps side by side.
+fn clenshaw(series: &[[f64; N_TAPS]; N_TERMS], part: f64) -> [f64; N_TAPS] {
     let twice = 4.0 * part - 2.0;
     let (mut next, mut after) = ([0.0; N_TAPS], [0.0; N_TAPS]);
-    let [constant, others @ ..] = &*SERIES;
-    // Clenshaw's recurrence, all taps side by side.
+    let [constant, others @ ..] = series;
     for terms in others.iter().rev() {
         for ((next, after), term) in next.iter_mut().zip(&mut after).zip(terms) {
             (*next, *after) = (twice * *next - *after + term, *next);
@@ -43,6 +47,35 @@ pub(crate) fn taps(part: f64) -> [f64; N_TAPS] {
         *weight += 0.5 * twice * next - after;
     }
     weights
+}
+
+/// φ and the derivatives that [`tap_derivatives`] gives.
+pub(crate) const N_DERIVATIVES: usize = 3;
+
+/// φ and its first two derivatives at the sixteen taps around a place that lies `part` past a line.
+pub(crate) fn tap_derivatives(part: f64) -> [[f64; N_TAPS]; N_DERIVATIVES] {
+    static OF_DERIVATIVES: LazyLock<[[[f64; N_TAPS]; N_TERMS]; N_DERIVATIVES]> = LazyLock::new(|| {
+        let of_taps = series();
+        let first = differentiated(&of_taps);
+        let second = differentiated(&first);
+        [of_taps, first, second]
+    });
+    std::array::from_fn(|order| clenshaw(&OF_DERIVATIVES[order], part))
+}
+
+/// The Chebyshev series of the derivative with respect to the part of a line (half of what the series runs over).
+fn differentiated(series: &[[f64; N_TAPS]; N_TERMS]) -> [[f64; N_TAPS]; N_TERMS] {
+    let mut derivative = [[0.0; N_TAPS]; N_TERMS];
+    for order in (1..N_TERMS).rev() {
+        for tap in 0..N_TAPS {
+            let above = if order + 1 < N_TERMS { derivative[order + 1][tap] } else { 0.0 };
+            derivative[order - 1][tap] = above + 2.0 * order as f64 * series[order][tap];
+        }
+    }
+    for tap in 0..N_TAPS {
+        derivative[0][tap] /= 2.0;
+    }
+    derivative.map(|row| row.map(|c| 2.0 * c))
 }
 
 /// φ's transform ∫ φ(u) cos(2πut) du at `cycles_per_step` t, |t| <= 1/4: what samples are divided by beforehand.
