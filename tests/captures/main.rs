@@ -8,5 +8,6 @@ mod samples;
 
 mod contents;
 mod oddities;
+mod readings;
 mod steady;
 mod truth;
