@@ -28,8 +28,8 @@ const QUIET: f64 = 0.1;
 /// The longest steady stretch of a channel; none where there is no stretch of 64 samples that is steady and not the
 /// silence before or after something louder (20 dB under the r.m.s. of the whole).
 ///
-/// Where a stretch ends inside the capture, a block is left out on that side: the change begins somewhere in the block
-/// after it. Samples that are not finite make their block unlike any other.
+/// Where a stretch ends inside the capture, two blocks are left out on that side: the change begins somewhere in
+/// them. Samples that are not finite make their block unlike any other.
 ///
 /// # Errors
 /// As [`Source::read_frames`]; [`SignalError::NoChannel`]; [`SignalError::Cancelled`].

@@ -14,6 +14,9 @@ const BLOCKS: u64 = 192;
 const SHORTEST_BLOCK: u64 = 32;
 /// Longest segment that is transformed.
 const LONGEST_SEGMENT: usize = 4096;
+/// Blocks left out at an end of a stretch that is not an end of the capture: a change that sets in slowly shows only
+/// in the block after the one it begins in.
+const GUARD: u64 = 2;
 /// Power under this part of a block's whole is lost in what is louder: leakage and rounding, not a property of the
 /// signal.
 const DEPTH: f64 = 1e-9;
@@ -108,10 +111,11 @@ impl Blocks {
         (levels.iter().map(|l| (2.0 * l).exp()).sum::<f64>() / levels.len().max(1) as f64).sqrt()
     }
 
-    /// The samples of the blocks `range`, less one block on each side that is not an end of the capture.
+    /// The samples of the blocks `range`, less [`GUARD`] blocks on each side that is not an end of the capture.
     pub(super) fn span(&self, range: Range<usize>, n_frames: u64) -> Span {
-        let start = if range.start == 0 { 0 } else { (range.start as u64 + 1) * self.block };
-        let end = if range.end == self.len() { n_frames } else { (range.end as u64).saturating_sub(1) * self.block };
+        let start = if range.start == 0 { 0 } else { (range.start as u64 + GUARD) * self.block };
+        let end =
+            if range.end == self.len() { n_frames } else { (range.end as u64).saturating_sub(GUARD) * self.block };
         Span::from_range(start..end)
     }
 }

@@ -9,6 +9,8 @@ use crate::signal::{Cancelled, Watch};
 const SEEDS: usize = 64;
 /// Standard deviations by which a block may exceed the departure to be expected.
 const DEVIATIONS: f64 = 6.0;
+/// An exponential power that is exceeded with P = 6e-6.
+const TAIL: f64 = 12.0;
 /// Departure allowed beside: tones are no noise, and beat.
 const ALLOWED: f64 = 0.15;
 
@@ -88,10 +90,12 @@ impl Model {
 ///
 /// With x the mean of m exponential powers, E[x - ln x - 1] = ln m - psi(m), near 1/(2m) + 1/(12m^2), and its
 /// variance at m = 1 is pi^2/6 - 1; both fall with m, the deviation as 1/m. A model of n blocks adds about 1/(mn).
-/// Neighbouring lines under a Hann window are half independent.
+/// Neighbouring lines under a Hann window are half independent. Few lines do not make a normal law of it: the tail of
+/// one exponential power is added.
 fn bound(blocks: &Blocks, n: f64) -> f64 {
     let m = blocks.n_averaged.max(1) as f64;
     let expected = 0.5 / m + 1.0 / (12.0 * m * m) + 1.0 / (m * n);
     let deviation = (std::f64::consts::PI.powi(2) / 6.0 - 1.0).sqrt() / m;
-    expected + ALLOWED + DEVIATIONS * deviation / (blocks.n_lines() as f64 / 2.0).max(1.0).sqrt()
+    let n_lines = blocks.n_lines() as f64;
+    expected + ALLOWED + DEVIATIONS * deviation / (n_lines / 2.0).max(1.0).sqrt() + TAIL / (m * n_lines)
 }
