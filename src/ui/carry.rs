@@ -147,9 +147,20 @@ impl Workbench {
                 self.opening = None;
                 self.dialog = Some(Dialog::Changed(changed));
             }
-            Event::Overview(number, overview) => {
+            Event::Read => {}
+            Event::Columns(number, key, columns) => {
+                if self.desk_of(number).is_some() {
+                    self.view.strip_cache.take(key, columns);
+                }
+            }
+            Event::Doubts(number, doubts) => {
+                if self.desk_of(number).is_some() {
+                    doubts.iter().for_each(|text| self.notices.tell(text));
+                }
+            }
+            Event::Surveyed(number) => {
                 if let Some(desk) = self.desk_of(number) {
-                    desk.overview = Some(overview);
+                    desk.surveyed = true;
                 }
             }
             Event::Suggested(number, span) => self.take_suggestion(number, span),
@@ -217,8 +228,21 @@ impl Workbench {
     fn start_survey(&self, desk: &Desk) {
         let Some(threads) = &self.threads else { return };
         let (capture, session, watch) = (Arc::clone(&desk.capture), desk.session.clone(), desk.watch.clone());
-        let number = desk.number;
-        threads.survey.run(move |tell| files::survey(number, &capture, &session, &watch, tell));
+        let (number, overview) = (desk.number, desk.overview.clone());
+        threads.survey.run(move |tell| files::survey(number, (&capture, &overview), &session, &watch, tell));
+    }
+
+    /// Has columns read that the strip wants from the samples themselves.
+    pub(super) fn read_columns(&mut self) {
+        let (Some(desk), Some(threads)) = (&self.desk, &self.threads) else { return };
+        let Some((key, edges)) = self.view.strip_cache.wanted() else { return };
+        let (capture, watch, number) = (Arc::clone(&desk.capture), desk.watch.clone(), desk.number);
+        threads.files.run(move |tell| {
+            // What cannot be read stays as coarse as it is drawn; the reading of the segment says why.
+            if let Ok(columns) = crate::capture::raw_columns(&*capture.source, key.channel, &edges, &watch) {
+                tell(Event::Columns(number, key, columns));
+            }
+        });
     }
 
     fn note_recent(&self, path: &Path) {

@@ -3,9 +3,8 @@
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
-use super::overview::Overview;
 use super::worker::Latest;
-use crate::capture::Capture;
+use crate::capture::{Capture, Overview};
 use crate::reading::{Reading, Request};
 use crate::session::{CaptureRef, History, NamedSegment, Session};
 use crate::signal::{Span, Watch};
@@ -21,8 +20,10 @@ pub(super) struct Desk {
     pub(super) history: History,
     /// The samples.
     pub(super) capture: Arc<Capture>,
-    /// The whole of it, small; made in the background.
-    pub(super) overview: Option<Arc<Overview>>,
+    /// The whole of it, small; filled in the background.
+    pub(super) overview: Overview,
+    /// Whether everything there is to find in the capture has been found.
+    pub(super) surveyed: bool,
     /// The stretch that is suggested.
     pub(super) suggestion: Option<Span>,
     /// The file the session is kept in.
@@ -61,8 +62,9 @@ impl Desk {
             saved: session.clone(),
             session,
             history: History::new(),
+            overview: Overview::new(&capture),
             capture,
-            overview: None,
+            surveyed: false,
             suggestion: None,
             file,
             latest: Latest::default(),

@@ -4,13 +4,13 @@ use std::path::{Path, PathBuf};
 use std::sync::{Arc, Mutex, PoisonError};
 
 use super::desk::{adopt, capture_ref};
-use super::overview::Overview;
 use super::services::Ask;
-use crate::capture::{self, Capture};
+use super::strip::StripKey;
+use crate::capture::{self, Capture, Overview};
 use crate::session::{
     self, CaptureState, Figures, Found, Loaded, RecentFile, Recovered, Recovery, Session, capture_state, find_capture,
 };
-use crate::signal::{Span, Watch};
+use crate::signal::{Extent, Span, Watch};
 
 /// What came of file work.
 #[derive(Debug)]
@@ -27,8 +27,14 @@ pub(super) enum Event {
     Missing(Box<Loaded>, PathBuf),
     /// A session's capture is not what it was.
     Changed(Box<Changed>),
-    /// The capture drawn small.
-    Overview(u64, Arc<Overview>),
+    /// More of the capture has been read through.
+    Read,
+    /// What is doubtful about the samples of the channel read.
+    Doubts(u64, Vec<String>),
+    /// Columns of samples that were wanted for the strip.
+    Columns(u64, StripKey, Vec<Extent>),
+    /// All of the capture has been read through.
+    Surveyed(u64),
     /// The stretch suggested.
     #[expect(dead_code, reason = "the suggestion itself is made below this floor and still to come")]
     Suggested(u64, Span),
@@ -139,17 +145,28 @@ pub(super) fn use_changed(changed: Changed) -> Opened {
     Opened { capture, session: Some(session), file: Some(file), as_saved: false, remark: Some(remark.to_owned()) }
 }
 
-/// Makes of a capture what takes reading it through: small picture, suggestion, BLAKE3.
-pub(super) fn survey(number: u64, capture: &Arc<Capture>, session: &Session, watch: &Watch, tell: &dyn Fn(Event)) {
-    if let Some(overview) = Overview::build(capture, watch) {
-        tell(Event::Overview(number, Arc::new(overview)));
+/// Makes of a capture what takes reading it through: small picture, doubts, suggestion, BLAKE3.
+pub(super) fn survey(
+    number: u64,
+    (capture, overview): (&Capture, &Overview),
+    session: &Session,
+    watch: &Watch,
+    tell: &dyn Fn(Event),
+) {
+    if let Err(error) = overview.fill(&*capture.source, watch, || tell(Event::Read))
+        && !watch.is_cancelled()
+    {
+        tell(Event::Refused(error.to_string()));
     }
+    let doubts = overview.damage(session.channel).map(|d| d.doubts()).unwrap_or_default();
+    tell(Event::Doubts(number, doubts.into_iter().map(|(_, text)| text).collect()));
     // SUGGEST
     if session.capture.blake3.is_empty()
         && let Ok(blake3) = capture.blake3(watch)
     {
         tell(Event::Hashed(number, blake3));
     }
+    tell(Event::Surveyed(number));
 }
 
 /// Saves the session, with its capture's BLAKE3 where that is not known yet.

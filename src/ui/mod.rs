@@ -15,7 +15,6 @@ mod files;
 mod lane;
 mod menu;
 mod notice;
-mod overview;
 mod pane;
 mod pane_head;
 mod pane_menu;

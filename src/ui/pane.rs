@@ -102,7 +102,7 @@ impl Plot<'_> {
 
     fn draw(&self, ui: &Ui, spectra: Option<&Arc<Spectra>>, desk: &Desk, view: &mut View) {
         let whole = ui.painter().clone();
-        self.draw_grid(&whole, desk);
+        let reference = self.draw_grid(&whole, desk);
         let painter = whole.with_clip_rect(self.area.intersect(whole.clip_rect()));
         let (hue, dashed) = theme::pane_hue(self.palette, self.pane.id);
         if let Some(reading) = desk.reading() {
@@ -117,14 +117,15 @@ impl Plot<'_> {
         }
         self.draw_hairline(&painter, spectra, view);
         if let Some(reading) = desk.reading() {
-            self.draw_marks(&painter, reading, desk);
+            self.draw_marks(&painter, reading, desk, reference);
         }
     }
 
-    fn draw_grid(&self, painter: &Painter, desk: &Desk) {
+    /// Draws the axes and gives the room that the level axis's reference takes.
+    fn draw_grid(&self, painter: &Painter, desk: &Desk) -> Rect {
         let rule = Stroke::new(1.0, self.palette.rule.gamma_multiply(0.7));
         let area = self.area;
-        for tick in self.level.ticks(26.0) {
+        for tick in self.level.level_ticks(24.0) {
             let y = painter.round_to_pixel_center(self.level.at(tick.value));
             painter.hline(area.x_range(), y, rule);
             let text = tick.label.unwrap_or_default();
@@ -147,7 +148,9 @@ impl Plot<'_> {
         }
         let at = pos2(area.right(), area.bottom() + 3.0);
         widget::write(painter, at, Align2::RIGHT_TOP, unit, theme::quiet(), self.palette.quiet);
-        let _ = desk;
+        let at = area.right_top() + vec2(-4.0, 2.0);
+        let reference = desk.session.scale().reference_label();
+        widget::write(painter, at, Align2::RIGHT_TOP, &reference, theme::quiet(), self.palette.quiet)
     }
 
     fn draw_floor(&self, painter: &Painter, reading: &Reading) {
@@ -170,7 +173,7 @@ impl Plot<'_> {
     }
 
     /// Marks of tones, the strongest labelled first; what has no room is left out.
-    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk) {
+    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk, taken: Rect) {
         let stale = !desk.latest.is_current();
         let ink = if stale { self.palette.quiet.gamma_multiply(0.6) } else { self.palette.ink };
         let mut marks: Vec<(&Tone, &PaneReading, egui::Pos2)> =
@@ -190,7 +193,7 @@ impl Plot<'_> {
         let texts: Vec<String> = marks.iter().map(|(tone, r, _)| label(tone, r)).collect();
         let sized: Vec<_> =
             marks.iter().zip(&texts).map(|(m, text)| (m.2, widget::text_size(painter, text, theme::quiet()))).collect();
-        for ((found, text), (tone, _, _)) in place(self.area, &sized, &[]).into_iter().zip(&texts).zip(&marks) {
+        for ((found, text), (tone, _, _)) in place(self.area, &sized, &[taken]).into_iter().zip(&texts).zip(&marks) {
             let Some(rect) = found else { continue };
             painter.rect_filled(rect.expand2(vec2(2.0, 0.0)), 2.0, self.palette.card.gamma_multiply(0.85));
             let colour = if self.is_picked(tone, desk) { self.palette.accent } else { ink };

@@ -2,7 +2,7 @@
 
 use std::time::Duration;
 
-use eframe::egui::{ProgressBar, RichText, Ui};
+use eframe::egui::{Label, ProgressBar, RichText, Ui};
 
 use super::desk::Desk;
 use super::view::{Intent, Intents, View};
@@ -52,8 +52,8 @@ pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Inten
                 format!("{} over the floor  ·  levels in {}", reading.tones.len(), reading.scale.reference_label);
             widget::quiet(ui, text);
             for warning in &reading.warnings {
-                ui.label(RichText::new(&warning.text).font(theme::quiet()).color(palette.alarm))
-                    .on_hover_text(warning.code);
+                let text = RichText::new(&warning.text).font(theme::quiet()).color(palette.alarm);
+                ui.add(Label::new(text).truncate());
             }
         }
     });

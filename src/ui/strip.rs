@@ -1,14 +1,11 @@
 //! The recording strip: the whole capture drawn small, on which segments are marked.
 
-use std::sync::Arc;
-
 use eframe::egui::{
     self, Align2, CursorIcon, EventFilter, Id, Key, Modifiers, Painter, PointerButton, Rect, Response, Role, Sense,
     Stroke, Ui, WidgetInfo, pos2, vec2,
 };
 
 use super::desk::Desk;
-use super::overview::Overview;
 use super::plot::Axis;
 use super::theme::{self, Palette};
 use super::view::{Intent, Intents, View};
@@ -24,23 +21,65 @@ const GRIP: f32 = 12.0;
 /// Fewest frames shown.
 const LEAST_FRAMES: f64 = 16.0;
 
-/// The columns last drawn and what they were made from.
+/// What columns are of.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) struct StripKey {
+    pub(super) channel: usize,
+    range: (f64, f64),
+    n: usize,
+}
+
+/// The columns last drawn and what they are of.
 #[derive(Debug, Default)]
 pub(super) struct StripCache {
-    key: Option<(usize, usize, (u64, u64), usize)>,
-    columns: Vec<Extent>,
+    kept: Option<(StripKey, f64, Vec<Extent>)>,
+    /// Columns narrower than the overview's blocks, read from the samples in the background.
+    raw: Option<(StripKey, Vec<Extent>)>,
+    wanted: Option<(StripKey, Vec<f64>)>,
+    asked: Option<StripKey>,
 }
 
 impl StripCache {
-    fn columns(&mut self, desk: &Desk, overview: &Arc<Overview>, range: (f64, f64), n: usize) -> &[Extent] {
-        let channel = desk.session.channel;
-        let key = (Arc::as_ptr(overview) as usize, channel, (range.0.to_bits(), range.1.to_bits()), n);
-        if self.key != Some(key) {
-            self.columns = overview.columns(channel, range, n);
-            self.key = Some(key);
+    /// The columns to draw: each the extent of its samples, or coarser ones while those are being read.
+    fn columns(&mut self, desk: &Desk, range: (f64, f64), n: usize) -> &[Extent] {
+        let key = StripKey { channel: desk.session.channel, range, n };
+        let edges = |n: usize| -> Vec<f64> {
+            (0..=n).map(|i| range.0 + (range.1 - range.0) * i as f64 / n as f64).collect()
+        };
+        if self.raw.as_ref().is_some_and(|raw| raw.0 == key) {
+            return self.raw.as_ref().map_or(&[], |raw| &raw.1);
         }
-        &self.columns
+        let progress = desk.overview.progress();
+        if self.kept.as_ref().is_none_or(|kept| (kept.0, kept.1) != (key, progress)) {
+            let columns = desk.overview.columns(key.channel, &edges(n)).unwrap_or_else(|| {
+                if self.asked != Some(key) {
+                    self.wanted = Some((key, edges(n)));
+                }
+                coarse(desk, key.channel, range)
+            });
+            self.kept = Some((key, progress, columns));
+        }
+        self.kept.as_ref().map_or(&[], |kept| &kept.2)
     }
+
+    /// The columns to be read from the samples, told once.
+    pub(super) fn wanted(&mut self) -> Option<(StripKey, Vec<f64>)> {
+        let wanted = self.wanted.take()?;
+        self.asked = Some(wanted.0);
+        Some(wanted)
+    }
+
+    /// Takes in columns read from the samples.
+    pub(super) fn take(&mut self, key: StripKey, columns: Vec<Extent>) {
+        self.raw = Some((key, columns));
+    }
+}
+
+/// As many columns as the overview can tell apart in `range`; none where that is not one.
+fn coarse(desk: &Desk, channel: usize, range: (f64, f64)) -> Vec<Extent> {
+    let n = ((range.1 - range.0) / 1024.0).floor().max(1.0) as usize;
+    let edges: Vec<f64> = (0..=n).map(|i| range.0 + (range.1 - range.0) * i as f64 / n as f64).collect();
+    desk.overview.columns(channel, &edges).unwrap_or_default()
 }
 
 /// Shows the strip.
@@ -79,26 +118,30 @@ fn describe(response: &Response, desk: &Desk, range: (f64, f64)) {
 
 fn draw_wave(ui: &Ui, painter: &Painter, desk: &Desk, view: &mut View, axis: &Axis, wave: Rect) {
     let palette = theme::palette(ui.ctx());
-    let Some(overview) = desk.overview.as_ref() else {
-        let progress = desk.watch.progress();
-        let text = format!("reading the capture, {:.0} %", 100.0 * progress);
-        widget::write(painter, wave.center(), Align2::CENTER_CENTER, &text, theme::body(), palette.quiet);
-        ui.ctx().request_repaint_after(std::time::Duration::from_millis(100));
-        return;
-    };
+    if !desk.overview.is_complete() {
+        let text = format!("reading the capture, {:.0} %", 100.0 * desk.overview.progress());
+        let at = wave.right_top() + vec2(-6.0, 2.0);
+        widget::write(painter, at, Align2::RIGHT_TOP, &text, theme::quiet(), palette.quiet);
+    }
     let ppp = ui.ctx().pixels_per_point();
     let n = ((wave.width() * ppp).round().max(1.0) as usize).min(8192);
-    let columns = view.strip_cache.columns(desk, overview, (axis.lo, axis.hi), n);
-    let top = columns.iter().filter(|c| !c.is_empty()).fold(0.0_f32, |m, c| m.max(c.max.abs()).max(c.min.abs()));
-    let height =
-        Axis::linear(f64::from(-top.max(1e-9)) * 1.05, f64::from(top.max(1e-9)) * 1.05, wave.bottom(), wave.top());
-    let width = wave.width() / n as f32;
+    let columns = view.strip_cache.columns(desk, (axis.lo, axis.hi), n);
+    let full = columns.iter().filter(|c| !c.is_empty());
+    let top = f64::from(full.fold(1e-9_f32, |m, c| m.max(c.max.abs()).max(c.min.abs()))) * 1.05;
+    let height = Axis::linear(-top, top, wave.bottom(), wave.top());
+    let width = wave.width() / columns.len().max(1) as f32;
     let colour = palette.quiet.gamma_multiply(0.75);
     let mut mesh = egui::Mesh::default();
+    let mut last: Option<(f32, f32)> = None;
     for (i, column) in columns.iter().enumerate().filter(|(_, c)| !c.is_empty()) {
         let x = wave.left() + i as f32 * width;
         let (y0, y1) = (height.at(f64::from(column.max)), height.at(f64::from(column.min)));
-        let (y0, y1) = if y1 - y0 < 1.0 { (0.5 * (y0 + y1) - 0.5, 0.5 * (y0 + y1) + 0.5) } else { (y0, y1) };
+        // Neighbours meet, and nothing is thinner than a point.
+        let (mut y0, mut y1) = if y1 - y0 < 1.0 { (0.5 * (y0 + y1) - 0.5, 0.5 * (y0 + y1) + 0.5) } else { (y0, y1) };
+        if let Some((a, b)) = last {
+            (y0, y1) = (y0.min(b), y1.max(a));
+        }
+        last = Some((y0, y1));
         mesh.add_colored_rect(Rect::from_min_max(pos2(x, y0), pos2(x + width, y1)), colour);
     }
     painter.add(egui::Shape::mesh(mesh));
@@ -137,10 +180,9 @@ fn draw_time(painter: &Painter, rate_hz: f64, axis: &Axis, rect: Rect, palette: 
         let x = seconds.at(tick.value);
         painter.vline(x, y..=y + 3.0, Stroke::new(1.0, palette.quiet));
         let text = format!("{} s", tick.label.unwrap_or_default());
-        let half = 0.5 * widget::text_size(painter, &text, theme::quiet()).x;
-        if x - half >= rect.left() && x + half <= rect.right() {
-            widget::write(painter, pos2(x, y + 2.0), Align2::CENTER_TOP, &text, theme::quiet(), palette.quiet);
-        }
+        let half = 0.5 * widget::text_size(painter, &text, theme::quiet()).x + 4.0;
+        let x = x.clamp(rect.left() + half, rect.right() - half);
+        widget::write(painter, pos2(x, y + 2.0), Align2::CENTER_TOP, &text, theme::quiet(), palette.quiet);
     }
 }
 

@@ -73,15 +73,15 @@ impl Table<'_> {
             .sense(Sense::click())
             .auto_shrink(false)
             .cell_layout(Layout::right_to_left(Align::Center))
-            .column(Column::exact(92.0))
-            .column(Column::exact(112.0))
-            .column(Column::exact(68.0));
+            .column(Column::exact(86.0))
+            .column(Column::exact(116.0))
+            .column(Column::exact(66.0));
         if has_verdicts {
             builder = builder.column(Column::exact(84.0));
         }
-        builder = builder.column(Column::exact(88.0));
+        builder = builder.column(Column::exact(98.0));
         for pane in &self.reading.panes {
-            builder = builder.column(Column::exact((pane.window.len() as f32 * 7.5 + 16.0).max(98.0)));
+            builder = builder.column(Column::exact((pane.window.len() as f32 * 7.2 + 10.0).max(92.0)));
         }
         builder = builder.column(Column::remainder().at_least(120.0).clip(true));
         if std::mem::take(&mut view.reveal_pick)

@@ -121,7 +121,7 @@ impl Workbench {
 
     /// Whether nothing is being opened, saved or computed.
     pub fn is_settled(&self) -> bool {
-        let busy = self.desk.as_ref().is_some_and(|d| d.latest.is_busy() || d.overview.is_none());
+        let busy = self.desk.as_ref().is_some_and(|d| d.latest.is_busy() || !d.surveyed);
         self.opening.is_none() && self.waiting.is_none() && !self.saving && !busy
     }
 
@@ -168,6 +168,7 @@ impl Workbench {
             self.carry_out(ui.ctx(), intent);
         }
         self.submit();
+        self.read_columns();
         if let Some(shown) = self.dialog.take() {
             match dialog::show(ui.ctx(), shown) {
                 Ok(open) => self.dialog = Some(open),

@@ -78,8 +78,19 @@ impl Axis {
         if self.log && self.hi / self.lo >= 8.0 { self.decade_ticks(room) } else { self.even_ticks(room) }
     }
 
+    /// Ticks of a level axis: steps that decibels are counted in.
+    pub(crate) fn level_ticks(&self, gap: f32) -> Vec<Tick> {
+        let least = (self.hi - self.lo) / f64::from((self.to - self.from).abs() / gap.max(1.0)).max(1.0);
+        let steps = [0.1, 0.2, 0.5, 1.0, 2.0, 3.0, 5.0, 10.0, 20.0, 30.0, 40.0, 60.0];
+        let step = steps.into_iter().find(|s| *s >= least * (1.0 - 1e-9)).unwrap_or_else(|| nice_step(least));
+        self.ticks_of(step)
+    }
+
     fn even_ticks(&self, room: f64) -> Vec<Tick> {
-        let step = nice_step((self.hi - self.lo) / room);
+        self.ticks_of(nice_step((self.hi - self.lo) / room))
+    }
+
+    fn ticks_of(&self, step: f64) -> Vec<Tick> {
         let decimals = (-step.log10()).ceil().clamp(0.0, 9.0) as usize;
         let (first, last) = ((self.lo / step).ceil(), (self.hi / step).floor());
         let n = (last - first).clamp(-1.0, 1000.0);
@@ -154,7 +165,8 @@ mod tests {
         let labels: Vec<_> = axis.ticks(60.0).into_iter().filter_map(|t| t.label).collect();
         assert_eq!(labels, ["124.0", "124.5", "125.0", "125.5", "126.0"]);
         let down = Axis::linear(-120.0, 0.0, 200.0, 0.0);
-        assert_eq!(down.ticks(40.0).len(), 3);
+        let levels: Vec<f64> = down.level_ticks(40.0).iter().map(|t| t.value).collect();
+        assert_eq!(levels, [-120.0, -90.0, -60.0, -30.0, 0.0]);
     }
 
     #[test]
