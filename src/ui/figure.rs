@@ -38,6 +38,18 @@ pub(super) fn significant(value: f64, digits: usize) -> String {
     fixed(value, (i32::try_from(digits).unwrap_or(9) - 1 - power).max(0) as usize)
 }
 
+/// A value and its expanded uncertainty, in as many digits as the uncertainty allows (two of its own); the
+/// uncertainty is empty where there is none.
+pub(super) fn with_uncertainty(value: f64, uncertainty: Option<f64>) -> (String, String) {
+    match uncertainty.filter(|u| *u > 0.0 && u.is_finite()) {
+        Some(u) => {
+            let decimals = (1.0 - u.log10().floor()).clamp(0.0, 12.0) as usize;
+            (fixed(value, decimals), format!("± {}", fixed(u, decimals)))
+        }
+        None => (significant(value, 4), String::new()),
+    }
+}
+
 /// A count with thin spaces between thousands.
 pub(super) fn count(n: u64) -> String {
     let digits = n.to_string();
@@ -69,6 +81,14 @@ mod tests {
         assert_eq!(significant(1234.5, 3), "1234");
         assert_eq!(significant(9.1e-9, 3), "9.10e−9");
         assert_eq!(significant(f64::NAN, 3), "–");
+    }
+
+    #[test]
+    fn a_value_has_the_digits_of_its_uncertainty() {
+        let written = |v, u| with_uncertainty(v, u);
+        assert_eq!(written(0.429_71, Some(0.000_12)), ("0.42971".to_owned(), "± 0.00012".to_owned()));
+        assert_eq!(written(1234.5, Some(35.0)), ("1234".to_owned(), "± 35".to_owned()));
+        assert_eq!(written(0.5, None), ("0.5000".to_owned(), String::new()));
     }
 
     #[test]

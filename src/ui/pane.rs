@@ -21,6 +21,10 @@ use crate::spectrum::Spectra;
 const LEFT: f32 = 40.0;
 /// Room for frequency labels.
 const BOTTOM: f32 = 18.0;
+/// Room for what levels refer to.
+const REFERENCE: f32 = 20.0;
+/// A pane so high has that room.
+const ROOMY: f32 = 170.0;
 /// How near a mark takes a click, in points.
 const NEAR: f32 = 12.0;
 
@@ -39,8 +43,11 @@ pub(super) fn show(
     ui.painter().rect(rect, 4.0, palette.card, Stroke::new(1.0, palette.rule), egui::StrokeKind::Inside);
     let inner = rect.shrink2(vec2(8.0, 6.0));
     let head = Rect::from_min_size(inner.min, vec2(inner.width(), pane_head::HEIGHT));
+    // A low pane has no room to name the reference; the line over the tone table names it as well.
+    let names_reference = rect.height() >= ROOMY;
+    let above = if names_reference { REFERENCE } else { 6.0 };
     let area = Rect::from_min_max(
-        pos2(inner.left() + LEFT, head.bottom() + 6.0),
+        pos2(inner.left() + LEFT, head.bottom() + above),
         pos2(inner.right() - 2.0, inner.bottom() - BOTTOM),
     );
     let spectra = desk.latest.spectra().filter(|s| index < s.windows().len());
@@ -54,6 +61,7 @@ pub(super) fn show(
         level: Axis::linear(shared.level.0, shared.level.1, area.bottom(), area.top()),
         shared,
         palette,
+        names_reference,
     };
     let response = ui.interact(area, egui::Id::unique(("pane plot", pane.id)), Sense::click_and_drag());
     plot.describe(&response, desk, view);
@@ -74,6 +82,7 @@ struct Plot<'a> {
     level: Axis,
     shared: &'a Shared,
     palette: &'static Palette,
+    names_reference: bool,
 }
 
 impl Plot<'_> {
@@ -102,7 +111,7 @@ impl Plot<'_> {
 
     fn draw(&self, ui: &Ui, spectra: Option<&Arc<Spectra>>, desk: &Desk, view: &mut View) {
         let whole = ui.painter().clone();
-        let reference = self.draw_grid(&whole, desk);
+        self.draw_grid(&whole, desk);
         let painter = whole.with_clip_rect(self.area.intersect(whole.clip_rect()));
         let (hue, dashed) = theme::pane_hue(self.palette, self.pane.id);
         if let Some(reading) = desk.reading() {
@@ -117,12 +126,12 @@ impl Plot<'_> {
         }
         self.draw_hairline(&painter, spectra, view);
         if let Some(reading) = desk.reading() {
-            self.draw_marks(&painter, reading, desk, reference);
+            self.draw_marks(&painter, reading, desk);
         }
     }
 
-    /// Draws the axes and gives the room that the level axis's reference takes.
-    fn draw_grid(&self, painter: &Painter, desk: &Desk) -> Rect {
+    /// Draws the axes; over the level axis stands what its levels refer to.
+    fn draw_grid(&self, painter: &Painter, desk: &Desk) {
         let rule = Stroke::new(1.0, self.palette.rule.gamma_multiply(0.7));
         let area = self.area;
         for tick in self.level.level_ticks(24.0) {
@@ -135,7 +144,7 @@ impl Plot<'_> {
         let unit = "Hz";
         let unit_width = widget::text_size(painter, unit, theme::quiet()).x + 8.0;
         let mut free_from = area.left() - LEFT;
-        for tick in self.frequency.ticks(62.0) {
+        for tick in self.frequency.ticks(50.0) {
             let x = painter.round_to_pixel_center(self.frequency.at(tick.value));
             painter.vline(x, area.y_range(), rule);
             let Some(text) = tick.label else { continue };
@@ -148,9 +157,11 @@ impl Plot<'_> {
         }
         let at = pos2(area.right(), area.bottom() + 3.0);
         widget::write(painter, at, Align2::RIGHT_TOP, unit, theme::quiet(), self.palette.quiet);
-        let at = area.right_top() + vec2(-4.0, 2.0);
-        let reference = desk.session.scale().reference_label();
-        widget::write(painter, at, Align2::RIGHT_TOP, &reference, theme::quiet(), self.palette.quiet)
+        if self.names_reference {
+            let at = pos2(area.left() - LEFT, area.top() - 5.0);
+            let reference = desk.session.scale().reference_label();
+            widget::write(painter, at, Align2::LEFT_BOTTOM, &reference, theme::quiet(), self.palette.quiet);
+        }
     }
 
     fn draw_floor(&self, painter: &Painter, reading: &Reading) {
@@ -173,7 +184,7 @@ impl Plot<'_> {
     }
 
     /// Marks of tones, the strongest labelled first; what has no room is left out.
-    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk, taken: Rect) {
+    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk) {
         let stale = !desk.latest.is_current();
         let ink = if stale { self.palette.quiet.gamma_multiply(0.6) } else { self.palette.ink };
         let mut marks: Vec<(&Tone, &PaneReading, egui::Pos2)> =
@@ -193,7 +204,7 @@ impl Plot<'_> {
         let texts: Vec<String> = marks.iter().map(|(tone, r, _)| label(tone, r)).collect();
         let sized: Vec<_> =
             marks.iter().zip(&texts).map(|(m, text)| (m.2, widget::text_size(painter, text, theme::quiet()))).collect();
-        for ((found, text), (tone, _, _)) in place(self.area, &sized, &[taken]).into_iter().zip(&texts).zip(&marks) {
+        for ((found, text), (tone, _, _)) in place(self.area, &sized, &[]).into_iter().zip(&texts).zip(&marks) {
             let Some(rect) = found else { continue };
             painter.rect_filled(rect.expand2(vec2(2.0, 0.0)), 2.0, self.palette.card.gamma_multiply(0.85));
             let colour = if self.is_picked(tone, desk) { self.palette.accent } else { ink };

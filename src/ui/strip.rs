@@ -94,6 +94,7 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
     painter.rect_filled(rect, 3.0, palette.card);
     draw_segments(&painter, desk, &axis, wave, palette);
     draw_wave(ui, &painter, desk, view, &axis, wave);
+    name_segments(&painter, desk, &axis, wave, palette);
     draw_time(&painter, desk.session.sample_rate_hz(), &axis, rect, palette);
     painter.rect_stroke(rect, 3.0, Stroke::new(1.0, palette.rule), egui::StrokeKind::Inside);
     describe(&response, desk, range);
@@ -162,13 +163,23 @@ fn draw_segments(painter: &Painter, desk: &Desk, axis: &Axis, wave: Rect, palett
             painter.vline(x0, wave.y_range(), stroke);
             painter.vline(x1, wave.y_range(), stroke);
         }
-        let font = theme::quiet();
-        let clipped = painter.with_clip_rect(band.intersect(painter.clip_rect()));
-        if band.width() > 30.0 {
-            let ink = if current { palette.ink } else { palette.quiet };
-            let at = pos2(band.left() + 6.0, wave.top() + 2.0);
-            widget::write(&clipped, at, Align2::LEFT_TOP, &segment.name, font, ink);
+    }
+}
+
+/// Names stand over the drawing, on a ground of their own.
+fn name_segments(painter: &Painter, desk: &Desk, axis: &Axis, wave: Rect, palette: &Palette) {
+    for segment in &desk.session.segments {
+        let (x0, x1) = (axis.at(segment.span.start as f64), axis.at(segment.span.end() as f64));
+        let band = Rect::from_x_y_ranges(x0..=x1, wave.y_range()).intersect(wave);
+        let size = widget::text_size(painter, &segment.name, theme::quiet());
+        if band.width() < size.x + 16.0 {
+            continue;
         }
+        let current = segment.id == desk.session.current;
+        let ink = if current { palette.ink } else { palette.quiet };
+        let rect = Rect::from_min_size(pos2(band.left() + 6.0, wave.top() + 2.0), size);
+        painter.rect_filled(rect.expand2(vec2(3.0, 0.0)), 2.0, palette.card.gamma_multiply(0.8));
+        widget::write(painter, rect.min, Align2::LEFT_TOP, &segment.name, theme::quiet(), ink);
     }
 }
 

@@ -10,7 +10,7 @@ use super::pane::is_picked;
 use super::theme::{self, Palette};
 use super::view::{Cell, Intent, Intents, View};
 use super::{figure, widget};
-use crate::reading::{PaneReading, Reading, ReadingState, Tone};
+use crate::reading::{PaneReading, Reading, ReadingState, Tone, Verdict};
 use crate::session::Command;
 
 const ROW: f32 = 24.0;
@@ -66,15 +66,18 @@ struct Table<'a> {
 impl Table<'_> {
     fn show(&self, ui: &mut Ui, view: &mut View, intents: &mut Intents) {
         ui.spacing_mut().item_spacing = vec2(4.0, 0.0);
+        // Chosen figures stay in ink.
+        ui.visuals_mut().selection.stroke.color = self.palette.ink;
         let has_verdicts = self.reading.tones.iter().any(|t| t.verdict.is_some());
+        let has_spread = self.reading.tones.iter().any(|t| t.amplitude_u95.is_some());
         let n_panes = self.reading.panes.len();
         let mut builder = TableBuilder::new(ui)
-            .id_salt(("tone table", n_panes, has_verdicts))
+            .id_salt(("tone table", n_panes, has_verdicts, has_spread))
             .sense(Sense::click())
             .auto_shrink(false)
             .cell_layout(Layout::right_to_left(Align::Center))
             .column(Column::exact(86.0))
-            .column(Column::exact(116.0))
+            .column(Column::exact(if has_spread { 164.0 } else { 116.0 }))
             .column(Column::exact(66.0));
         if has_verdicts {
             builder = builder.column(Column::exact(84.0));
@@ -124,10 +127,12 @@ impl Table<'_> {
         row.set_selected(self.picked == Some(index));
         let frequency = figure::hertz(tone.frequency_hz, spacing);
         row.col(|ui| drop(ui.add(egui::Label::new(&frequency).selectable(false))));
-        row.col(|ui| drop(ui.add(egui::Label::new(figure::significant(tone.level, 4)).selectable(false))));
-        row.col(|ui| drop(ui.add(egui::Label::new(figure::fixed(tone.level_db, 2)).selectable(false))));
+        let detector = self.reading.scale.detector.of_unit_peak();
+        let (level, spread) = figure::with_uncertainty(tone.level, tone.amplitude_u95.map(|u| u * detector));
+        row.col(|ui| self.figure(ui, &level, &spread));
+        row.col(|ui| self.figure(ui, &figure::fixed(tone.level_db, 2), ""));
         if has_verdicts {
-            row.col(|_| {});
+            row.col(|ui| self.verdict(ui, tone));
         }
         let agreement = tone.agreement_db.map_or_else(|| "–".to_owned(), |a| figure::fixed(a, 3));
         row.col(|ui| drop(ui.add(egui::Label::new(agreement).selectable(false))));
@@ -151,6 +156,29 @@ impl Table<'_> {
             intents.push(Intent::Change(Command::Pick(Some(tone.frequency_hz))));
             view.card_pane = pane;
         }
+    }
+
+    /// A figure, its uncertainty quieter beside it.
+    fn figure(&self, ui: &mut Ui, value: &str, spread: &str) {
+        if !spread.is_empty() {
+            let text = egui::RichText::new(spread).color(self.palette.quiet);
+            ui.add(egui::Label::new(text).selectable(false));
+        }
+        ui.add(egui::Label::new(value).selectable(false));
+    }
+
+    fn verdict(&self, ui: &mut Ui, tone: &Tone) {
+        let Some(verdict) = tone.verdict else { return };
+        let rect = ui.available_rect_before_wrap();
+        let word = verdict_word(verdict);
+        widget::verdict_mark(ui.painter(), pos2(rect.left() + 14.0, rect.center().y), verdict, self.palette.ink);
+        ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
+            ui.add_space(24.0);
+            let response = ui.add(egui::Label::new(word).selectable(false));
+            if let Some(why) = &tone.why {
+                response.on_hover_text(why);
+            }
+        });
     }
 
     /// One cell: the level, or the word for why it is not to be trusted; a mark of its state beside it.
@@ -199,6 +227,17 @@ impl Table<'_> {
             ui.add_space(12.0);
             ui.add(egui::Label::new(text).selectable(false).truncate());
         });
+    }
+}
+
+fn verdict_word(verdict: Verdict) -> &'static str {
+    match verdict {
+        Verdict::Holds => "holds",
+        Verdict::Crowded => "crowded",
+        Verdict::Wanders => "wanders",
+        Verdict::Disputed => "disputed",
+        Verdict::Skirt => "skirt",
+        Verdict::Faint => "faint",
     }
 }
 

@@ -5,7 +5,7 @@ use eframe::egui::{
 };
 
 use super::theme;
-use crate::reading::ReadingState;
+use crate::reading::{ReadingState, Verdict};
 
 /// The head of a section.
 pub(super) fn section(ui: &mut Ui, text: &str) -> Response {
@@ -66,6 +66,29 @@ pub(super) fn state_mark(painter: &Painter, at: Pos2, state: ReadingState, ink: 
             painter.line_segment([at - vec2(4.0, 0.0), at + vec2(4.0, 0.0)], Stroke::new(2.0, ink));
         }
         ReadingState::BelowFloor => drop(painter.circle_filled(at, 1.5, ink)),
+    }
+}
+
+/// Draws the mark of a verdict: `holds` a disc, `crowded` a ring, `wanders` a tilde, `disputed` a ring with a bar,
+/// `skirt` a short bar, `faint` a dot.
+pub(super) fn verdict_mark(painter: &Painter, at: Pos2, verdict: Verdict, ink: Color32) {
+    let stroke = Stroke::new(1.5, ink);
+    match verdict {
+        Verdict::Holds => drop(painter.circle_filled(at, 4.0, ink)),
+        Verdict::Crowded => drop(painter.circle_stroke(at, 3.5, stroke)),
+        Verdict::Wanders => {
+            let wave = (0..=12).map(|i| {
+                let x = (i as f32 - 6.0) * 0.8;
+                at + vec2(x, 2.5 * (x * 0.65).sin())
+            });
+            painter.add(Shape::line(wave.collect(), stroke));
+        }
+        Verdict::Disputed => {
+            painter.circle_stroke(at, 3.5, stroke);
+            painter.line_segment([at - vec2(5.0, 0.0), at + vec2(5.0, 0.0)], stroke);
+        }
+        Verdict::Skirt => drop(painter.line_segment([at - vec2(4.0, 0.0), at + vec2(4.0, 0.0)], Stroke::new(2.0, ink))),
+        Verdict::Faint => drop(painter.circle_filled(at, 1.5, ink)),
     }
 }
 
