@@ -130,7 +130,7 @@ impl Workbench {
         match event {
             Event::Picked(ask, Some(path)) => self.take_picked(&ask, path),
             Event::Picked(Ask::SaveSession(_), None) => self.after_save = None,
-            Event::Picked(_, None) => {}
+            Event::Picked(_, None) | Event::Read => {}
             Event::Opened(opened) => self.take_opened(*opened),
             Event::Refused(text) => {
                 self.opening = None;
@@ -147,7 +147,6 @@ impl Workbench {
                 self.opening = None;
                 self.dialog = Some(Dialog::Changed(changed));
             }
-            Event::Read => {}
             Event::Columns(number, key, columns) => {
                 if self.desk_of(number).is_some() {
                     self.view.strip_cache.take(key, columns);
@@ -155,7 +154,9 @@ impl Workbench {
             }
             Event::Doubts(number, doubts) => {
                 if self.desk_of(number).is_some() {
-                    doubts.iter().for_each(|text| self.notices.tell(text));
+                    for text in &doubts {
+                        self.notices.tell(text);
+                    }
                 }
             }
             Event::Surveyed(number) => {

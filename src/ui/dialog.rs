@@ -55,7 +55,8 @@ pub(super) const CAUTION: &str = "Figures from this tool may decide whether a ma
 pub(super) fn show(ctx: &Context, dialog: Dialog) -> Result<Dialog, Reply> {
     let mut dialog = dialog;
     let mut said = None;
-    let modal = Modal::new(Id::unique("dialog")).show(ctx, |ui| {
+    let frame = egui::Frame::popup(&ctx.global_style()).inner_margin(egui::Margin::same(16));
+    let modal = Modal::new(Id::unique("dialog")).frame(frame).show(ctx, |ui| {
         ui.set_width(460.0_f32.min(ui.ctx().content_rect().width() - 60.0));
         ui.spacing_mut().item_spacing.y = 8.0;
         match &mut dialog {

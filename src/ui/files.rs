@@ -36,7 +36,6 @@ pub(super) enum Event {
     /// All of the capture has been read through.
     Surveyed(u64),
     /// The stretch suggested.
-    #[expect(dead_code, reason = "the suggestion itself is made below this floor and still to come")]
     Suggested(u64, Span),
     /// The capture's BLAKE3.
     Hashed(u64, String),
@@ -160,7 +159,10 @@ pub(super) fn survey(
     }
     let doubts = overview.damage(session.channel).map(|d| d.doubts()).unwrap_or_default();
     tell(Event::Doubts(number, doubts.into_iter().map(|(_, text)| text).collect()));
-    // SUGGEST
+    let rate = session.sample_rate_hz();
+    if let Ok(Some(span)) = crate::tone::suggest_steady(&*capture.source, session.channel, rate, watch) {
+        tell(Event::Suggested(number, span));
+    }
     if session.capture.blake3.is_empty()
         && let Ok(blake3) = capture.blake3(watch)
     {

@@ -64,6 +64,10 @@ fn name(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut I
 /// A field for each parameter; a long list (a cosine sum's coefficients) is edited as text.
 fn parameters(ui: &mut Ui, index: usize, pane: &Pane, intents: &mut Intents) {
     let specs = pane.window.entry().parameters;
+    if specs.len().max(pane.window.parameters().len()) > 2 {
+        coefficients(ui, index, pane, intents);
+        return;
+    }
     for (i, (value, spec)) in pane.window.parameters().iter().zip(specs).enumerate().take(2) {
         let mut v = *value;
         let decimals = figure::decimals(spec.step * 10.0, 4);
@@ -86,6 +90,26 @@ fn parameters(ui: &mut Ui, index: usize, pane: &Pane, intents: &mut Intents) {
         if response.drag_stopped() || response.lost_focus() {
             intents.push(Intent::CloseStep);
         }
+    }
+}
+
+/// A list of parameters as text, taken when the field is left; a list that cannot be is not taken.
+fn coefficients(ui: &mut Ui, index: usize, pane: &Pane, intents: &mut Intents) {
+    let key = egui::Id::unique(("coefficients", pane.id));
+    let list: Vec<String> = pane.window.parameters().iter().map(f64::to_string).collect();
+    let mut text = ui.data(|d| d.get_temp::<String>(key)).unwrap_or_else(|| list.join(", "));
+    let field = egui::TextEdit::singleline(&mut text).desired_width(110.0).font(theme::quiet());
+    let response = ui.add(field).accessible_name(format!("Pane {}: coefficients", index + 1));
+    if response.changed() {
+        ui.data_mut(|d| d.insert_temp(key, text.clone()));
+    }
+    if response.lost_focus() {
+        ui.data_mut(|d| d.remove_temp::<String>(key));
+        let numbers: Option<Vec<f64>> = text.split(',').map(|part| part.trim().parse().ok()).collect();
+        if let Some(window) = numbers.and_then(|n| with_parameters(&pane.window, &n)) {
+            intents.push(Intent::Change(Command::SetWindow(pane.id, window)));
+        }
+        intents.push(Intent::CloseStep);
     }
 }
 

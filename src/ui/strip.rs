@@ -43,9 +43,8 @@ impl StripCache {
     /// The columns to draw: each the extent of its samples, or coarser ones while those are being read.
     fn columns(&mut self, desk: &Desk, range: (f64, f64), n: usize) -> &[Extent] {
         let key = StripKey { channel: desk.session.channel, range, n };
-        let edges = |n: usize| -> Vec<f64> {
-            (0..=n).map(|i| range.0 + (range.1 - range.0) * i as f64 / n as f64).collect()
-        };
+        let edges =
+            |n: usize| -> Vec<f64> { (0..=n).map(|i| range.0 + (range.1 - range.0) * i as f64 / n as f64).collect() };
         if self.raw.as_ref().is_some_and(|raw| raw.0 == key) {
             return self.raw.as_ref().map_or(&[], |raw| &raw.1);
         }
