@@ -34,15 +34,18 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &View, reading: &Reading) {
     ScrollArea::vertical().id_salt("card").auto_shrink(false).show(ui, |ui| {
         let spacing = desk.line_spacing_hz();
         let head = theme::heavy(ui.ctx(), theme::BODY);
+        ui.spacing_mut().item_spacing.y = 1.0;
+        ui.spacing_mut().interact_size.y = 16.0;
         let title = format!("{} Hz in {}", figure::hertz(tone.frequency_hz, spacing), cell.window);
         ui.label(RichText::new(title).font(head));
-        state(ui, cell, spacing);
-        ui.add_space(4.0);
+        state(ui, cell);
         ledger(ui, cell, &reading.scale.reference_label);
+        ui.add_space(4.0);
+        facts(ui, cell, spacing);
     });
 }
 
-fn state(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
+fn state(ui: &mut Ui, cell: &PaneReading) {
     let why = match cell.state {
         ReadingState::Clear => "clear: nothing stands in the way",
         ReadingState::Crowded => "crowded: another tone stands inside this window's main lobe",
@@ -50,6 +53,10 @@ fn state(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
         ReadingState::BelowFloor => "below-floor: this pane's floor covers the tone",
     };
     widget::quiet(ui, why);
+}
+
+/// Where the peak is and what noise does to it.
+fn facts(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
     let peak = figure::hertz(cell.peak_hz, spacing);
     let borrowed = if cell.borrowed { ", borrowed from a sharper pane" } else { "" };
     widget::quiet(ui, format!("peak at {peak} Hz{borrowed}"));
@@ -77,6 +84,8 @@ fn ledger(ui: &mut Ui, cell: &PaneReading, reference: &str) {
 fn line(ui: &mut Ui, name: &str, value: &str, ink: egui::Color32, strong: bool) {
     let font = if strong { theme::heavy(ui.ctx(), theme::BODY) } else { theme::body() };
     ui.horizontal(|ui| {
+        // Nothing here is pressed: lines may stand closer than targets do.
+        ui.spacing_mut().interact_size.y = 16.0;
         ui.label(RichText::new(name).font(font.clone()).color(ink));
         ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
             ui.add_space(8.0);

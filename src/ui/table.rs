@@ -84,9 +84,9 @@ impl Table<'_> {
         }
         builder = builder.column(Column::exact(98.0));
         for pane in &self.reading.panes {
-            builder = builder.column(Column::exact((pane.window.len() as f32 * 7.2 + 10.0).max(92.0)));
+            builder = builder.column(Column::exact((pane.window.len() as f32 * 7.2 + 10.0).max(88.0)));
         }
-        builder = builder.column(Column::remainder().at_least(120.0).clip(true));
+        builder = builder.column(Column::remainder().at_least(70.0).clip(true));
         if std::mem::take(&mut view.reveal_pick)
             && let Some(row) = self.picked
         {
