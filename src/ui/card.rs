@@ -11,6 +11,9 @@ use crate::reading::{PaneReading, Reading, ReadingState, Tone};
 /// Width of the card.
 pub(super) const WIDTH: f32 = 276.0;
 
+/// A step so small is only named.
+const SMALL_DB: f64 = 0.0005;
+
 /// The tone and the pane whose ledger is shown: the cell chosen, else the sharpest pane that reads the picked tone
 /// clear of everything.
 pub(super) fn chosen<'a>(reading: &'a Reading, desk: &Desk, view: &View) -> Option<(&'a Tone, usize)> {
@@ -71,8 +74,13 @@ fn facts(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
 /// The steps in decibels, and their sum.
 fn ledger(ui: &mut Ui, cell: &PaneReading, reference: &str) {
     let palette = theme::palette(ui.ctx());
-    for step in &cell.ledger {
+    let (small, large): (Vec<_>, Vec<_>) = cell.ledger.iter().partition(|s| s.db.abs() < SMALL_DB);
+    for step in large {
         line(ui, step.step, &figure::fixed(step.db, 3), palette.ink, false);
+    }
+    if !small.is_empty() {
+        let names: Vec<&str> = small.iter().map(|s| s.step).collect();
+        widget::quiet(ui, format!("less than {SMALL_DB} dB each: {}", names.join(", ")));
     }
     let (rect, _) = ui.allocate_exact_size(egui::vec2(ui.available_width(), 5.0), egui::Sense::hover());
     ui.painter().hline(rect.x_range(), rect.center().y, egui::Stroke::new(1.0, palette.rule));

@@ -56,11 +56,8 @@ fn quantity(ui: &mut Ui, scale: &mut Scale) -> bool {
                     scale.quantity = quantity;
                     usual_unit(quantity).clone_into(&mut scale.unit);
                     scale.reference = None;
-                    scale.factor = match (quantity, scale.factor) {
-                        (Quantity::Plain, _) => Factor::NotStated,
-                        (_, Factor::NotStated) => Factor::UnitsPerFullScale(1.0),
-                        (_, factor) => factor,
-                    };
+                    // No factor is assumed, and none stated for another quantity is kept: levels wait for it.
+                    scale.factor = Factor::NotStated;
                 }
             }
         });
@@ -98,7 +95,15 @@ fn factor(ui: &mut Ui, scale: &mut Scale) -> bool {
     });
     let unit = scale.unit.clone();
     match &mut scale.factor {
-        Factor::NotStated => false,
+        Factor::NotStated => {
+            let typed = row(ui, "1 FS is", |ui, id| {
+                number(ui, id, 0.0, |f| f.range(0.0..=1e12).speed(0.1).suffix(format!(" {unit}")).max_decimals(9))
+            });
+            if typed.changed && typed.value > 0.0 {
+                scale.factor = Factor::UnitsPerFullScale(typed.value);
+            }
+            typed.ended
+        }
         Factor::UnitsPerFullScale(units) => positive(ui, "1 FS is", units, &format!(" {unit}")),
         Factor::Sensitivity { volts_per_unit, full_scale_volts } => {
             let mut millivolts = *volts_per_unit * 1e3;
