@@ -146,6 +146,12 @@ pub(super) struct RecheckWish {
 #[derive(Debug, Args)]
 pub(super) struct WindowsWish {
     /// Print a JSON array
-    #[arg(long)]
+    #[arg(long, conflicts_with = "kernel")]
     pub json: bool,
+    /// Print a figure (SVG) of these windows' kernels, drawn over one another in Hz
+    #[arg(long, value_name = "NAME[=PARAM],...", value_parser = windows, requires = "duration")]
+    pub kernel: Option<WindowList>,
+    /// The segment's duration for the figure, in seconds
+    #[arg(long, value_name = "SECONDS", value_parser = positive, requires = "kernel")]
+    pub duration: Option<f64>,
 }

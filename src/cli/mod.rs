@@ -18,8 +18,9 @@ use std::path::PathBuf;
 use clap::Parser;
 use clap::error::ErrorKind;
 
-use arguments::{Arguments, Task};
+use arguments::{Arguments, Task, WindowsWish};
 use error::CliError;
+use grammar::WindowList;
 
 /// Done.
 pub const DONE: u8 = 0;
@@ -61,7 +62,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<
         None => return Outcome::OpenWindow(arguments.start.or_else(start::demonstration)),
         Some(Task::Read(wish)) => read::read(&wish, streams.out).map(|()| DONE),
         Some(Task::Recheck(wish)) => recheck::recheck(&wish, streams.out),
-        Some(Task::Windows(wish)) => windows(wish.json, streams.out).map(|()| DONE),
+        Some(Task::Windows(wish)) => windows(&wish, streams.out).map(|()| DONE),
     };
     Outcome::Done(finish(status, streams))
 }
@@ -84,8 +85,11 @@ pub fn without_window(start: Option<&PathBuf>, why: &dyn fmt::Display, streams: 
     }
 }
 
-fn windows(json: bool, out: &mut dyn Write) -> Result<(), CliError> {
-    if json {
+fn windows(wish: &WindowsWish, out: &mut dyn Write) -> Result<(), CliError> {
+    if let (Some(WindowList(windows)), Some(duration_s)) = (&wish.kernel, wish.duration) {
+        return put(out, crate::report::kernels_svg(windows, duration_s).as_bytes());
+    }
+    if wish.json {
         return put(out, &crate::report::windows_json()?);
     }
     put(out, crate::report::windows_table().as_bytes())

@@ -2,6 +2,7 @@
 
 mod comma;
 mod json;
+mod kernels;
 #[cfg(test)]
 mod sample;
 mod table;
@@ -10,6 +11,7 @@ mod windows;
 
 pub use comma::csv_table;
 pub use json::{reading_json, recheck_json};
+pub use kernels::kernels_svg;
 pub use text::{figure_text, tone_table};
 pub use windows::{windows_json, windows_table};
 
