@@ -1,6 +1,8 @@
 //! Six panes of one segment against one real transform of the same length, side by side in one run.
 //!
 //! Prints medians of interleaved rounds and their ratio; absolute times drift with the machine, the ratio does not.
+//! With the environment variable PANEWISE_PYTHON naming a Python that has SciPy, six windowed transforms there are timed
+//! in the same run.
 
 #![allow(clippy::print_stdout, clippy::unwrap_used, missing_docs)]
 
@@ -52,6 +54,23 @@ fn compare(n: usize) {
         let ratio = median.as_secs_f64() / medians[0].as_secs_f64();
         println!("  {name:55} {:9.3} ms  {ratio:6.2} transforms", median.as_secs_f64() * 1e3);
     }
+    if let Some(scipy) = scipy_seconds(n) {
+        let ratio = scipy / medians[1].as_secs_f64();
+        println!(
+            "  {:55} {:9.3} ms  {ratio:6.2} times the six panes",
+            "six scipy.fft.rfft(x*w) with magnitudes",
+            scipy * 1e3
+        );
+    }
+}
+
+/// What SciPy takes for six windowed transforms with magnitudes, where a Python with it is named.
+fn scipy_seconds(n: usize) -> Option<f64> {
+    let python = std::env::var_os("PANEWISE_PYTHON")?;
+    let script = concat!(env!("CARGO_MANIFEST_DIR"), "/benches/panes_scipy.py");
+    let output = std::process::Command::new(python).arg(script).arg(n.to_string()).output().unwrap();
+    assert!(output.status.success(), "{}", String::from_utf8_lossy(&output.stderr));
+    String::from_utf8(output.stdout).unwrap().trim().parse().ok()
 }
 
 fn medians(rows: &mut [(&str, &mut dyn FnMut())]) -> Vec<Duration> {

@@ -13,4 +13,4 @@ pub use dense::{Dense, MOMENTS};
 pub use floor::Floor;
 pub use panes::{cosine_pane_powers, sampled_pane_power};
 pub use spectra::{Curve, LEAST_DB, Spectra};
-pub use transform::{Transform, transform};
+pub use transform::{Transform, transform, transform_padded};

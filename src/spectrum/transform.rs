@@ -7,25 +7,33 @@ use realfft::{RealFftPlanner, RealToComplex};
 
 use super::buffers;
 
-/// The lines X\[0\] to X\[N/2\] of X\[k\] = Σ_n x\[n\] e^{-j2πkn/N}, of N real samples.
+/// The lines X\[0\] to X\[M/2\] of X\[k\] = Σ_n x\[n\] e^{-j2πkn/M}, of N real samples padded with zeros to M = P·N.
+///
+/// P, the padding, is 1 unless asked for otherwise: padding shows more points of the same curve, it parts nothing.
 #[derive(Debug, Clone)]
 pub struct Transform {
     n: usize,
+    padding: usize,
     lines: Vec<Complex64>,
 }
 
 impl Transform {
-    /// Samples transformed, N.
-    pub fn n_samples(&self) -> usize {
+    /// The transform's length M: the samples and the zeros behind them.
+    pub fn length(&self) -> usize {
         self.n
     }
 
-    /// X\[0\] to X\[N/2\].
+    /// How many lines of the transform make one bin of the segment, P.
+    pub fn padding(&self) -> usize {
+        self.padding
+    }
+
+    /// X\[0\] to X\[M/2\].
     pub fn lines(&self) -> &[Complex64] {
         &self.lines
     }
 
-    /// X\[k\] at any whole k: periodic in N, and X\[-k\] is the conjugate of X\[k\].
+    /// X\[k\] at any whole k: periodic in M, and X\[-k\] is the conjugate of X\[k\].
     pub fn at(&self, k: i64) -> Complex64 {
         let k = k.rem_euclid(self.n as i64) as usize;
         if k < self.lines.len() { self.lines[k] } else { self.lines[self.n - k].conj() }
@@ -58,11 +66,26 @@ pub fn transform(samples: &[f64]) -> Transform {
     transform
 }
 
+/// As [`transform`], of the samples and so many zeros behind them that the transform is `padding` times as long.
+///
+/// # Panics
+/// If `padding` is 0.
+pub fn transform_padded(samples: &[f64], padding: usize) -> Transform {
+    assert!(padding > 0, "padding to 0 times the length");
+    let mut work = buffers::REAL.take(samples.len() * padding);
+    work[..samples.len()].copy_from_slice(samples);
+    work[samples.len()..].fill(0.0);
+    let mut transform = transform_in_place(&mut work);
+    transform.padding = padding;
+    buffers::REAL.give_back(work);
+    transform
+}
+
 /// As [`transform`], using up the samples.
 pub(super) fn transform_in_place(samples: &mut [f64]) -> Transform {
     let n = samples.len();
     if n == 0 {
-        return Transform { n: 1, lines: vec![Complex64::ZERO] };
+        return Transform { n: 1, padding: 1, lines: vec![Complex64::ZERO] };
     }
     let plan = plan(n);
     let mut lines = buffers::COMPLEX.take(n / 2 + 1);
@@ -71,7 +94,7 @@ pub(super) fn transform_in_place(samples: &mut [f64]) -> Transform {
     let done = plan.process_with_scratch(samples, &mut lines, &mut scratch);
     debug_assert!(done.is_ok(), "{done:?}");
     buffers::COMPLEX.give_back(scratch);
-    Transform { n, lines }
+    Transform { n, padding: 1, lines }
 }
 
 /// How many plans are kept. A dragged edge asks for a new length at every step; each plan holds twiddle factors of
