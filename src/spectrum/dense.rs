@@ -2,6 +2,7 @@
 
 use realfft::num_complex::Complex64;
 
+use super::buffers;
 use super::transform::{Transform, transform_in_place};
 use crate::window::taps::{N_TAPS, tap_derivatives, taps, transform_of_taps};
 
@@ -24,11 +25,21 @@ impl Dense {
     /// The dense transform of `samples`.
     pub fn of(samples: &[f64]) -> Self {
         let n = samples.len().max(1);
-        let middle = (n / 2) as f64;
-        let t = |i: usize| (i as f64 - middle) / (2 * n) as f64;
-        let mut doubled: Vec<f64> = samples.iter().enumerate().map(|(i, x)| x / transform_of_taps(t(i))).collect();
-        doubled.resize(2 * n, 0.0);
-        Self { n, doubled: transform_in_place(&mut doubled) }
+        let middle = n / 2;
+        let mut doubled = buffers::REAL.take(2 * n);
+        doubled.fill(0.0);
+        doubled[..samples.len()].copy_from_slice(samples);
+        // The divisor is even about the middle sample: one serves both sides.
+        for distance in 0..=n / 2 {
+            let divisor = transform_of_taps(distance as f64 / (2 * n) as f64);
+            doubled[middle - distance] /= divisor;
+            if distance > 0 && middle + distance < n {
+                doubled[middle + distance] /= divisor;
+            }
+        }
+        let transform = transform_in_place(&mut doubled);
+        buffers::REAL.give_back(doubled);
+        Self { n, doubled: transform }
     }
 
     /// Samples in the segment, N.

@@ -79,9 +79,12 @@ fn differentiated(series: &[[f64; N_TAPS]; N_TERMS]) -> [[f64; N_TAPS]; N_TERMS]
 }
 
 /// φ's transform ∫ φ(u) cos(2πut) du at `cycles_per_step` t, |t| <= 1/4: what samples are divided by beforehand.
+///
+/// T sinh(r)/(r I_0(β)), r = √(β² - (πTt)²): r is above 30 over the whole range, where sinh(r) is e^r/2 to rounding.
 pub(crate) fn transform_of_taps(cycles_per_step: f64) -> f64 {
+    static SCALE: LazyLock<f64> = LazyLock::new(|| 0.5 * WIDTH / i0_scaled(BETA));
     let root = (BETA * BETA - (PI * WIDTH * cycles_per_step).powi(2)).sqrt();
-    0.5 * WIDTH * ((root - BETA).exp() - (-root - BETA).exp()) / (root * i0_scaled(BETA))
+    *SCALE * (root - BETA).exp() / root
 }
 
 fn series() -> [[f64; N_TAPS]; N_TERMS] {
