@@ -95,16 +95,19 @@ fn windows(wish: &WindowsWish, out: &mut dyn Write) -> Result<(), CliError> {
     put(out, crate::report::windows_table().as_bytes())
 }
 
-/// Writes what was asked for, to the end.
+/// Writes what was asked for, to the end, or for as long as somebody reads: a broken pipe is no failure, and changes
+/// nothing of the exit status.
 fn put(out: &mut dyn Write, bytes: &[u8]) -> Result<(), CliError> {
-    out.write_all(bytes).and_then(|()| out.flush()).map_err(CliError::Output)
+    match out.write_all(bytes).and_then(|()| out.flush()) {
+        Err(reason) if reason.kind() != io::ErrorKind::BrokenPipe => Err(CliError::Output(reason)),
+        _ => Ok(()),
+    }
 }
 
 /// The exit status of a command; a failure is told in one line.
 fn finish(result: Result<u8, CliError>, streams: &mut Streams<'_>) -> u8 {
     match result {
         Ok(status) => status,
-        Err(CliError::Output(reason)) if reason.kind() == io::ErrorKind::BrokenPipe => DONE,
         Err(error) => {
             say(streams, &error.to_string());
             BAD_INPUT

@@ -6,7 +6,7 @@ use std::path::{Path, PathBuf};
 use super::arguments::{ReadWish, ScaleWish, SearchWish};
 use super::{CliError, put};
 use crate::capture::{self, Capture};
-use crate::reading::{Reading, ReadingError, Request, Warning, analyse, figures_of};
+use crate::reading::{Reading, ReadingError, Request, Segment, Warning, analyse, figures_of};
 use crate::report;
 use crate::session::{self, CaptureRef, CaptureState, Command, Pane, PaneId, Session};
 use crate::signal::{Span, Watch};
@@ -222,13 +222,19 @@ fn mark_steady(opened: &mut Opened) -> Result<(), CliError> {
     let (rate_hz, frames) = (session.sample_rate_hz(), session.capture.frames);
     let steady = suggest_steady(opened.capture.source.as_ref(), session.channel, rate_hz, &Watch::new())
         .map_err(|reason| CliError::Signal { path: PathBuf::from(&session.capture.path), reason })?;
-    let span = steady.unwrap_or(Span { start: 0, samples: frames });
+    let mut span = steady.unwrap_or(Span { start: 0, samples: frames });
+    let whole = span.samples;
+    span.samples = whole.min(Segment::MOST);
     Command::MoveSegment(session.current, span).apply(session);
     let (from_s, to_s) = (span.start as f64 / rate_hz, span.end() as f64 / rate_hz);
     let which =
         if steady.is_some() { "the longest steady stretch" } else { "no stretch is steady, so the whole capture" };
-    let text =
-        format!("no segment was given: {which} was read, {from_s:.3}..{to_s:.3} s ({}n..{}n)", span.start, span.end());
+    let part = if span.samples < whole { "as much as one transform takes of " } else { "" };
+    let text = format!(
+        "no segment was given: {part}{which} was read, {from_s:.3}..{to_s:.3} s ({}n..{}n)",
+        span.start,
+        span.end()
+    );
     opened.warnings.push(Warning { code: "assumed-segment", text });
     Ok(())
 }

@@ -5,9 +5,9 @@ use std::sync::Arc;
 use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
 use super::{Request, rows};
 use crate::capture::segment_doubts;
-use crate::signal::{Cancelled, Removed, SignalError, Source, Span, Watch, read_channel, remove};
+use crate::signal::{Cancelled, Removed, SignalError, Source, Span, Stored, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
-use crate::tone::{Noise, Search, search};
+use crate::tone::{LEAST_CYCLES, NamedTone, Noise, Quest, Search, search, suggest_steady};
 use crate::units::ScaleError;
 
 /// Why there is no Reading.
@@ -96,6 +96,7 @@ pub fn analyse_curves(source: &dyn Source, request: &Request, watch: &Watch) -> 
     let doubts = doubts.into_iter().map(|(code, text)| Warning { code, text }).collect();
     let removed = remove(&mut samples, rate_hz, request.removal);
     let spectra = Arc::new(Spectra::new(samples.into(), rate_hz, &request.windows, watch)?);
+    spectra.prepare_curves();
     Ok(Segment { spectra, removed, doubts })
 }
 
@@ -105,6 +106,7 @@ pub fn analyse_curves(source: &dyn Source, request: &Request, watch: &Watch) -> 
 /// [`ReadingError::Cancelled`].
 pub fn with_windows(segment: &Segment, request: &Request, watch: &Watch) -> Result<Segment, ReadingError> {
     let spectra = Arc::new(segment.spectra.with_windows(&request.windows, watch)?);
+    spectra.prepare_curves();
     Ok(Segment { spectra, ..segment.clone() })
 }
 
@@ -123,8 +125,17 @@ pub fn analyse(
         Some(segment) => segment,
         None => analyse_curves(source, request, watch)?,
     };
-    let tuning = request.tuning;
-    let found = search(&segment.spectra, request.removal, tuning.false_alarm, tuning.max_tones, watch)?;
+    segment.spectra.prepare_between_lines(watch)?;
+    watch.report(0.2);
+    let (named, mut doubts) = named_tones(&segment.spectra, request);
+    let quest = Quest {
+        removal: request.removal,
+        false_alarm: request.tuning.false_alarm,
+        max_tones: request.tuning.max_tones,
+        named: &named,
+    };
+    let found = search(&segment.spectra, &quest, watch)?;
+    doubts.extend(unsteady(&segment, request, watch)?);
     watch.report(0.5);
     let tones = rows::tones(&segment.spectra, request, &found, watch)?;
     let reading = Reading {
@@ -137,7 +148,7 @@ pub fn analyse(
         advice: Vec::new(),
         tones,
         skirts: Vec::new(),
-        warnings: warnings(&segment, request, &found),
+        warnings: warnings(&segment, request, &found, doubts),
     };
     Ok(Analysis { request: request.clone(), segment, reading: Arc::new(reading) })
 }
@@ -217,8 +228,56 @@ fn pane_facts(spectra: &Spectra, request: &Request, noise: Option<&Noise>) -> Ve
     spectra.windows().iter().enumerate().map(facts).collect()
 }
 
-fn warnings(segment: &Segment, request: &Request, found: &Search) -> Vec<Warning> {
+/// The tones named by hand, in bins, and what is to be said of those that cannot be read.
+fn named_tones(spectra: &Spectra, request: &Request) -> (Vec<NamedTone>, Vec<Warning>) {
+    let (least, most) = (LEAST_CYCLES, spectra.n_samples() as f64 / 2.0 - LEAST_CYCLES);
+    let mut named = Vec::new();
+    let mut doubts = Vec::new();
+    for tone in &request.hand_tones {
+        let nu = tone.frequency_hz / spectra.line_spacing_hz();
+        if (least..=most).contains(&nu) {
+            named.push(NamedTone { nu, held: tone.held });
+        } else {
+            let text = format!(
+                "the tone named at {} Hz is not read: this segment holds tones from {:.4} Hz to {:.4} Hz",
+                tone.frequency_hz,
+                least * spectra.line_spacing_hz(),
+                most * spectra.line_spacing_hz()
+            );
+            doubts.push(Warning { code: "tone-not-read", text });
+        }
+    }
+    (named, doubts)
+}
+
+/// A segment is called unsteady when its longest steady stretch is less than this part of it.
+const STEADY_PART: f64 = 0.8;
+
+/// What is to be said of a segment that is not steady: levels of tones are then means over it.
+fn unsteady(segment: &Segment, request: &Request, watch: &Watch) -> Result<Option<Warning>, ReadingError> {
+    let samples = segment.spectra.samples();
+    let source = Stored::new(request.sample_rate_hz, 1, samples.to_vec());
+    let steady = suggest_steady(&source, 0, request.sample_rate_hz, watch)?;
+    let part = steady.map_or(0.0, |s| s.samples as f64 / samples.len() as f64);
+    if part >= STEADY_PART || samples.iter().all(|x| *x == 0.0) {
+        return Ok(None);
+    }
+    let at = |sample: u64| (request.span.start + sample) as f64 / request.sample_rate_hz;
+    let which = steady.map_or("no part of the segment is steady".to_owned(), |s| {
+        format!("only {:.3} s to {:.3} s of the segment is steady", at(s.start), at(s.end()))
+    });
+    let text = format!("{which}: levels are means over the segment, and a tone that moves may show as several");
+    Ok(Some(Warning { code: "not-steady", text }))
+}
+
+fn warnings(segment: &Segment, request: &Request, found: &Search, doubts: Vec<Warning>) -> Vec<Warning> {
     let mut warnings = segment.doubts.clone();
+    warnings.extend(doubts);
+    if !found.settled {
+        let text = "the tones could not be fitted together: frequency and level of a row are those of the sharpest \
+                    pane that reads it clearly";
+        warnings.push(Warning { code: "not-fitted", text: text.to_owned() });
+    }
     if found.noise.is_none() {
         let text = format!(
             "the segment holds {} samples: too few lines to tell a noise floor, so no tones are looked for",

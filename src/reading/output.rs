@@ -191,7 +191,7 @@ pub struct BudgetItem {
 /// One tone.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct Tone {
-    /// Frequency; before the joint fit that of the sharpest clear pane.
+    /// Frequency by the joint fit; where that did not settle, that of the sharpest clear pane.
     pub frequency_hz: f64,
     /// Its expanded uncertainty, k = 2; needs the joint fit.
     pub frequency_u95_hz: Option<f64>,
@@ -205,7 +205,7 @@ pub struct Tone {
     pub level_db: f64,
     /// 20 lg(1 + U/A); needs the joint fit.
     pub level_u95_db: Option<f64>,
-    /// Cosine phase at the segment's first sample, -π to π; needs the joint fit.
+    /// Cosine phase at the segment's first sample, -π to π; `None` where the joint fit did not settle.
     pub phase_rad: Option<f64>,
     /// Needs the joint fit.
     pub verdict: Option<Verdict>,
@@ -276,7 +276,7 @@ pub struct PaneReading {
     pub level_db: f64,
     /// What noise alone does to the level in this pane, dB (one standard uncertainty); `None` without a floor.
     pub u_db: Option<f64>,
-    /// Signed; needs the joint fit.
+    /// What the other tones do to the level here, signed, by the joint fit; `None` where that did not settle.
     pub predicted_leak_db: Option<f64>,
     /// Corrections from the raw line to the level; they sum to [`PaneReading::level_db`].
     pub ledger: Vec<LedgerStep>,

@@ -4,24 +4,15 @@ use super::Request;
 use super::output::{LedgerStep, PaneReading, ReadingState, Tone};
 use crate::signal::{Cancelled, Watch};
 use crate::spectrum::Spectra;
-use crate::tone::{Disturbance, FoundTone, LoneReading, PaneView, Search, State};
+use crate::tone::{Disturbance, LoneReading, PaneView, Search, State};
 use crate::units::{Scale, db};
 
 /// Amplitudes below this, in the unit, are stated as if they were this large: levels in decibels stay finite.
 const LEAST_AMPLITUDE: f64 = 1e-30;
 
-/// A tone named by hand within this of one found is that one, bins.
-const SAME: f64 = 0.75;
-
 /// Over the reference, through the detector; finite for any amplitude.
 pub(super) fn level_db(scale: &Scale, peak: f64) -> f64 {
     scale.level_db(peak.max(LEAST_AMPLITUDE))
-}
-
-/// A tone to be read: found by the search, named by hand, or both.
-struct Wanted {
-    held: bool,
-    tags: Vec<String>,
 }
 
 /// The rows, by frequency.
@@ -31,55 +22,17 @@ pub(super) fn tones(
     found: &Search,
     watch: &Watch,
 ) -> Result<Vec<Tone>, Cancelled> {
-    let (known, wanted) = with_hand_tones(spectra, request, found);
-    let mut rows = Vec::with_capacity(known.len());
-    for (i, wanted) in wanted.iter().enumerate() {
+    let mut rows = Vec::with_capacity(found.tones.len());
+    for i in 0..found.tones.len() {
         watch.check()?;
-        watch.report(0.5 + 0.5 * i as f64 / known.len() as f64);
-        rows.push(row(spectra, request, found, &known, i, wanted));
+        watch.report(0.5 + 0.5 * i as f64 / found.tones.len() as f64);
+        rows.push(row(spectra, request, found, i));
     }
     rows.sort_by(|a, b| a.frequency_hz.total_cmp(&b.frequency_hz));
     Ok(rows)
 }
 
-/// The tones found together with those named by hand, in matching order.
-fn with_hand_tones(spectra: &Spectra, request: &Request, found: &Search) -> (Vec<FoundTone>, Vec<Wanted>) {
-    let mut known = found.tones.clone();
-    let mut wanted: Vec<Wanted> = known.iter().map(|_| Wanted { held: false, tags: Vec::new() }).collect();
-    let view = PaneView { spectra, pane: sharpest(spectra), removal: request.removal };
-    let top = spectra.n_samples() as f64 / 2.0;
-    for hand in &request.hand_tones {
-        let nu = hand.frequency_hz / spectra.line_spacing_hz();
-        if !(nu > 0.0 && nu < top) {
-            continue;
-        }
-        let nearest = (0..known.len())
-            .filter(|&i| (known[i].nu - nu).abs() < SAME)
-            .min_by(|&a, &b| (known[a].nu - nu).abs().total_cmp(&(known[b].nu - nu).abs()));
-        let i = nearest.unwrap_or_else(|| {
-            let read = if hand.held { None } else { view.read_near(nu) };
-            let read = read.unwrap_or_else(|| view.read_at(nu));
-            let mut tone = FoundTone { nu: read.nu, amplitude: read.amplitude, snr: 0.0 };
-            tone.snr = found.noise.as_ref().map_or(0.0, |noise| noise.snr(&tone, spectra.n_samples() as f64));
-            known.push(tone);
-            wanted.push(Wanted { held: false, tags: Vec::new() });
-            known.len() - 1
-        });
-        wanted[i].tags.push("by-hand".to_owned());
-        if hand.held {
-            known[i].nu = nu;
-            wanted[i].held = true;
-            wanted[i].tags.push("held".to_owned());
-        }
-    }
-    (known, wanted)
-}
-
-/// The pane with the narrowest noise bandwidth among those whose maximum tells the frequency; else the first.
-fn sharpest(spectra: &Spectra) -> usize {
-    by_sharpness(spectra).into_iter().find(|&p| !spectra.windows()[p].is_flat_top()).unwrap_or(0)
-}
-
+/// The panes, narrowest noise bandwidth first.
 fn by_sharpness(spectra: &Spectra) -> Vec<usize> {
     let enbw = |pane: usize| {
         let sums = spectra.sums(pane);
@@ -90,32 +43,32 @@ fn by_sharpness(spectra: &Spectra) -> Vec<usize> {
     panes
 }
 
-fn row(spectra: &Spectra, request: &Request, found: &Search, known: &[FoundTone], i: usize, wanted: &Wanted) -> Tone {
-    let tone = known[i];
+fn row(spectra: &Spectra, request: &Request, found: &Search, i: usize) -> Tone {
+    let tone = found.tones[i];
     let order = by_sharpness(spectra);
     let mut frequency = tone.nu;
-    let mut best: Option<(f64, f64)> = None;
+    let mut sharpest: Option<(f64, f64)> = None;
     let mut readings: Vec<Option<PaneReading>> = vec![None; order.len()];
-    // Flat-tops last: they borrow the frequency of the sharpest pane that sees the tone clearly.
+    // Flat-tops last: they borrow the frequency of the joint fit, or of the sharpest pane that sees the tone clearly.
     let (tops, sharp): (Vec<usize>, Vec<usize>) = order.iter().partition(|&&p| spectra.windows()[p].is_flat_top());
     for pane in sharp.into_iter().chain(tops) {
         let noise = found.noise.as_ref().map_or(0.0, |n| n.line_power(tone.nu, spectra.sums(pane).s2));
-        let disturbance = Disturbance::of(spectra, pane, known, i, noise);
-        let (reading, lone) = pane_reading(spectra, request, pane, frequency, wanted.held, &disturbance);
-        if reading.state == ReadingState::Clear && best.is_none() {
-            best = Some((reading.peak_hz, reading.amplitude));
-            frequency = lone.nu;
+        let disturbance = Disturbance::of(spectra, pane, &found.tones, i, noise);
+        let (mut reading, lone) = pane_reading(spectra, request, pane, frequency, tone.held, &disturbance);
+        reading.predicted_leak_db = found.settled.then_some(disturbance.leak_db);
+        if reading.state == ReadingState::Clear && sharpest.is_none() {
+            sharpest = Some((reading.peak_hz, reading.amplitude));
+            if !found.settled {
+                frequency = lone.nu;
+            }
         }
         readings[pane] = Some(reading);
     }
     let readings: Vec<PaneReading> = readings.into_iter().flatten().collect();
-    let factor = request.scale.units_per_full_scale();
-    let (frequency_hz, amplitude) =
-        best.unwrap_or((tone.nu * spectra.line_spacing_hz(), tone.amplitude.norm() * factor));
-    let noise_density = found.noise.as_ref().map(|noise| {
-        let n = spectra.n_samples() as f64;
-        2.0 * noise.line_power(tone.nu, n) / (n * spectra.sample_rate_hz()) * factor * factor
-    });
+    let seen = (tone.nu * spectra.line_spacing_hz(), tone.amplitude.norm() * request.scale.units_per_full_scale());
+    let (frequency_hz, amplitude) = if found.settled { seen } else { sharpest.unwrap_or(seen) };
+    let tags = [("by-hand", tone.by_hand), ("held", tone.held)];
+    let tags = tags.into_iter().filter(|t| t.1).map(|t| t.0.to_owned()).collect();
     Tone {
         frequency_hz,
         frequency_u95_hz: None,
@@ -124,16 +77,16 @@ fn row(spectra: &Spectra, request: &Request, found: &Search, known: &[FoundTone]
         level: request.scale.level(amplitude),
         level_db: level_db(&request.scale, amplitude),
         level_u95_db: None,
-        phase_rad: None,
+        phase_rad: found.settled.then(|| tone.amplitude.arg()),
         verdict: None,
         why: None,
         overruled: None,
         budget: None,
-        noise_density,
-        snr_db: found.noise.as_ref().map(|_| 10.0 * tone.snr.max(1e-30).log10()),
+        noise_density: None,
+        snr_db: None,
         drift_hz: None,
         drift_db: None,
-        tags: wanted.tags.clone(),
+        tags,
         order: None,
         agreement_db: agreement(&readings),
         readings,

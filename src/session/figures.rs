@@ -160,7 +160,7 @@ fn level(moved: &mut Vec<Moved>, what: String, was: f64, is: f64) {
 /// Not finite and equal to the bit is alike too; not a number against a number is not.
 fn number(moved: &mut Vec<Moved>, what: String, was: f64, is: f64, alike: f64) {
     let apart = (was - is).abs();
-    if was.to_bits() != is.to_bits() && (apart.is_nan() || apart > alike) {
+    if was.to_bits() != is.to_bits() && !(apart.is_finite() && alike.is_finite() && apart <= alike) {
         moved.push(Moved { what, was: Figure::Number(was), is: Figure::Number(is) });
     }
 }

@@ -94,8 +94,9 @@ impl Span {
     }
 }
 
-/// Frames read at a time where a whole span is wanted: large enough to be quick, small enough to be cancelled soon.
-const FRAMES_A_BLOCK: usize = 1 << 16;
+/// Values read at a time where a whole span is wanted: large enough to be quick, small enough to be cancelled soon, and
+/// bounded however many channels there are.
+const VALUES_A_BLOCK: usize = 1 << 17;
 
 /// One channel of a span, as normalised samples.
 ///
@@ -110,11 +111,12 @@ pub fn read_channel(source: &dyn Source, channel: usize, span: Span, watch: &Wat
         return Err(SignalError::OutOfRange { start: span.start, end: span.end(), frames: source.n_frames() });
     }
     let mut samples = Vec::with_capacity(span.samples as usize);
-    let mut frames = vec![0.0; FRAMES_A_BLOCK.min(span.samples as usize) * channels];
+    let frames_a_block = (VALUES_A_BLOCK / channels).clamp(1, (span.samples as usize).max(1));
+    let mut frames = vec![0.0; frames_a_block * channels];
     let mut at = span.start;
     while at < span.end() {
         watch.check()?;
-        let n = FRAMES_A_BLOCK.min((span.end() - at) as usize);
+        let n = frames_a_block.min((span.end() - at) as usize);
         let block = &mut frames[..n * channels];
         source.read_frames(at, block)?;
         samples.extend(block.iter().skip(channel).step_by(channels));

@@ -77,6 +77,11 @@ impl Spectra {
         self.samples.len()
     }
 
+    /// The segment's samples, after what was taken out of them.
+    pub fn samples(&self) -> &[f64] {
+        &self.samples
+    }
+
     /// Samples a second.
     pub fn sample_rate_hz(&self) -> f64 {
         self.sample_rate_hz
@@ -117,15 +122,18 @@ impl Spectra {
         lines.kernel.get_or_init(|| lines.window.kernel(self.n_samples())).at(nu)
     }
 
-    /// Prepares what [`Spectra::curve_db`] and [`Spectra::at`] need, so that the screen does not wait for it.
+    /// Prepares the extremes that curves of many lines a column are drawn from: quick, but not for a screen to wait on.
+    pub fn prepare_curves(&self) {
+        for pane in &self.panes {
+            pane.pyramid();
+        }
+    }
+
+    /// Prepares the values between lines, for curves and readings: several transforms' time.
     ///
     /// # Errors
     /// [`Cancelled`] where the watch says so.
-    pub fn prepare(&self, watch: &Watch) -> Result<(), Cancelled> {
-        for pane in &self.panes {
-            watch.check()?;
-            pane.pyramid();
-        }
+    pub fn prepare_between_lines(&self, watch: &Watch) -> Result<(), Cancelled> {
         for pane in 0..self.panes.len() {
             watch.check()?;
             self.at(pane, 0.0);
@@ -133,22 +141,41 @@ impl Spectra {
         Ok(())
     }
 
+    /// Whether values between the lines of a pane are at hand; until then curves show its lines.
+    pub fn has_between_lines(&self, pane: usize) -> bool {
+        self.panes.get(pane).is_some_and(|lines| self.dense_of(lines).is_some())
+    }
+
+    fn dense_of<'a>(&'a self, lines: &'a PaneLines) -> Option<&'a Dense> {
+        if lines.window.cosine_terms().is_some() { self.dense.get() } else { lines.own_dense.get() }
+    }
+
+    /// |Y(ν)|² where values between lines are at hand, else that of the nearest line: never waits.
+    fn power_at_hand(&self, lines: &PaneLines, nu: f64) -> f64 {
+        let between = self.dense_of(lines).map(|dense| match lines.window.cosine_terms() {
+            Some(terms) => dense.windowed_at(terms, nu).norm_sqr(),
+            None => dense.at(nu).norm_sqr(),
+        });
+        between.or_else(|| lines.power.get(nu.round().max(0.0) as usize).copied()).unwrap_or(0.0)
+    }
+
     /// The curve of pane `pane` over columns whose edges, in hertz and rising, are `edges_hz` (one more than columns).
     ///
     /// Each column holds the least and greatest level in it, as 20 lg of the peak amplitude over full scale (dB), not
     /// below [`LEAST_DB`]. A column of two or more lines shows their extremes; a narrower one the true transform
-    /// between lines as well. Columns outside 0 Hz to half the rate are empty.
+    /// between lines as well, once that was prepared ([`Spectra::prepare_between_lines`]), and the nearest line until
+    /// then. Columns outside 0 Hz to half the rate are empty.
     pub fn curve_db(&self, pane: usize, edges_hz: &[f64]) -> Curve {
         let Some(lines) = self.panes.get(pane) else {
             return vec![Extent::EMPTY; edges_hz.len().saturating_sub(1)];
         };
         let bins: Vec<f64> = edges_hz.iter().map(|f| f / self.line_spacing_hz()).collect();
         let mut last = None;
-        bins.windows(2).map(|edges| self.column(pane, lines, edges[0], edges[1], &mut last)).collect()
+        bins.windows(2).map(|edges| self.column(lines, edges[0], edges[1], &mut last)).collect()
     }
 
     /// One column; `last` carries the power at the edge shared with the column before.
-    fn column(&self, pane: usize, lines: &PaneLines, from: f64, to: f64, last: &mut Option<(f64, f64)>) -> Extent {
+    fn column(&self, lines: &PaneLines, from: f64, to: f64, last: &mut Option<(f64, f64)>) -> Extent {
         let top = self.n_samples() as f64 / 2.0;
         if !(from < to && to >= 0.0 && from <= top) {
             return Extent::EMPTY;
@@ -156,7 +183,7 @@ impl Spectra {
         let inside = from.max(0.0).ceil() as usize..to.min(top).floor() as usize + 1;
         let mut power = lines.pyramid().exact(&lines.power, inside);
         if to - from < LINES_A_COLUMN {
-            let at_edge = |nu: f64| self.at(pane, nu).norm_sqr();
+            let at_edge = |nu: f64| self.power_at_hand(lines, nu);
             let known = last.filter(|(nu, _)| *nu == from).map(|(_, power)| power);
             let right = at_edge(to.min(top));
             *last = Some((to, right));
@@ -175,11 +202,13 @@ impl Spectra {
         Extent { min: level(power.min), max: level(power.max) }
     }
 
-    /// The level that pane `pane` shows at a frequency: 20 lg of the peak amplitude over full scale (dB).
+    /// The level that pane `pane` shows at a frequency: 20 lg of the peak amplitude over full scale (dB); that of the
+    /// nearest line until values between lines were prepared.
     pub fn value_db(&self, pane: usize, frequency_hz: f64) -> f64 {
         let top = self.n_samples() as f64 / 2.0;
         let nu = (frequency_hz / self.line_spacing_hz()).clamp(0.0, top);
-        amplitude_db(self.at(pane, nu).norm_sqr(), self.sums(pane).s1)
+        let power = self.panes.get(pane).map_or(0.0, |lines| self.power_at_hand(lines, nu));
+        amplitude_db(power, self.sums(pane).s1)
     }
 
     /// The dense transform of the segment as it is, under no window.
@@ -249,7 +278,11 @@ mod tests {
 
     fn spectra(n: usize, nu: f64) -> Spectra {
         let windows: Vec<Window> = ["rectangular", "hann"].iter().map(|w| Window::parse(w).unwrap()).collect();
-        Spectra::new(tone(n, nu), n as f64, &windows, &Watch::new()).unwrap()
+        let spectra = Spectra::new(tone(n, nu), n as f64, &windows, &Watch::new()).unwrap();
+        assert!(!spectra.has_between_lines(0));
+        spectra.prepare_between_lines(&Watch::new()).unwrap();
+        assert!(spectra.has_between_lines(1));
+        spectra
     }
 
     #[test]

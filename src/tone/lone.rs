@@ -230,11 +230,11 @@ mod tests {
                     for phase in 0..8 {
                         let nu = cycles + 0.1 * f64::from(tenth);
                         let spectra = view_of(nu, 0.8 * f64::from(phase), 512, &windows, removal);
-                        for pane in 0..windows.len() {
+                        for (pane, window) in windows.iter().enumerate() {
                             let view = PaneView { spectra: &spectra, pane, removal };
                             let reading = view.read_near(nu + 0.2).unwrap();
                             let error = db(reading.amplitude.norm() / 0.7);
-                            let at = format!("{} at {nu}, phase {phase}, {removal:?}", windows[pane]);
+                            let at = format!("{window} at {nu}, phase {phase}, {removal:?}");
                             assert!(error.abs() < AGREEMENT_DB, "{at}: {error} dB");
                             assert!((reading.nu - nu).abs() < 1e-3, "{at}: {}", reading.nu);
                         }

@@ -9,7 +9,7 @@ mod threshold;
 
 pub use fit::{JointFit, SteadyTone, UnitUncertainty, fit_jointly};
 pub use lone::{LoneReading, PaneView};
-pub use search::{FoundTone, Noise, Search, search};
+pub use search::{FoundTone, LEAST_CYCLES, NamedTone, Noise, Quest, Search, search};
 pub use state::{Disturbance, State};
 pub use steadiness::suggest_steady;
 pub use threshold::detection_threshold;

@@ -14,6 +14,15 @@ use crate::signal::{Cancelled, Removal, Watch};
 use crate::spectrum::{Floor, Spectra};
 use crate::window::Window;
 
+/// A tone named by hand: where it is to be looked for.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct NamedTone {
+    /// Where it is, bins.
+    pub nu: f64,
+    /// Whether it is held there.
+    pub held: bool,
+}
+
 /// A tone found, in bins and full scales.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct FoundTone {
@@ -23,6 +32,10 @@ pub struct FoundTone {
     pub amplitude: Complex64,
     /// Its power over one rectangular line's mean noise; 0 without a floor.
     pub snr: f64,
+    /// Whether it was named by hand.
+    pub by_hand: bool,
+    /// Whether its frequency is held.
+    pub held: bool,
 }
 
 /// What a search gives.
@@ -30,6 +43,8 @@ pub struct FoundTone {
 pub struct Search {
     /// The tones, by frequency.
     pub tones: Vec<FoundTone>,
+    /// Whether all of them were fitted jointly; else they stand as they were seen one at a time.
+    pub settled: bool,
     /// One-sided noise, as |X\[k\]|² of the rectangular window; `None` where the segment is too short to tell.
     pub noise: Option<Noise>,
     /// How many tones were left out, being the weakest over their floor.
@@ -76,79 +91,117 @@ const OVER_SKIRT: f64 = 2.0;
 /// Two tones nearer than this are one, bins.
 const SAME: f64 = 0.5;
 
+/// A tone named by hand within this of one found is that one, bins.
+const SAME_AS_NAMED: f64 = 0.75;
+
+/// A tone named by hand must stand this far from 0 Hz and half the rate: half a cycle in the segment.
+pub const LEAST_CYCLES: f64 = 0.5;
+
 /// Peaks looked at in each window, strongest first.
 const MOST_CANDIDATES: usize = 20_000;
 
 /// Tones kept while searching, before the weakest are left out.
 const MOST_FOUND: usize = 400;
 
-/// Looks for tones in the segment of `spectra`, whose own panes do not matter.
-///
-/// `false_alarm` is the chance that noise alone gives any tone, `max_tones` how many are kept (those that stand highest
-/// over their floor).
+/// What a search looks for.
+#[derive(Debug, Clone, Copy)]
+pub struct Quest<'a> {
+    /// What was taken out of the segment.
+    pub removal: Removal,
+    /// The chance that noise alone gives any tone.
+    pub false_alarm: f64,
+    /// How many tones are kept: those that stand highest over their floor.
+    pub max_tones: usize,
+    /// Tones named by hand, kept whatever the search finds; those less than half a cycle from 0 Hz or half the rate are
+    /// passed over.
+    pub named: &'a [NamedTone],
+}
+
+/// Looks for tones in the segment of `spectra`, whose own panes do not matter, and fits them jointly.
 ///
 /// # Errors
 /// [`Cancelled`] where the watch says so.
-pub fn search(
-    spectra: &Spectra,
-    removal: Removal,
-    false_alarm: f64,
-    max_tones: usize,
-    watch: &Watch,
-) -> Result<Search, Cancelled> {
+pub fn search(spectra: &Spectra, quest: &Quest<'_>, watch: &Watch) -> Result<Search, Cancelled> {
     let windows: Vec<Window> = WINDOWS.iter().filter_map(|name| Window::parse(name).ok()).collect();
     let looks = spectra.with_windows(&windows, watch)?;
     let quietest = windows.len() - 1;
-    let Some(floor) = Floor::of(looks.power(quietest), FLOOR_MARGIN) else {
-        return Ok(Search { tones: Vec::new(), noise: None, n_left_out: 0 });
-    };
-    let noise = Noise { floor, s2: looks.sums(quietest).s2 };
-    let n_lines = looks.power(quietest).len();
-    // Lines of a tapered window are not independent: half of them count towards the floor.
-    let floor_lines = (Floor::LENGTH.min(n_lines) / 2).max(1);
-    let z = detection_threshold(n_lines, floor_lines, false_alarm / WINDOWS.len() as f64);
+    let floor = Floor::of(looks.power(quietest), FLOOR_MARGIN);
+    let noise = floor.map(|floor| Noise { floor, s2: looks.sums(quietest).s2 });
     let mut found = Vec::new();
-    for pane in 0..windows.len() {
-        let view = PaneView { spectra: &looks, pane, removal };
-        look(&view, &noise, z, &mut found, watch)?;
+    if let Some(noise) = &noise {
+        let n_lines = looks.power(quietest).len();
+        // Lines of a tapered window are not independent: half of them count towards the floor.
+        let floor_lines = (Floor::LENGTH.min(n_lines) / 2).max(1);
+        let z = detection_threshold(n_lines, floor_lines, quest.false_alarm / WINDOWS.len() as f64);
+        for pane in 0..windows.len() {
+            let view = PaneView { spectra: &looks, pane, removal: quest.removal };
+            look(&view, noise, z, &mut found, watch)?;
+        }
     }
     let n_found = found.len();
     found.sort_by(|a, b| b.snr.total_cmp(&a.snr));
-    found.truncate(max_tones);
+    found.truncate(quest.max_tones);
+    let n_left_out = n_found - found.len();
+    add_named(spectra, quest.named, &mut found);
     found.sort_by(|a, b| a.nu.total_cmp(&b.nu));
-    watch.check()?;
-    refine(spectra, removal, &noise, &mut found);
-    Ok(Search { n_left_out: n_found - found.len(), tones: found, noise: Some(noise) })
+    let settled = refine(spectra, quest.removal, &mut found, watch)?;
+    for tone in &mut found {
+        tone.snr = noise.as_ref().map_or(0.0, |noise| noise.snr(tone, spectra.n_samples() as f64));
+    }
+    Ok(Search { tones: found, settled, noise, n_left_out })
+}
+
+/// Marks the tones named by hand among those found, and adds those that were not.
+fn add_named(spectra: &Spectra, named: &[NamedTone], found: &mut Vec<FoundTone>) {
+    let n = spectra.n_samples() as f64;
+    for name in named {
+        if !(name.nu >= LEAST_CYCLES && name.nu <= n / 2.0 - LEAST_CYCLES) {
+            continue;
+        }
+        let distance = |f: &FoundTone| (f.nu - name.nu).abs();
+        let near = found.iter_mut().filter(|f| distance(f) < SAME_AS_NAMED);
+        if let Some(tone) = near.min_by(|a, b| distance(a).total_cmp(&distance(b))) {
+            tone.by_hand = true;
+            if name.held {
+                (tone.nu, tone.held) = (name.nu, true);
+            }
+            continue;
+        }
+        let amplitude = spectra.dense().at(name.nu) * (2.0 / n);
+        found.push(FoundTone { nu: name.nu, amplitude, snr: 0.0, by_hand: true, held: name.held });
+    }
 }
 
 /// A joint fit that moves a tone further than this from where it was seen did not settle on it, bins.
 const MOST_MOVED: f64 = 1.0;
 
-/// Puts the jointly fitted frequencies and amplitudes in the place of those seen one at a time.
+/// Puts the jointly fitted frequencies and amplitudes in the place of those seen one at a time; whether it did.
 ///
 /// Where the fit does not settle (tones too close to tell apart, or a tone that moves) all stay as they were seen.
-fn refine(spectra: &Spectra, removal: Removal, noise: &Noise, found: &mut [FoundTone]) {
+fn refine(spectra: &Spectra, removal: Removal, found: &mut [FoundTone], watch: &Watch) -> Result<bool, Cancelled> {
     let n = spectra.n_samples() as f64;
     let line = std::f64::consts::TAU / n;
     let middle = (n - 1.0) / 2.0;
+    // A column of no amplitude has no frequency: a tone named in silence starts with a trace.
+    let trace = Complex64::new(1e-12, 0.0);
     let start: Vec<SteadyTone> = found
         .iter()
         .map(|f| SteadyTone {
             omega: f.nu * line,
-            middle_amplitude: f.amplitude * Complex64::cis(f.nu * line * middle),
-            held: false,
+            middle_amplitude: f.amplitude * Complex64::cis(f.nu * line * middle) + trace,
+            held: f.held,
         })
         .collect();
-    let Some(fit) = fit_jointly(spectra.dense(), removal, &start) else { return };
+    let Some(fit) = fit_jointly(spectra.dense(), removal, &start, watch)? else { return Ok(false) };
     let stayed = |(f, t): (&FoundTone, &SteadyTone)| (t.omega / line - f.nu).abs() < MOST_MOVED;
     if !fit.converged || !found.iter().zip(&fit.tones).all(stayed) {
-        return;
+        return Ok(false);
     }
     for (found, tone) in found.iter_mut().zip(&fit.tones) {
-        found.nu = tone.omega / line;
+        found.nu = if tone.held { found.nu } else { tone.omega / line };
         found.amplitude = tone.middle_amplitude * Complex64::cis(-tone.omega * middle);
-        found.snr = noise.snr(found, n);
     }
+    Ok(true)
 }
 
 /// Adds to `found` what one window sees beyond it.
@@ -173,7 +226,8 @@ fn look(
         if !inside || found.iter().any(|f| (f.nu - reading.nu).abs() < SAME) {
             continue;
         }
-        let mut tone = FoundTone { nu: reading.nu, amplitude: reading.amplitude, snr: 0.0 };
+        let mut tone =
+            FoundTone { nu: reading.nu, amplitude: reading.amplitude, snr: 0.0, by_hand: false, held: false };
         tone.snr = noise.snr(&tone, view.spectra.n_samples() as f64);
         found.push(tone);
     }

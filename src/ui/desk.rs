@@ -8,6 +8,8 @@ use crate::capture::{Capture, Overview};
 use crate::reading::{Reading, Request};
 use crate::session::{CaptureRef, History, NamedSegment, Session};
 use crate::signal::{Span, Watch};
+use crate::units::Scale;
+use crate::window::Window;
 
 /// The open capture and all that belongs to it.
 #[derive(Debug)]
@@ -49,6 +51,24 @@ pub(super) fn capture_ref(capture: &Capture) -> CaptureRef {
 }
 
 impl Desk {
+    /// Which pane of the curves at hand is that of pane `index`, whose window is `window`: panes may have been moved or
+    /// changed since the curves were made.
+    pub(super) fn curve_of(&self, index: usize, window: &Window) -> Option<usize> {
+        place_of(self.latest.spectra()?.windows(), index, |w| w == window)
+    }
+
+    /// Which pane of the Reading at hand is that of pane `index`, whose window is `window`.
+    pub(super) fn reading_of(&self, index: usize, window: &Window) -> Option<usize> {
+        let written = window.to_string();
+        place_of(&self.reading()?.panes, index, |p| p.written() == written)
+    }
+
+    /// The scale that levels are shown in: the channel's, or full scales while that cannot be used.
+    pub(super) fn shown_scale(&self) -> Scale {
+        let scale = self.session.scale();
+        if scale.check().is_ok() { scale } else { Scale::default() }
+    }
+
     /// A desk with a capture fresh from its file.
     pub(super) fn fresh(number: u64, capture: Arc<Capture>) -> Self {
         let session = Session::new(capture_ref(&capture));
@@ -166,6 +186,11 @@ pub(super) fn adopt(session: &mut Session, capture: &Capture, blake3: String) {
     session.channel = session.channel.min(facts.channels.saturating_sub(1));
     session.scales.resize_with(facts.channels, crate::units::Scale::default);
     session.capture = facts;
+}
+
+/// The place of what `is_it`: `index` itself if that is one, else the first.
+fn place_of<T>(list: &[T], index: usize, is_it: impl Fn(&T) -> bool) -> Option<usize> {
+    if list.get(index).is_some_and(&is_it) { Some(index) } else { list.iter().position(is_it) }
 }
 
 #[cfg(test)]

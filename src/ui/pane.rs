@@ -50,11 +50,12 @@ pub(super) fn show(
         pos2(inner.left() + LEFT, head.bottom() + above),
         pos2(inner.right() - 2.0, inner.bottom() - BOTTOM),
     );
-    let spectra = desk.latest.spectra().filter(|s| index < s.windows().len());
+    let curve = desk.curve_of(index, &pane.window).zip(desk.latest.spectra());
     let mut head_ui = ui.new_child(UiBuilder::new().max_rect(head).id_salt(("pane head", pane.id)));
     pane_head::show(&mut head_ui, index, pane, desk, view, shared, intents);
     let plot = Plot {
         index,
+        read: desk.reading_of(index, &pane.window),
         pane,
         area,
         frequency: shared.frequency_axis(area.left(), area.right()),
@@ -66,16 +67,26 @@ pub(super) fn show(
     let response = ui.interact(area, egui::Id::unique(("pane plot", pane.id)), Sense::click_and_drag());
     plot.describe(&response, desk, view);
     plot.steer(ui, &response, desk, view, intents);
-    plot.draw(ui, spectra, desk, view);
+    plot.draw(ui, curve, desk, view);
     if response.has_focus() {
         let ring = Stroke::new(1.5, palette.accent);
         ui.painter().rect_stroke(rect, 4.0, ring, egui::StrokeKind::Inside);
     }
 }
 
+/// How much of its ink a curve keeps that is not of what was asked for.
+const STALE: f32 = 0.4;
+
+/// Whether the curves at hand may pass for those asked for: they are, or they follow an edge being dragged.
+pub(super) fn figures_pass(desk: &Desk, view: &View) -> bool {
+    desk.latest.curves_are_current() || view.marking
+}
+
 /// One pane's plot in a frame.
 struct Plot<'a> {
     index: usize,
+    /// Its place in the Reading at hand, if it has one there.
+    read: Option<usize>,
     pane: &'a Pane,
     area: Rect,
     frequency: Axis,
@@ -93,10 +104,7 @@ impl Plot<'_> {
         let hairline =
             view.hairline_hz.map_or(String::new(), |hz| format!(", hairline at {} Hz", figure::hertz(hz, spacing)));
         let n_clear = desk.reading().map_or(0, |r| {
-            r.tones
-                .iter()
-                .filter(|t| t.readings.get(self.index).is_some_and(|x| x.state == ReadingState::Clear))
-                .count()
+            r.tones.iter().filter(|t| self.reading_of(t).is_some_and(|x| x.state == ReadingState::Clear)).count()
         });
         let text = format!(
             "Spectrum {}, {}: {} to {} Hz, {} tones clear{hairline}",
@@ -109,7 +117,11 @@ impl Plot<'_> {
         response.widget_info(|| WidgetInfo::labeled(Role::Figure, true, &text));
     }
 
-    fn draw(&self, ui: &Ui, spectra: Option<&Arc<Spectra>>, desk: &Desk, view: &mut View) {
+    fn reading_of<'t>(&self, tone: &'t Tone) -> Option<&'t PaneReading> {
+        tone.readings.get(self.read?)
+    }
+
+    fn draw(&self, ui: &Ui, curve: Option<(usize, &Arc<Spectra>)>, desk: &Desk, view: &mut View) {
         let whole = ui.painter().clone();
         self.draw_grid(&whole, desk);
         let painter = whole.with_clip_rect(self.area.intersect(whole.clip_rect()));
@@ -117,14 +129,15 @@ impl Plot<'_> {
         if let Some(reading) = desk.reading() {
             self.draw_floor(&painter, reading);
         }
-        if let Some(spectra) = spectra {
+        if let Some((place, spectra)) = curve {
             let ppp = ui.ctx().pixels_per_point();
             let n = ((self.area.width() * ppp).round().max(1.0) as usize).min(4096);
-            let columns = view.curves.columns(spectra, self.index, &self.frequency, n);
+            let columns = view.curves.columns(spectra, place, &self.frequency, n);
+            let hue = if figures_pass(desk, view) { hue } else { hue.gamma_multiply(STALE) };
             let trace = Trace { colour: hue, dashed, offset: self.shared.offset_db };
             draw_trace(&painter, &columns, (self.area.left(), self.area.width() / n as f32), &self.level, trace);
         }
-        self.draw_hairline(&painter, spectra, view);
+        self.draw_hairline(&painter, curve, desk, view);
         if let Some(reading) = desk.reading() {
             self.draw_marks(&painter, reading, desk);
         }
@@ -159,26 +172,26 @@ impl Plot<'_> {
         widget::write(painter, at, Align2::RIGHT_TOP, unit, theme::quiet(), self.palette.quiet);
         if self.names_reference {
             let at = pos2(area.left() - LEFT, area.top() - 5.0);
-            let reference = desk.session.scale().reference_label();
+            let reference = desk.shown_scale().reference_label();
             widget::write(painter, at, Align2::LEFT_BOTTOM, &reference, theme::quiet(), self.palette.quiet);
         }
     }
 
     fn draw_floor(&self, painter: &Painter, reading: &Reading) {
-        let Some(floor) = reading.panes.get(self.index).and_then(|p| p.floor_db) else { return };
+        let Some(floor) = self.read.and_then(|i| reading.panes.get(i)).and_then(|p| p.floor_db) else { return };
         let y = painter.round_to_pixel_center(self.level.at(floor));
         let points = [pos2(self.area.left(), y), pos2(self.area.right(), y)];
         painter.extend(Shape::dashed_line(&points, Stroke::new(1.0, self.palette.quiet), 2.0, 3.0));
     }
 
-    fn draw_hairline(&self, painter: &Painter, spectra: Option<&Arc<Spectra>>, view: &View) {
+    fn draw_hairline(&self, painter: &Painter, curve: Option<(usize, &Arc<Spectra>)>, desk: &Desk, view: &View) {
         let Some(hz) = view.hairline_hz.filter(|hz| (self.frequency.lo..=self.frequency.hi).contains(hz)) else {
             return;
         };
         let x = painter.round_to_pixel_center(self.frequency.at(hz));
         painter.vline(x, self.area.y_range(), Stroke::new(1.0, self.palette.accent));
-        if let Some(spectra) = spectra {
-            let y = self.level.at(spectra.value_db(self.index, hz) + self.shared.offset_db);
+        if let Some((place, spectra)) = curve.filter(|_| figures_pass(desk, view)) {
+            let y = self.level.at(spectra.value_db(place, hz) + self.shared.offset_db);
             painter.hline(x - 4.0..=x + 4.0, y, Stroke::new(2.0, self.palette.ink));
         }
     }
@@ -218,7 +231,7 @@ impl Plot<'_> {
 
     /// Where a tone's mark stands in this pane, if it is in sight.
     fn mark<'t>(&self, tone: &'t Tone) -> Option<(&'t PaneReading, egui::Pos2)> {
-        let reading = tone.readings.get(self.index)?;
+        let reading = self.reading_of(tone)?;
         let shown = (self.frequency.lo..=self.frequency.hi).contains(&reading.peak_hz);
         let at = pos2(self.frequency.at(reading.peak_hz), self.level.at(reading.level_db));
         (shown && reading.state != ReadingState::BelowFloor && self.area.contains(at)).then_some((reading, at))
@@ -227,7 +240,7 @@ impl Plot<'_> {
     /// Pointer and keys.
     fn steer(&self, ui: &Ui, response: &Response, desk: &Desk, view: &mut View, intents: &mut Intents) {
         if let Some(at) = response.hover_pos() {
-            let hz = self.frequency.value(at.x);
+            let hz = self.frequency.value(at.x).clamp(0.0, self.shared.nyquist_hz);
             if view.hairline_hz != Some(hz) && ui.input(|i| i.pointer.delta() != egui::Vec2::ZERO) {
                 view.hairline_hz = Some(hz);
             }
@@ -279,7 +292,7 @@ impl Plot<'_> {
             .min_by(|a, b| a.1.total_cmp(&b.1));
         if let Some((tone, _)) = near {
             intents.push(Intent::Change(Command::Pick(Some(tone.frequency_hz))));
-            view.card_pane = Some(self.index);
+            view.card_pane = self.read;
             view.reveal_pick = true;
         }
     }

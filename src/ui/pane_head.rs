@@ -2,9 +2,10 @@
 //! its noise bandwidth and highest side lobe.
 
 use eframe::egui::containers::menu::MenuButton;
-use eframe::egui::{self, Align, Button, Layout, Rect, RichText, Sense, Ui, UiBuilder, vec2};
+use eframe::egui::{self, Align, Button, Layout, Rect, RichText, Ui, UiBuilder, vec2};
 
 use super::desk::Desk;
+use super::pane::figures_pass;
 use super::panes::Shared;
 use super::view::{Intent, Intents, View};
 use super::{figure, pane_menu, theme, widget};
@@ -36,7 +37,7 @@ pub(super) fn show(
     let line = Rect::from_min_max(rect.min + vec2(38.0, 0.0), egui::pos2(rect.right(), rect.top() + 26.0));
     let mut first =
         ui.new_child(UiBuilder::new().max_rect(line).layout(Layout::left_to_right(Align::Center)).id_salt("first"));
-    let right = reading_at_hairline(&mut first, index, desk, view, shared);
+    let right = reading_at_hairline(&mut first, (index, &pane.window), desk, view, shared);
     first.spacing_mut().item_spacing.x = 4.0;
     let rest = Rect::from_min_max(line.min, egui::pos2(right - 4.0, line.bottom()));
     let mut first =
@@ -120,13 +121,17 @@ pub(super) fn with_parameters(window: &Window, parameters: &[f64]) -> Option<Win
 }
 
 /// Writes the reading at the right end and gives the left end of what it took.
-fn reading_at_hairline(ui: &mut Ui, index: usize, desk: &Desk, view: &View, shared: &Shared) -> f32 {
+fn reading_at_hairline(
+    ui: &mut Ui,
+    (index, window): (usize, &Window),
+    desk: &Desk,
+    view: &View,
+    shared: &Shared,
+) -> f32 {
     let right = ui.max_rect().right();
     let (Some(hz), Some(spectra)) = (view.hairline_hz, desk.latest.spectra()) else { return right };
-    if index >= spectra.windows().len() {
-        return right;
-    }
-    let level = spectra.value_db(index, hz) + shared.offset_db;
+    let Some(place) = desk.curve_of(index, window).filter(|_| figures_pass(desk, view)) else { return right };
+    let level = spectra.value_db(place, hz) + shared.offset_db;
     let text = format!("{} Hz  {} dB", figure::hertz(hz, shared.spacing_hz * 10.0), figure::fixed(level, 1));
     let mut left = right;
     ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
@@ -167,6 +172,5 @@ fn shape_of(ui: &Ui, window: &Window) -> std::sync::Arc<Vec<f32>> {
     let top = samples.iter().copied().fold(1e-9_f32, f32::max);
     let shape = std::sync::Arc::new(samples.iter().map(|v| v / top).collect::<Vec<f32>>());
     ui.data_mut(|d| d.insert_temp(key, std::sync::Arc::clone(&shape)));
-    let _ = Sense::hover();
     shape
 }

@@ -57,7 +57,7 @@ pub(super) fn offset_db(scale: &Scale) -> f64 {
 pub(super) fn shared(desk: &Desk, view: &mut View) -> Shared {
     let axes = desk.session.axes;
     let rate = desk.session.sample_rate_hz();
-    let offset_db = offset_db(&desk.session.scale());
+    let offset_db = offset_db(&desk.shown_scale());
     let due = view.refit_level && !view.marking && desk.latest.curves_are_current();
     if (due || view.fitted_level.is_none())
         && let Some(fitted) = fit_level(desk, offset_db)

@@ -10,7 +10,7 @@ use super::pane::is_picked;
 use super::theme::{self, Palette};
 use super::view::{Cell, Intent, Intents, View};
 use super::{figure, widget};
-use crate::reading::{PaneReading, Reading, ReadingState, Tone, Verdict};
+use crate::reading::{PaneFacts, PaneReading, Reading, ReadingState, Tone, Verdict};
 use crate::session::Command;
 
 const ROW: f32 = 24.0;
@@ -105,7 +105,7 @@ impl Table<'_> {
             heads.push("verdict".to_owned());
         }
         heads.push("agreement, dB".to_owned());
-        heads.extend(self.desk.session.panes.iter().take(self.reading.panes.len()).map(|p| p.window.to_string()));
+        heads.extend(self.reading.panes.iter().map(PaneFacts::written));
         heads.resize(self.reading.panes.len() + 4 + usize::from(has_verdicts), String::new());
         for head in heads {
             row.col(|ui| {

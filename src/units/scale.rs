@@ -84,6 +84,9 @@ pub enum ScaleError {
         /// What it is.
         value: f64,
     },
+    /// A factor was given without naming the unit it leads to.
+    #[error("a factor needs the unit it leads to: name the quantity or the unit")]
+    NoUnit,
     /// A unit was given without saying how many of them full scale is.
     #[error("unit {unit} needs a factor: give units per full scale, or a sensitivity with the volts at full scale")]
     NoFactor {
@@ -135,6 +138,7 @@ impl Scale {
                 return Err(ScaleError::NoFactor { unit: self.unit.clone() });
             }
             Factor::NotStated => {}
+            _ if unit.is_full_scale() => return Err(ScaleError::NoUnit),
             Factor::UnitsPerFullScale(factor) => positive("the factor", factor)?,
             Factor::Sensitivity { volts_per_unit, full_scale_volts } => {
                 positive("the sensitivity", volts_per_unit)?;
@@ -163,7 +167,7 @@ impl Scale {
 
     /// Whether samples are shown in full scales.
     pub fn is_full_scale(&self) -> bool {
-        self.quantity == Quantity::Plain && self.unit == "FS"
+        self.quantity == Quantity::Plain && self.unit.trim() == "FS"
     }
 
     /// What a detected level is divided by before it is stated in decibels, in the unit.
@@ -270,6 +274,8 @@ mod tests {
         assert_eq!(zero.check().unwrap_err().to_string(), "the factor is 0: give a number above 0");
         let none = Scale { factor: Factor::NotStated, ..acceleration("m/s²") };
         assert!(none.check().unwrap_err().to_string().starts_with("unit m/s² needs a factor"));
+        let no_unit = Scale { factor: Factor::UnitsPerFullScale(500.0), ..Scale::default() };
+        assert_eq!(no_unit.check(), Err(ScaleError::NoUnit));
         let reference = Scale { reference: Some(f64::NAN), ..acceleration("m/s²") };
         assert!(reference.check().is_err());
     }

@@ -72,8 +72,8 @@ fn differentiated(series: &[[f64; N_TAPS]; N_TERMS]) -> [[f64; N_TAPS]; N_TERMS]
             derivative[order - 1][tap] = above + 2.0 * order as f64 * series[order][tap];
         }
     }
-    for tap in 0..N_TAPS {
-        derivative[0][tap] /= 2.0;
+    for constant in &mut derivative[0] {
+        *constant /= 2.0;
     }
     derivative.map(|row| row.map(|c| 2.0 * c))
 }

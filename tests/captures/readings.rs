@@ -46,7 +46,7 @@ fn read(truth: &Value) -> Reading {
     session.segments[0].span =
         Span { start: steady["start_sample"].as_u64().unwrap(), samples: steady["samples"].as_u64().unwrap() };
     session.scales[0] = Scale {
-        quantity: Quantity::parse(&truth["quantity"].as_str().unwrap().replace(" ", "-")).unwrap(),
+        quantity: Quantity::parse(&truth["quantity"].as_str().unwrap().replace(' ', "-")).unwrap(),
         unit: truth["unit"].as_str().unwrap().to_owned(),
         factor: Factor::UnitsPerFullScale(truth["units_per_full_scale"].as_f64().unwrap()),
         ..Scale::default()

@@ -6,18 +6,18 @@ use nalgebra::{DMatrix, DVector};
 use realfft::num_complex::Complex64;
 
 use super::normal::{NormalEquations, SteadyTone};
-use crate::signal::Removal;
+use crate::signal::{Cancelled, Removal, Watch};
 use crate::spectrum::Dense;
 
-/// The background and the tones that fit a segment best, with the covariances of unit noise.
+/// The background and the tones that fit a segment best.
 #[derive(Debug, Clone)]
 pub struct JointFit {
+    n: usize,
+    removal: Removal,
     /// The tones.
     pub tones: Vec<SteadyTone>,
     /// The constant and the slope a sample fitted with them (what was left of the mean or the line).
     pub background: (f64, f64),
-    /// For each tone, with noise of unit variance a sample: standard uncertainties.
-    pub unit_uncertainties: Vec<UnitUncertainty>,
     /// Whether the steps died away.
     pub converged: bool,
 }
@@ -36,7 +36,7 @@ pub struct UnitUncertainty {
 }
 
 /// Gauss-Newton steps at most.
-const MOST_STEPS: usize = 50;
+const MOST_STEPS: usize = 20;
 
 /// Longest step of a frequency, bins: a quarter of a line keeps each tone on its own peak.
 const LONGEST_STEP: f64 = 0.25;
@@ -48,17 +48,26 @@ const SETTLED: f64 = 1e-9;
 ///
 /// Gauss-Newton with amplitudes solved linearly; `None` where two tones cannot be told apart.
 ///
+/// # Errors
+/// [`Cancelled`] where the watch says so; it is asked at every step.
+///
 /// # Reference
 /// IEEE Std 1057, four-parameter sine fit, for one tone; Kay, Fundamentals of Statistical Signal Processing:
 /// Estimation Theory, 1993, section 8.9, for nonlinear least squares (both from memory).
-pub fn fit_jointly(samples: &Dense, removal: Removal, start: &[SteadyTone]) -> Option<JointFit> {
+pub fn fit_jointly(
+    samples: &Dense,
+    removal: Removal,
+    start: &[SteadyTone],
+    watch: &Watch,
+) -> Result<Option<JointFit>, Cancelled> {
     let n = samples.n_samples();
     let line = TAU / n as f64;
     let mut tones = start.to_vec();
     let mut background = (0.0, 0.0);
     let mut converged = tones.is_empty();
     for _ in 0..MOST_STEPS {
-        let equations = NormalEquations::of(n, removal, &tones)?;
+        watch.check()?;
+        let Some(equations) = NormalEquations::of(n, removal, &tones) else { return Ok(None) };
         let step = equations.step(samples, &linear(removal, background, &tones));
         let longest = advance(removal, &mut background, &mut tones, &step, LONGEST_STEP * line);
         if longest < SETTLED * line {
@@ -66,10 +75,16 @@ pub fn fit_jointly(samples: &Dense, removal: Removal, start: &[SteadyTone]) -> O
             break;
         }
     }
-    let equations = NormalEquations::of(n, removal, &tones)?;
-    let covariance = equations.covariance();
-    let unit_uncertainties = uncertainties(n, removal, &tones, &covariance);
-    Some(JointFit { tones, background, unit_uncertainties, converged })
+    Ok(Some(JointFit { n, removal, tones, background, converged }))
+}
+
+impl JointFit {
+    /// Standard uncertainties of each tone for noise of unit variance a sample, from the inverse of the joint normal
+    /// matrix; `None` where two tones cannot be told apart.
+    pub fn unit_uncertainties(&self) -> Option<Vec<UnitUncertainty>> {
+        let covariance = NormalEquations::of(self.n, self.removal, &self.tones)?.covariance();
+        Some(uncertainties(self.n, self.removal, &self.tones, &covariance))
+    }
 }
 
 /// How many columns the background has.
@@ -165,7 +180,7 @@ mod tests {
         let made = [(2.3, 1.0, 0.3), (50.2, 0.5, 1.0), (51.5, 0.2, -2.0), (300.7, 1e-4, 0.0), (498.1, 0.3, 2.0)];
         let dense = Dense::of(&samples(n, &made, 0.7));
         let starts: Vec<SteadyTone> = made.iter().map(|m| start(n, m.0 + 0.1)).collect();
-        let fit = fit_jointly(&dense, Removal::Mean, &starts).unwrap();
+        let fit = fit_jointly(&dense, Removal::Mean, &starts, &Watch::new()).unwrap().unwrap();
         assert!(fit.converged);
         assert!((fit.background.0 - 0.7).abs() < 1e-11);
         for (tone, made) in fit.tones.iter().zip(&made) {
@@ -179,8 +194,8 @@ mod tests {
     fn a_lone_tone_has_the_lone_bound() {
         let n = 1000;
         let dense = Dense::of(&samples(n, &[(100.3, 0.5, 1.0)], 0.0));
-        let fit = fit_jointly(&dense, Removal::Mean, &[start(n, 100.2)]).unwrap();
-        let u = fit.unit_uncertainties[0];
+        let fit = fit_jointly(&dense, Removal::Mean, &[start(n, 100.2)], &Watch::new()).unwrap().unwrap();
+        let u = fit.unit_uncertainties().unwrap()[0];
         assert!((u.amplitude / u.lone_amplitude - 1.0).abs() < 0.01);
         assert!((u.omega / u.lone_omega - 1.0).abs() < 0.01);
     }
@@ -190,15 +205,16 @@ mod tests {
         let n = 1000;
         let dense = Dense::of(&samples(n, &[(100.3, 0.5, 1.0)], 0.0));
         let held = SteadyTone { held: true, ..start(n, 100.0) };
-        let fit = fit_jointly(&dense, Removal::None, &[held]).unwrap();
+        let fit = fit_jointly(&dense, Removal::None, &[held], &Watch::new()).unwrap().unwrap();
         assert_eq!(fit.tones[0].omega, held.omega);
-        assert_eq!(fit.unit_uncertainties[0].omega, 0.0);
+        assert_eq!(fit.unit_uncertainties().unwrap()[0].omega, 0.0);
     }
 
     #[test]
     fn one_tone_twice_cannot_be_told_apart() {
         let n = 100;
         let dense = Dense::of(&samples(n, &[(10.3, 0.5, 1.0)], 0.0));
-        assert!(fit_jointly(&dense, Removal::Mean, &[start(n, 10.0), start(n, 10.0)]).is_none());
+        let twice = [start(n, 10.0), start(n, 10.0)];
+        assert!(fit_jointly(&dense, Removal::Mean, &twice, &Watch::new()).unwrap().is_none());
     }
 }

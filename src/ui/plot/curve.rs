@@ -16,6 +16,8 @@ struct Kept {
     lo: f64,
     hi: f64,
     log: bool,
+    /// Whether values between lines were at hand.
+    fine: bool,
     columns: Arc<Vec<Extent>>,
 }
 
@@ -37,7 +39,9 @@ impl CurveCache {
         if self.kept.len() <= pane {
             self.kept.resize_with(pane + 1, || None);
         }
+        let fine = spectra.has_between_lines(pane);
         if let Some(Some(kept)) = self.kept.get(pane)
+            && kept.fine == fine
             && Arc::ptr_eq(&kept.spectra, spectra)
             && (kept.pane, kept.log, kept.columns.len()) == (pane, axis.log, n_columns)
             && (kept.lo, kept.hi) == (axis.lo, axis.hi)
@@ -46,7 +50,7 @@ impl CurveCache {
         }
         let columns = Arc::new(spectra.curve_db(pane, &axis.edges(n_columns)));
         let spectra = Arc::clone(spectra);
-        let kept = Kept { spectra, pane, lo: axis.lo, hi: axis.hi, log: axis.log, columns: Arc::clone(&columns) };
+        let kept = Kept { spectra, pane, lo: axis.lo, hi: axis.hi, log: axis.log, fine, columns: Arc::clone(&columns) };
         if let Some(place) = self.kept.get_mut(pane) {
             *place = Some(kept);
         }
