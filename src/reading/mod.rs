@@ -1,6 +1,7 @@
 //! From (capture, session) to one Reading: what screen, command line and report all show.
 
 mod analysis;
+mod budget;
 mod figures;
 mod output;
 mod request;

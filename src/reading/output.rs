@@ -193,27 +193,28 @@ pub struct BudgetItem {
 pub struct Tone {
     /// Frequency by the joint fit; where that did not settle, that of the sharpest clear pane.
     pub frequency_hz: f64,
-    /// Its expanded uncertainty, k = 2; needs the joint fit.
+    /// Its expanded uncertainty, k = 2; `None` where the joint fit did not settle or no floor can be told.
     pub frequency_u95_hz: Option<f64>,
     /// Peak amplitude in the scale's unit.
     pub amplitude: f64,
-    /// Its expanded uncertainty; needs the joint fit.
+    /// Its expanded uncertainty, k = 2; `None` likewise.
     pub amplitude_u95: Option<f64>,
     /// Through the detector, in the unit.
     pub level: f64,
     /// Over the reference.
     pub level_db: f64,
-    /// 20 lg(1 + U/A); needs the joint fit.
+    /// 20 lg(1 + U/A); `None` likewise.
     pub level_u95_db: Option<f64>,
     /// Cosine phase at the segment's first sample, -π to π; `None` where the joint fit did not settle.
     pub phase_rad: Option<f64>,
-    /// Needs the joint fit.
+    /// Needs a search of the residue, which this version does not make.
     pub verdict: Option<Verdict>,
-    /// Needs the joint fit.
+    /// Goes with the verdict.
     pub why: Option<String>,
     /// An overruled verdict.
     pub overruled: Option<Overruled>,
-    /// Needs the joint fit.
+    /// What the uncertainty is made of; `None` likewise. `noise` is the lone-tone bound, `neighbours` what the joint
+    /// covariance adds; what only the user can state is listed as not stated.
     pub budget: Option<Vec<BudgetItem>>,
     /// One-sided, unit²/Hz at the tone; needs the joint fit's residue.
     pub noise_density: Option<f64>,

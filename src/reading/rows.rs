@@ -1,6 +1,7 @@
 //! The rows of the tone table: one tone, read in every pane.
 
 use super::Request;
+use super::budget::Budget;
 use super::output::{LedgerStep, PaneReading, ReadingState, Tone};
 use crate::signal::{Cancelled, Watch};
 use crate::spectrum::Spectra;
@@ -8,7 +9,7 @@ use crate::tone::{Disturbance, LoneReading, PaneView, Search, State};
 use crate::units::{Scale, db};
 
 /// Amplitudes below this, in the unit, are stated as if they were this large: levels in decibels stay finite.
-const LEAST_AMPLITUDE: f64 = 1e-30;
+pub(super) const LEAST_AMPLITUDE: f64 = 1e-30;
 
 /// Over the reference, through the detector; finite for any amplitude.
 pub(super) fn level_db(scale: &Scale, peak: f64) -> f64 {
@@ -69,19 +70,20 @@ fn row(spectra: &Spectra, request: &Request, found: &Search, i: usize) -> Tone {
     let (frequency_hz, amplitude) = if found.settled { seen } else { sharpest.unwrap_or(seen) };
     let tags = [("by-hand", tone.by_hand), ("held", tone.held)];
     let tags = tags.into_iter().filter(|t| t.1).map(|t| t.0.to_owned()).collect();
+    let budget = Budget::of(spectra, request, found, i);
     Tone {
         frequency_hz,
-        frequency_u95_hz: None,
+        frequency_u95_hz: budget.as_ref().map(|b| b.frequency_u95_hz),
         amplitude,
-        amplitude_u95: None,
+        amplitude_u95: budget.as_ref().map(|b| b.amplitude_u95),
         level: request.scale.level(amplitude),
         level_db: level_db(&request.scale, amplitude),
-        level_u95_db: None,
+        level_u95_db: budget.as_ref().map(|b| b.level_u95_db(amplitude)),
         phase_rad: found.settled.then(|| tone.amplitude.arg()),
         verdict: None,
         why: None,
         overruled: None,
-        budget: None,
+        budget: budget.map(|b| b.items),
         noise_density: None,
         snr_db: None,
         drift_hz: None,

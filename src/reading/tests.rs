@@ -92,7 +92,7 @@ fn no_single_window_reads_the_pump_but_the_table_does() {
     assert_eq!(state(weak, "blackman-harris"), ReadingState::Clear);
     assert_eq!(state(weak, "flat-top"), ReadingState::Clear);
     assert!(weak.readings.iter().find(|r| r.window == "flat-top").unwrap().borrowed);
-    assert!(weak.verdict.is_none() && weak.why.is_none() && weak.amplitude_u95.is_none());
+    assert!(weak.verdict.is_none() && weak.why.is_none());
 }
 
 /// Largest difference allowed between what any two windows say of a lone tone's level.
@@ -208,5 +208,53 @@ fn silence_and_the_shortest_segments_are_read() {
         assert!(reading.tones.is_empty(), "N = {n}");
         let json = serde_json::to_string(&*reading).unwrap();
         assert!(!json.contains("NaN") && !json.contains("inf"));
+    }
+}
+
+/// How often the stated interval holds the truth, for amplitude and frequency, over invented segments with fixed seeds.
+fn coverage(coloured: bool, pair: bool) -> (f64, f64) {
+    let n = 2048;
+    let (mut held_amplitude, mut held_frequency, mut count) = (0, 0, 0);
+    for seed in 0..400_u64 {
+        let mut random = rand_pcg::Pcg64Mcg::seed_from_u64(seed);
+        let mut uniform = move || ((random.next_u64() >> 11) as f64 + 0.5) / (1_u64 << 53) as f64;
+        let line = RATE_HZ / n as f64;
+        let nu = 60.0 + 800.0 * uniform();
+        let mut tones = vec![Made { frequency_hz: nu * line, peak: 0.5, phase: std::f64::consts::TAU * uniform() }];
+        if pair {
+            let apart = 3.0 + 3.0 * uniform();
+            tones.push(Made { frequency_hz: (nu + apart) * line, peak: 0.4, phase: std::f64::consts::TAU * uniform() });
+        }
+        let mut filtered = 0.0;
+        let mut samples = Vec::with_capacity(n);
+        for i in 0..n {
+            let t = i as f64 / RATE_HZ;
+            let clean: f64 =
+                tones.iter().map(|m| m.peak * (std::f64::consts::TAU * m.frequency_hz * t + m.phase).cos()).sum();
+            let white = (-2.0 * uniform().ln()).sqrt() * (std::f64::consts::TAU * uniform()).cos();
+            filtered = if coloured { 0.6 * filtered + white } else { white };
+            samples.push(clean + 0.05 * filtered);
+        }
+        let source = Stored::new(RATE_HZ, 1, samples);
+        let reading = analyse(&source, &request(n), None, &Watch::new()).unwrap().reading;
+        for made in &tones {
+            let tone = nearest(&reading, made.frequency_hz);
+            count += 1;
+            held_amplitude += u32::from((tone.amplitude - made.peak).abs() < tone.amplitude_u95.unwrap());
+            held_frequency += u32::from((tone.frequency_hz - made.frequency_hz).abs() < tone.frequency_u95_hz.unwrap());
+        }
+    }
+    (f64::from(held_amplitude) / f64::from(count), f64::from(held_frequency) / f64::from(count))
+}
+
+/// Of 400 intervals that each hold the truth in 95.4 % of cases, 92 to 98.5 % do, but for one time in a thousand.
+#[test]
+fn stated_intervals_hold_the_truth_as_often_as_they_say() {
+    for (coloured, pair) in [(false, false), (true, false), (false, true), (true, true)] {
+        let (amplitude, frequency) = coverage(coloured, pair);
+        println!("coloured {coloured}, pair {pair}: {amplitude} {frequency}");
+        for held in [amplitude, frequency] {
+            assert!((0.92..0.985).contains(&held), "coloured {coloured}, pair {pair}: {held}");
+        }
     }
 }

@@ -7,7 +7,7 @@
 
 use realfft::num_complex::Complex64;
 
-use super::fit::{SteadyTone, fit_jointly};
+use super::fit::{SteadyTone, UnitUncertainty, fit_jointly};
 use super::lone::PaneView;
 use super::threshold::detection_threshold;
 use crate::signal::{Cancelled, Removal, Watch};
@@ -45,6 +45,8 @@ pub struct Search {
     pub tones: Vec<FoundTone>,
     /// Whether all of them were fitted jointly; else they stand as they were seen one at a time.
     pub settled: bool,
+    /// What noise of unit variance a sample does to each, where they were fitted jointly; else none.
+    pub unit_uncertainties: Vec<UnitUncertainty>,
     /// One-sided noise, as |X\[k\]|² of the rectangular window; `None` where the segment is too short to tell.
     pub noise: Option<Noise>,
     /// How many tones were left out, being the weakest over their floor.
@@ -63,6 +65,11 @@ impl Noise {
     /// The mean noise power |Y|² a line at `nu` bins, of a window with the sum S2.
     pub fn line_power(&self, nu: f64, s2: f64) -> f64 {
         self.floor.at(nu) / self.s2 * s2
+    }
+
+    /// The standard deviation of a sample whose white noise would be as strong at `nu` bins; `n` samples.
+    pub fn sample_deviation(&self, nu: f64, n: f64) -> f64 {
+        (self.line_power(nu, n) / n).sqrt()
     }
 
     /// A tone's |X|² in a rectangular pane of `n` samples over that pane's mean noise a line.
@@ -144,11 +151,12 @@ pub fn search(spectra: &Spectra, quest: &Quest<'_>, watch: &Watch) -> Result<Sea
     let n_left_out = n_found - found.len();
     add_named(spectra, quest.named, &mut found);
     found.sort_by(|a, b| a.nu.total_cmp(&b.nu));
-    let settled = refine(spectra, quest.removal, &mut found, watch)?;
+    let unit_uncertainties = refine(spectra, quest.removal, &mut found, watch)?;
     for tone in &mut found {
         tone.snr = noise.as_ref().map_or(0.0, |noise| noise.snr(tone, spectra.n_samples() as f64));
     }
-    Ok(Search { tones: found, settled, noise, n_left_out })
+    let settled = unit_uncertainties.is_some();
+    Ok(Search { tones: found, settled, unit_uncertainties: unit_uncertainties.unwrap_or_default(), noise, n_left_out })
 }
 
 /// Marks the tones named by hand among those found, and adds those that were not.
@@ -175,10 +183,16 @@ fn add_named(spectra: &Spectra, named: &[NamedTone], found: &mut Vec<FoundTone>)
 /// A joint fit that moves a tone further than this from where it was seen did not settle on it, bins.
 const MOST_MOVED: f64 = 1.0;
 
-/// Puts the jointly fitted frequencies and amplitudes in the place of those seen one at a time; whether it did.
+/// Puts the jointly fitted frequencies and amplitudes in the place of those seen one at a time, and gives what noise
+/// does to them.
 ///
 /// Where the fit does not settle (tones too close to tell apart, or a tone that moves) all stay as they were seen.
-fn refine(spectra: &Spectra, removal: Removal, found: &mut [FoundTone], watch: &Watch) -> Result<bool, Cancelled> {
+fn refine(
+    spectra: &Spectra,
+    removal: Removal,
+    found: &mut [FoundTone],
+    watch: &Watch,
+) -> Result<Option<Vec<UnitUncertainty>>, Cancelled> {
     let n = spectra.n_samples() as f64;
     let line = std::f64::consts::TAU / n;
     let middle = (n - 1.0) / 2.0;
@@ -192,16 +206,17 @@ fn refine(spectra: &Spectra, removal: Removal, found: &mut [FoundTone], watch: &
             held: f.held,
         })
         .collect();
-    let Some(fit) = fit_jointly(spectra.dense(), removal, &start, watch)? else { return Ok(false) };
+    let Some(fit) = fit_jointly(spectra.dense(), removal, &start, watch)? else { return Ok(None) };
     let stayed = |(f, t): (&FoundTone, &SteadyTone)| (t.omega / line - f.nu).abs() < MOST_MOVED;
     if !fit.converged || !found.iter().zip(&fit.tones).all(stayed) {
-        return Ok(false);
+        return Ok(None);
     }
+    let Some(uncertainties) = fit.unit_uncertainties() else { return Ok(None) };
     for (found, tone) in found.iter_mut().zip(&fit.tones) {
         found.nu = if tone.held { found.nu } else { tone.omega / line };
         found.amplitude = tone.middle_amplitude * Complex64::cis(-tone.omega * middle);
     }
-    Ok(true)
+    Ok(Some(uncertainties))
 }
 
 /// Adds to `found` what one window sees beyond it.
