@@ -3,11 +3,11 @@
 use std::sync::Arc;
 
 use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
-use super::{Request, rows};
+use super::{Request, advice, rows};
 use crate::capture::segment_doubts;
 use crate::signal::{Cancelled, Removed, SignalError, Source, Span, Stored, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
-use crate::tone::{LEAST_CYCLES, NamedTone, Noise, Quest, Search, search, suggest_steady};
+use crate::tone::{LEAST_CYCLES, NamedTone, Quest, Search, search, suggest_steady};
 use crate::units::ScaleError;
 
 /// Why there is no Reading.
@@ -138,14 +138,16 @@ pub fn analyse(
     doubts.extend(unsteady(&segment, request, watch)?);
     watch.report(0.5);
     let tones = rows::tones(&segment.spectra, request, &found, watch)?;
+    let advice = advice::ranked(&segment.spectra, &found, watch)?;
+    doubts.extend(advice::no_window_reads_all(&advice));
     let reading = Reading {
         schema: Reading::SCHEMA,
         version: env!("CARGO_PKG_VERSION").to_owned(),
         capture: capture_facts(request),
         segment: segment_facts(request, segment.removed),
         scale: scale_facts(request),
-        panes: pane_facts(&segment.spectra, request, found.noise.as_ref()),
-        advice: Vec::new(),
+        panes: pane_facts(&segment.spectra, request, &found),
+        advice,
         tones,
         skirts: Vec::new(),
         warnings: warnings(&segment, request, &found, doubts),
@@ -206,13 +208,13 @@ fn scale_facts(request: &Request) -> ScaleFacts {
     }
 }
 
-fn pane_facts(spectra: &Spectra, request: &Request, noise: Option<&Noise>) -> Vec<PaneFacts> {
+fn pane_facts(spectra: &Spectra, request: &Request, found: &Search) -> Vec<PaneFacts> {
     let n = spectra.n_samples();
     let line_spacing_hz = spectra.line_spacing_hz();
     let facts = |(pane, window): (usize, &crate::window::Window)| {
         let sums = spectra.sums(pane);
         let enbw_bins = n as f64 * sums.s2 / (sums.s1 * sums.s1);
-        let floor = noise.map(|noise| 2.0 * noise.typical_line_power(sums.s2).sqrt() / sums.s1);
+        let floor = found.noise.as_ref().map(|noise| 2.0 * noise.typical_line_power(sums.s2).sqrt() / sums.s1);
         PaneFacts {
             window: window.name().to_owned(),
             parameter: window.parameters().to_vec(),
@@ -221,7 +223,7 @@ fn pane_facts(spectra: &Spectra, request: &Request, noise: Option<&Noise>) -> Ve
             enbw_hz: enbw_bins * line_spacing_hz,
             line_spacing_hz,
             floor_db: floor.map(|peak| rows::level_db(&request.scale, peak * request.scale.units_per_full_scale())),
-            expected_worst_error_db: None,
+            expected_worst_error_db: advice::expected_worst_error_db(spectra, found, window),
             n_skirts: None,
         }
     };

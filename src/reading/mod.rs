@@ -1,5 +1,6 @@
 //! From (capture, session) to one Reading: what screen, command line and report all show.
 
+mod advice;
 mod analysis;
 mod budget;
 mod figures;

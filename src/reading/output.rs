@@ -109,7 +109,8 @@ pub struct PaneFacts {
     pub line_spacing_hz: f64,
     /// Median over the band of the mean noise a line, detector and reference applied; `None` for too short a segment.
     pub floor_db: Option<f64>,
-    /// Needs the joint fit.
+    /// The largest error to expect of a tone's level in this pane, leak and noise together; `None` where some tone
+    /// cannot be read in it or the tones were not fitted jointly.
     pub expected_worst_error_db: Option<f64>,
     /// Needs the joint fit.
     pub n_skirts: Option<usize>,

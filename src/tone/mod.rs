@@ -1,5 +1,6 @@
 //! Peaks over the floor, pane readings and what disturbs them. In bins and full scales; hertz and units come above.
 
+mod advice;
 mod fit;
 mod lone;
 mod search;
@@ -7,9 +8,10 @@ mod state;
 mod steadiness;
 mod threshold;
 
+pub use advice::{Deciding, WindowAdvice, advise, judge};
 pub use fit::{JointFit, SteadyTone, UnitUncertainty, fit_jointly};
 pub use lone::{LoneReading, PaneView};
 pub use search::{FoundTone, LEAST_CYCLES, NamedTone, Noise, Quest, Search, search};
-pub use state::{Disturbance, State};
+pub use state::{Disturbance, Lobes, State};
 pub use steadiness::suggest_steady;
 pub use threshold::detection_threshold;

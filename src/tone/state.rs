@@ -17,6 +17,8 @@ pub struct Disturbance {
     pub noise_db: f64,
     /// The tone's power over the pane's mean noise a line.
     pub over_floor: f64,
+    /// Which tone disturbs it most.
+    pub strongest: Option<usize>,
 }
 
 /// A neighbour with less than this part of the tone's amplitude does not crowd it, whatever the distance: it could
@@ -42,35 +44,66 @@ pub enum State {
     BelowFloor,
 }
 
+/// What of a window's kernel and sums a disturbance is judged by.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Lobes {
+    /// Half the width of the main lobe, bins.
+    pub half_width_bins: f64,
+    /// Σ w.
+    pub s1: f64,
+    /// Σ w².
+    pub s2: f64,
+}
+
 impl Disturbance {
     /// Of tone `of` among `tones`, in pane `pane`, whose mean noise a line there is `noise_power` (as |Y|²; 0 if not
     /// known).
     pub fn of(spectra: &Spectra, pane: usize, tones: &[FoundTone], of: usize, noise_power: f64) -> Self {
-        let Some(tone) = tones.get(of) else {
-            return Self { crowded: false, leak_db: 0.0, noise_db: 0.0, over_floor: 0.0 };
-        };
         let n = spectra.n_samples();
-        let half_width = spectra.windows().get(pane).map_or(0.0, |w| w.main_lobe_half_width_bins(n));
-        let own_peak = tone.amplitude / 2.0 * spectra.kernel_at(pane, 0.0);
-        let own = own_peak.norm();
+        let half_width_bins = spectra.windows().get(pane).map_or(0.0, |w| w.main_lobe_half_width_bins(n));
+        let sums = spectra.sums(pane);
+        let lobes = Lobes { half_width_bins, s1: sums.s1, s2: sums.s2 };
+        let top = spectra.kernel_at(pane, 0.0);
+        Self::under(|nu| spectra.kernel_at(pane, nu) / top, &lobes, tones, of, noise_power)
+    }
+
+    /// The same under any window: `kernel` gives W(ν)/W(0).
+    pub fn under(
+        kernel: impl Fn(f64) -> Complex64,
+        lobes: &Lobes,
+        tones: &[FoundTone],
+        of: usize,
+        noise_power: f64,
+    ) -> Self {
+        let nothing = Self { crowded: false, leak_db: 0.0, noise_db: 0.0, over_floor: 0.0, strongest: None };
+        let Some(tone) = tones.get(of) else { return nothing };
+        let own = tone.amplitude.norm();
         let mut leak = Complex64::ZERO;
-        let mut crowded = false;
+        let (mut crowded, mut most) = (false, 0.0);
+        let mut strongest = None;
         for (i, other) in tones.iter().enumerate() {
             if i == of {
                 continue;
             }
             let distance = tone.nu - other.nu;
-            let near = other.amplitude / 2.0 * spectra.kernel_at(pane, distance);
-            let image = other.amplitude.conj() / 2.0 * spectra.kernel_at(pane, tone.nu + other.nu);
-            leak += near + image;
-            crowded |= distance.abs() < half_width && other.amplitude.norm() > CROWDING_PART * tone.amplitude.norm();
+            let near = other.amplitude * kernel(distance);
+            leak += near + other.amplitude.conj() * kernel(tone.nu + other.nu);
+            let crowds = distance.abs() < lobes.half_width_bins && other.amplitude.norm() > CROWDING_PART * own;
+            // The one to name is whoever crowds, else whoever leaks most.
+            let weight = near.norm() + if crowds { own + other.amplitude.norm() } else { 0.0 };
+            if weight > most {
+                (most, strongest) = (weight, Some(i));
+            }
+            crowded |= crowds;
         }
-        // Of the noise |Y|² only the part in phase with the tone moves its level: half the power.
+        let own_power = (own * lobes.s1 / 2.0).powi(2);
         Self {
             crowded,
-            leak_db: db((own_peak + leak).norm() / own),
-            noise_db: db(1.0 + (noise_power / 2.0).sqrt() / own),
-            over_floor: own * own / noise_power,
+            leak_db: db((tone.amplitude + leak).norm() / own),
+            // Of the noise |Y|² only the part in phase with the tone moves its level: half the power.
+            noise_db: db(1.0 + (noise_power / 2.0 / own_power).sqrt()),
+            over_floor: own_power / noise_power,
+            strongest,
         }
     }
 
