@@ -14,6 +14,12 @@ pub enum CaptureError {
         /// What the system said.
         reason: std::io::Error,
     },
+    /// The file is not what was opened any more.
+    #[error("{} was replaced or written to since it was opened: open it again", .path.display())]
+    Replaced {
+        /// The file.
+        path: PathBuf,
+    },
     /// The path leads to a folder or a device.
     #[error("{} is not an ordinary file: choose a recording", .path.display())]
     NotAFile {

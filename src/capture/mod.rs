@@ -13,5 +13,5 @@ mod wav;
 
 pub use damage::{Damage, segment_doubts};
 pub use error::CaptureError;
-pub use open::{Capture, open};
+pub use open::{Capture, Stamp, open};
 pub use overview::{Overview, raw_columns};

@@ -33,4 +33,6 @@ pub(super) enum CliError {
     Changed { session: PathBuf, capture: PathBuf },
     #[error("{}: was saved without figures, so there is nothing to recheck: save it again from the window, or with 'panewise read --save'", .session.display())]
     NoFigures { session: PathBuf },
+    #[error("{}: does not state its capture's BLAKE3, so nobody can say whether the capture is the same: save it again from the window, or with 'panewise read --save'", .session.display())]
+    NoHash { session: PathBuf },
 }

@@ -8,7 +8,7 @@ use super::{CliError, put};
 use crate::capture::{self, Capture};
 use crate::reading::{Reading, ReadingError, Request, Segment, Warning, analyse, figures_of};
 use crate::report;
-use crate::session::{self, CaptureRef, CaptureState, Command, Pane, PaneId, Session};
+use crate::session::{self, CaptureRef, CaptureState, Command, Pane, PaneId, Session, SessionCapture};
 use crate::signal::{Span, Watch};
 use crate::tone::suggest_steady;
 use crate::units::{Factor, Quantity, Scale, Unit};
@@ -32,10 +32,6 @@ impl Opened {
 pub(super) fn read(wish: &ReadWish, out: &mut dyn Write) -> Result<(), CliError> {
     // JSON states the content's hash, and so does a session.
     let mut opened = open(&wish.input, wish.json || wish.save.is_some())?;
-    if wish.save.is_some() && opened.capture.path.to_str().is_none() {
-        let path = opened.capture.path.display();
-        return Err(CliError::Usage(format!("{path}: a session cannot hold a name that is not UTF-8: rename it")));
-    }
     change(&mut opened, wish)?;
     let reading = reading_of(&opened)?;
     if let Some(path) = &wish.save {
@@ -71,7 +67,7 @@ fn open(path: &Path, hashed: bool) -> Result<Opened, CliError> {
 /// A session is read on its own capture only: one that has changed gives other figures.
 fn open_session(path: &Path) -> Result<Opened, CliError> {
     let mut session = session::load(path)?.session;
-    let (capture, state, now) = open_capture_of(&session, path)?;
+    let SessionCapture { capture, state, now } = open_capture_of(&session, path)?;
     if state == CaptureState::Changed {
         return Err(CliError::Changed { session: path.to_owned(), capture: capture.path });
     }
@@ -88,14 +84,10 @@ fn open_session(path: &Path) -> Result<Opened, CliError> {
 }
 
 /// The capture of a session, what became of it, and what it is now.
-pub(super) fn open_capture_of(session: &Session, path: &Path) -> Result<(Capture, CaptureState, CaptureRef), CliError> {
+pub(super) fn open_capture_of(session: &Session, path: &Path) -> Result<SessionCapture, CliError> {
     let missing = || CliError::Missing { session: path.to_owned(), capture: session.capture.path.clone() };
     let found = session::find_capture(&session.capture, path).ok_or_else(missing)?;
-    let capture = capture::open(&found.path)?;
-    let blake3 = capture.blake3(&Watch::new())?;
-    let state = session::capture_state(&session.capture, &found, &blake3);
-    let now = CaptureRef::of(&capture, blake3);
-    Ok((capture, state, now))
+    Ok(session::open_capture(&session.capture, &found, &Watch::new())?)
 }
 
 /// What was doubtful on opening. A capture that holds less than it claims says so in one of its sentences.

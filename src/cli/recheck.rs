@@ -10,7 +10,7 @@ use super::{CliError, DONE, FOUND_A_PROBLEM, put};
 use crate::capture::CaptureError;
 use crate::reading::figures_of;
 use crate::report::{figure_text, recheck_json};
-use crate::session::{self, CaptureState, Figures, Moved, Session};
+use crate::session::{self, CaptureState, Figures, Moved, Session, SessionCapture};
 
 /// What a recheck found.
 struct Found {
@@ -30,6 +30,9 @@ impl Found {
 pub(super) fn recheck(wish: &RecheckWish, out: &mut dyn Write) -> Result<u8, CliError> {
     let loaded = session::load(&wish.session)?;
     let saved = loaded.figures.ok_or_else(|| CliError::NoFigures { session: wish.session.clone() })?;
+    if loaded.session.capture.blake3.is_empty() {
+        return Err(CliError::NoHash { session: wish.session.clone() });
+    }
     let found = compare(loaded.session, &saved, &wish.session)?;
     if wish.json {
         put(out, &recheck_json(found.same(), &found.figures, found.capture)?)?;
@@ -40,7 +43,7 @@ pub(super) fn recheck(wish: &RecheckWish, out: &mut dyn Write) -> Result<u8, Cli
 }
 
 fn compare(mut session: Session, saved: &Figures, path: &Path) -> Result<Found, CliError> {
-    let (capture, state, now) = match open_capture_of(&session, path) {
+    let SessionCapture { capture, state, now } = match open_capture_of(&session, path) {
         Err(CliError::Missing { .. }) => return Ok(unread(CaptureState::Missing, "the capture is not there")),
         // It was a capture when the session was saved. What the system refuses says nothing of its content.
         Err(CliError::Capture(why)) if !matches!(why, CaptureError::Io { .. }) => {

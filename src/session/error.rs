@@ -84,6 +84,22 @@ pub enum SessionError {
         /// How long it may be.
         most: u64,
     },
+    /// There is more in the document than a file may hold.
+    #[error("{}: would be {bytes} bytes long, more than a session may be ({most}): shorten the notes or take tones named by hand away", .path.display())]
+    TooMuch {
+        /// The file.
+        path: PathBuf,
+        /// How long it would be.
+        bytes: u64,
+        /// How long it may be.
+        most: u64,
+    },
+    /// The capture's path cannot be written as text.
+    #[error("{}: a session cannot hold a capture's path that is not UTF-8: rename it and open it again", .path.display())]
+    CaptureName {
+        /// The capture's path, as far as it can be told.
+        path: PathBuf,
+    },
     /// The file is not text.
     #[error("{}: is not UTF-8 text: choose a .session.ron file", .path.display())]
     NotText {

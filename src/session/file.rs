@@ -85,7 +85,12 @@ pub fn save(path: &Path, session: &Session, figures: Option<&Figures>) -> Result
     if !has_extension(path) || !has_extension(&target) {
         return Err(SessionError::Name { path: path.to_owned() });
     }
-    if fs::canonicalize(&session.capture.path).is_ok_and(|capture| capture == target) {
+    let capture = &session.capture.path;
+    if capture.contains(char::REPLACEMENT_CHARACTER) && !Path::new(capture).exists() {
+        // Only what cannot be told as text came to be such a path.
+        return Err(SessionError::CaptureName { path: PathBuf::from(capture) });
+    }
+    if fs::canonicalize(capture).is_ok_and(|capture| capture == target) {
         return Err(SessionError::OverCapture { path: path.to_owned() });
     }
     let folder = folder_of(&target);
@@ -111,7 +116,7 @@ pub fn load(path: &Path) -> Result<Loaded, SessionError> {
     let file: File = ron::from_str(&text).map_err(damaged)?;
     let mut session = file.document;
     session.check().map_err(|what| SessionError::Invalid { path: path.to_owned(), what })?;
-    session.capture.path = from_folder(&session.capture.path, &folder_of(path));
+    session.capture.path = from_folder(&session.capture.path, &folder_of(&real(path)));
     let saved_as = file.saved_as.map(PathBuf::from);
     Ok(Loaded { session, figures: file.figures, program: file.program, saved_as })
 }
@@ -120,6 +125,8 @@ pub fn load(path: &Path) -> Result<Loaded, SessionError> {
 pub(super) fn write_recovery_file(path: &Path, session: &Session, saved_as: Option<&Path>) -> Result<(), SessionError> {
     let mut document = session.clone();
     document.capture.path = absolute(Path::new(&session.capture.path));
+    // A name that is no text would come back as another one: the session is then asked a place for anew.
+    let saved_as = saved_as.filter(|path| path.to_str().is_some());
     write(path, document, None, saved_as.map(absolute))
 }
 
@@ -137,6 +144,9 @@ fn write(
     let program = env!("CARGO_PKG_VERSION").to_owned();
     let file = File { format: FORMAT, program, document, figures, saved_as };
     let text = to_ron(&file).map_err(|error| io_error(path, std::io::Error::other(error)))?;
+    if text.len() as u64 > MOST_BYTES {
+        return Err(SessionError::TooMuch { path: path.to_owned(), bytes: text.len() as u64, most: MOST_BYTES });
+    }
     write_whole(path, text.as_bytes())
 }
 
@@ -209,6 +219,13 @@ fn sync_folder(folder: &Path) {
     }
     #[cfg(not(unix))]
     let _ = folder;
+}
+
+/// The file that a link leads to; else the path as it is.
+pub(super) fn real(path: &Path) -> PathBuf {
+    let linked = fs::symlink_metadata(path).is_ok_and(|about| about.file_type().is_symlink());
+    let target = if linked { fs::canonicalize(path).ok() } else { None };
+    target.unwrap_or_else(|| path.to_owned())
 }
 
 /// The folder a file is in.

@@ -4,7 +4,9 @@ use std::fs;
 use std::path::{Component, Path, PathBuf};
 
 use super::CaptureRef;
-use super::file::folder_of;
+use super::file::{folder_of, real};
+use crate::capture::{self, Capture, CaptureError};
+use crate::signal::Watch;
 
 /// What became of a session's capture since it was saved.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, serde::Serialize)]
@@ -47,15 +49,46 @@ pub fn find_capture(capture: &CaptureRef, session_file: &Path) -> Option<Found> 
     if stated.is_file() {
         return Some(Found { path: stated, moved: false });
     }
-    let beside = in_folder(&folder_of(session_file), Path::new(stated.file_name()?));
+    let beside = in_folder(&folder_of(&real(session_file)), Path::new(stated.file_name()?));
     beside.is_file().then_some(Found { path: beside, moved: true })
 }
 
-/// What became of a capture that was found, whose content has this BLAKE3.
+/// A session's capture, open.
+#[derive(Debug, Clone)]
+pub struct SessionCapture {
+    /// The samples.
+    pub capture: Capture,
+    /// What became of it since the session was saved.
+    pub state: CaptureState,
+    /// What it is now.
+    pub now: CaptureRef,
+}
+
+/// Opens the capture of a session where it was found, and says what became of it. `watch` tells how far it is read.
 ///
-/// A session saved before its capture's content was hashed takes the capture as the same.
-pub fn capture_state(saved: &CaptureRef, found: &Found, blake3: &str) -> CaptureState {
-    match (saved.blake3.is_empty() || saved.blake3 == blake3, found.moved) {
+/// Whoever puts [`SessionCapture::now`] in the session has to [check](super::Session::check) it once more: the session
+/// may tell of samples or channels that the capture does not have.
+///
+/// # Errors
+/// [`CaptureError`]; a cancelled watch gives one of the kind `Interrupted`.
+pub fn open_capture(saved: &CaptureRef, found: &Found, watch: &Watch) -> Result<SessionCapture, CaptureError> {
+    let capture = capture::open(&found.path)?;
+    let now = CaptureRef::of(&capture, capture.blake3(watch)?);
+    Ok(SessionCapture { state: capture_state(saved, found, &now), capture, now })
+}
+
+/// What became of a capture that was found and is `now`.
+///
+/// A session kept before its capture's content was hashed (a recovery file may be) takes the capture as the same where
+/// rate, channels and frames are.
+pub fn capture_state(saved: &CaptureRef, found: &Found, now: &CaptureRef) -> CaptureState {
+    let same = if saved.blake3.is_empty() {
+        let rates = (saved.sample_rate_hz.to_bits(), now.sample_rate_hz.to_bits());
+        rates.0 == rates.1 && saved.channels == now.channels && saved.frames == now.frames
+    } else {
+        saved.blake3 == now.blake3
+    };
+    match (same, found.moved) {
         (false, _) => CaptureState::Changed,
         (true, true) => CaptureState::Moved,
         (true, false) => CaptureState::Same,
@@ -123,9 +156,25 @@ mod tests {
         fs::write(root.path().join("pump.wav"), "").unwrap();
         let found = find_capture(&capture, &session).unwrap();
         assert_eq!(found, Found { path: root.path().join("pump.wav"), moved: true });
-        assert_eq!(capture_state(&capture, &found, &capture.blake3), CaptureState::Moved);
-        assert_eq!(capture_state(&capture, &found, "another"), CaptureState::Changed);
+        let another = CaptureRef { blake3: "another".to_owned(), ..capture.clone() };
+        assert_eq!(capture_state(&capture, &found, &capture), CaptureState::Moved);
+        assert_eq!(capture_state(&capture, &found, &another), CaptureState::Changed);
         let stays = Found { moved: false, ..found };
-        assert_eq!(capture_state(&capture, &stays, &capture.blake3), CaptureState::Same);
+        assert_eq!(capture_state(&capture, &stays, &capture), CaptureState::Same);
+    }
+
+    #[test]
+    fn a_capture_that_was_never_hashed_is_the_same_only_with_the_same_facts() {
+        let now = pump().capture;
+        let never = CaptureRef { blake3: String::new(), ..now.clone() };
+        let found = Found { path: PathBuf::from("pump.wav"), moved: false };
+        assert_eq!(capture_state(&never, &found, &now), CaptureState::Same);
+        for other in [
+            CaptureRef { frames: 999, ..never.clone() },
+            CaptureRef { channels: 1, ..never.clone() },
+            CaptureRef { sample_rate_hz: 999.0, ..never.clone() },
+        ] {
+            assert_eq!(capture_state(&other, &found, &now), CaptureState::Changed);
+        }
     }
 }

@@ -25,6 +25,6 @@ pub use error::{DocumentError, SessionError};
 pub use figures::{Figure, Figures, Moved, PaneFigures, ToneFigures};
 pub use file::{EXTENSION, FORMAT, Loaded, has_extension, load, save, with_extension};
 pub use history::History;
-pub use locate::{CaptureState, Found, capture_state, find_capture};
+pub use locate::{CaptureState, Found, SessionCapture, capture_state, find_capture, open_capture};
 pub use recent::{MAX_RECENT, RecentFile, forget_recent, list_recent, note_recent, recent_file};
 pub use recovery::{Recovered, Recovery, discard, find_recoveries, recovery_dir, start_recovery, write_recovery};

@@ -212,3 +212,56 @@ fn a_session_is_never_saved_over_a_capture() {
     assert_eq!(with_extension(&wav), folder.path().join("pump.wav.session.ron"));
     assert_eq!(with_extension(std::path::Path::new("a.ron")), std::path::Path::new("a.session.ron"));
 }
+
+#[test]
+fn more_than_can_be_loaded_is_not_saved() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("pump.session.ron");
+    let mut session = pump();
+    save(&path, &session, None).unwrap();
+    let before = std::fs::read(&path).unwrap();
+    session.notes.push(Note { frequency_hz: None, text: "x".repeat(17 << 20) });
+    assert!(matches!(save(&path, &session, None), Err(SessionError::TooMuch { .. })));
+    assert_eq!(std::fs::read(&path).unwrap(), before);
+    assert!(load(&path).is_ok());
+}
+
+#[cfg(unix)]
+#[test]
+fn a_capture_whose_path_is_no_text_is_refused_by_name() {
+    use std::os::unix::ffi::OsStrExt;
+    let folder = tempfile::tempdir().unwrap();
+    let wav = folder.path().join(std::ffi::OsStr::from_bytes(b"pump-\xff.wav"));
+    std::fs::write(&wav, "samples").unwrap();
+    let mut session = pump();
+    session.capture.path = wav.to_string_lossy().into_owned();
+    let path = folder.path().join("pump.session.ron");
+    let error = save(&path, &session, None).unwrap_err();
+    assert!(matches!(error, SessionError::CaptureName { .. }), "{error}");
+    assert!(!path.exists());
+    // The character that stands for what is no text may also be meant.
+    let wav = folder.path().join("pump-\u{fffd}.wav");
+    std::fs::write(&wav, "samples").unwrap();
+    session.capture.path = wav.to_string_lossy().into_owned();
+    save(&path, &session, None).unwrap();
+}
+
+#[cfg(unix)]
+#[test]
+fn a_session_opened_through_a_link_finds_its_capture_beside_the_file_itself() {
+    let folder = tempfile::tempdir().unwrap();
+    let there = folder.path().join("archive");
+    std::fs::create_dir(&there).unwrap();
+    let wav = there.join("pump.wav");
+    std::fs::write(&wav, "samples").unwrap();
+    let mut session = pump();
+    session.capture.path = wav.to_string_lossy().into_owned();
+    let path = there.join("pump.session.ron");
+    save(&path, &session, None).unwrap();
+    let link = folder.path().join("newest.session.ron");
+    std::os::unix::fs::symlink(&path, &link).unwrap();
+    let loaded = load(&link).unwrap().session;
+    let found = find_capture(&loaded.capture, &link).unwrap();
+    assert_eq!(std::fs::canonicalize(&found.path).unwrap(), std::fs::canonicalize(&wav).unwrap());
+    assert!(!found.moved);
+}

@@ -1,10 +1,10 @@
 //! What each action of the menus does.
 
-use eframe::egui::{Context, ViewportCommand};
+use eframe::egui::Context;
 
 use super::action::Action;
 use super::desk::Desk;
-use super::dialog::{After, Dialog};
+use super::dialog::Dialog;
 use super::plot::Axis;
 use super::services::Ask;
 use super::table;
@@ -24,7 +24,7 @@ impl Workbench {
         match action {
             Action::OpenCapture => self.ask(Ask::Capture),
             Action::OpenSession => self.ask(Ask::Session),
-            Action::OpenPath => self.dialog = Some(Dialog::Path(String::new())),
+            Action::OpenPath => self.dialogs.put(Dialog::Path(String::new())),
             Action::OpenDemonstration => {
                 if let Some(path) = self.services.demonstration.clone() {
                     self.want_open(&path);
@@ -33,10 +33,10 @@ impl Workbench {
             Action::Save => self.save(),
             Action::SaveAs if self.desk.is_some() => self.ask(Ask::SaveSession(self.proposed_name())),
             Action::Undo | Action::Redo => self.step_back(action == Action::Undo),
-            Action::Quit if self.may_close() => ctx.send_viewport_cmd(ViewportCommand::Close),
-            Action::Quit => self.dialog = Some(Dialog::Unsaved(After::Quit)),
-            Action::Keys => self.dialog = Some(Dialog::Keys),
-            Action::About => self.dialog = Some(Dialog::About),
+            Action::SavePath => self.ask_save_path(),
+            Action::Quit => self.want_quit(ctx),
+            Action::Keys => self.dialogs.put(Dialog::Keys),
+            Action::About => self.dialogs.put(Dialog::About),
             Action::ToggleSetup => self.view.setup_open = !self.view.setup_open,
             Action::Larger => ctx.set_zoom_factor((ctx.zoom_factor() + SCALE.2).clamp(SCALE.0, SCALE.1)),
             Action::Smaller => ctx.set_zoom_factor((ctx.zoom_factor() - SCALE.2).clamp(SCALE.0, SCALE.1)),
@@ -75,7 +75,7 @@ impl Workbench {
         let old = desk.session.notes.iter().find(|n| near(n.frequency_hz));
         let text = old.map(|n| n.text.clone()).unwrap_or_default();
         let frequency_hz = old.and_then(|n| n.frequency_hz).unwrap_or(frequency_hz);
-        self.dialog = Some(Dialog::ToneNote { frequency_hz, text });
+        self.dialogs.put(Dialog::ToneNote { frequency_hz, text });
     }
 
     fn act_on_desk(&mut self, action: Action) {

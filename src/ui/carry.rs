@@ -4,15 +4,17 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::time::Instant;
 
-use eframe::egui::{Context, ViewportCommand};
+use eframe::egui::Context;
 
 use super::desk::{Desk, file_name};
 use super::dialog::{After, Dialog, Reply};
-use super::files::{self, Event, Opened};
+use super::files::{self, Event, Kept, Opened, Outcome, UNFORESEEN};
+use super::lane::guarded;
 use super::services::Ask;
 use super::view::Intent;
-use super::workbench::{AUTOSAVE_AFTER, Workbench};
-use crate::session::{Command, Found, Note, Recovered};
+use super::workbench::{AUTOSAVE_AFTER, Opening, Workbench};
+use super::worker::Latest;
+use crate::session::{Command, Found, Note, Recovered, Session};
 use crate::signal::Watch;
 
 impl Workbench {
@@ -50,6 +52,8 @@ impl Workbench {
             Command::ChooseChannel(_) | Command::ChooseSegment(_) | Command::AddSegment(_) | Command::RemoveSegment(_)
         );
         if desk.history.apply(&mut desk.session, command) {
+            // What is picked and shown is no step.
+            desk.untouched &= desk.history.undo_name().is_none();
             self.view.refit_level |= windows || other_samples;
             self.note_change();
         }
@@ -63,90 +67,39 @@ impl Workbench {
     /// Opens a file, once unsaved work is dealt with.
     pub(super) fn want_open(&mut self, path: &Path) {
         if self.is_unsaved() {
-            self.dialog = Some(Dialog::Unsaved(After::Open(path.to_owned())));
+            self.dialogs.put(Dialog::Unsaved(After::Open(path.to_owned())));
         } else {
             self.start_opening(path);
         }
     }
 
-    fn start_opening(&mut self, path: &Path) {
+    pub(super) fn start_opening(&mut self, path: &Path) {
         let path = path.to_owned();
         self.open_on_lane(file_name(&path), move |watch| files::open(&path, watch));
     }
 
-    fn open_on_lane(&mut self, name: String, job: impl FnOnce(&Watch) -> Event + Send + 'static) {
+    fn open_on_lane(&mut self, name: String, job: impl FnOnce(&Watch) -> Outcome + Send + 'static) {
         let Some(threads) = &self.threads else { return };
-        let watch = Watch::new();
-        if let Some((_, old)) = self.opening.replace((name, watch.clone())) {
-            old.cancel();
+        self.n_openings += 1;
+        let (number, watch) = (self.n_openings, Watch::new());
+        let given_up = self.given_up.take();
+        if let Some(old) = self.opening.replace(Opening { number, name, watch: watch.clone(), given_up }) {
+            old.watch.cancel();
         }
-        threads.files.run(move |tell| tell(job(&watch)));
-    }
-
-    /// Asks the desktop for a file.
-    pub(super) fn ask(&self, ask: Ask) {
-        let Some(threads) = &self.threads else { return };
-        let picker = Arc::clone(&self.services.picker);
-        let folder = self.desk.as_ref().and_then(|d| {
-            let beside = d.file.as_deref().unwrap_or(&d.capture.path);
-            beside.parent().filter(|p| !p.as_os_str().is_empty()).map(Path::to_owned)
+        threads.opening.run(move |tell| {
+            let outcome = guarded(|| job(&watch)).unwrap_or_else(|| Outcome::Refused(UNFORESEEN.to_owned()));
+            tell(Event::Opening(number, outcome));
         });
-        threads.dialogs.run(move |tell| {
-            let path = picker.pick(&ask, folder.as_deref());
-            tell(Event::Picked(ask, path));
-        });
-    }
-
-    /// Saves the session in a file.
-    pub(super) fn save_to(&mut self, path: &Path) {
-        let (Some(desk), Some(threads)) = (&self.desk, &self.threads) else { return };
-        let path = crate::session::with_extension(path);
-        let (number, session) = (desk.number, desk.session.clone());
-        let current = desk.reading().filter(|_| desk.latest.is_current());
-        let figures = current.map(|reading| crate::reading::figures_of(reading));
-        let (capture, watch) = (Arc::clone(&desk.capture), Watch::new());
-        self.saving = true;
-        threads.files.run(move |tell| tell(files::save(number, &path, session, figures.as_ref(), &capture, &watch)));
-    }
-
-    /// Saves where the session is kept, or asks where to.
-    pub(super) fn save(&mut self) {
-        let Some(desk) = &self.desk else { return };
-        match desk.file.clone() {
-            Some(file) => self.save_to(&file),
-            None => self.ask(Ask::SaveSession(self.proposed_name())),
-        }
-    }
-
-    /// A name for the session's file: that of its capture.
-    pub(super) fn proposed_name(&self) -> String {
-        let Some(desk) = &self.desk else { return String::new() };
-        let stem = desk.capture.path.file_stem().map(|s| s.to_string_lossy().into_owned()).unwrap_or_default();
-        format!("{stem}{}", crate::session::EXTENSION)
     }
 
     /// Takes in what came of file work.
     pub(super) fn take_event(&mut self, ctx: &Context, event: Event) {
         match event {
-            Event::Picked(ask, Some(path)) => self.take_picked(&ask, path),
-            Event::Picked(Ask::SaveSession(_), None) => self.after_save = None,
-            Event::Picked(_, None) | Event::Read => {}
-            Event::Opened(opened) => self.take_opened(*opened),
-            Event::Refused(text) => {
-                self.opening = None;
-                self.saving = false;
-                self.after_save = None;
-                self.notices.refuse(&text);
-            }
-            Event::CalledOff => self.opening = None,
-            Event::Missing(loaded, file) => {
-                self.opening = None;
-                self.dialog = Some(Dialog::Missing(loaded, file, String::new()));
-            }
-            Event::Changed(changed) => {
-                self.opening = None;
-                self.dialog = Some(Dialog::Changed(changed));
-            }
+            Event::Picked(picked) => self.take_picked(picked),
+            Event::Read => {}
+            Event::Opening(number, outcome) => self.take_outcome(number, outcome),
+            Event::Said(text) => self.notices.refuse(&text),
+            Event::NotSaved(text) => self.take_not_saved(&text),
             Event::Columns(number, key, columns) => {
                 if self.desk_of(number).is_some() {
                     self.view.strip_cache.take(key, columns);
@@ -170,38 +123,52 @@ impl Workbench {
                     desk.session.capture.blake3 = blake3;
                 }
             }
-            Event::Saved(number, path, session) => self.take_saved(ctx, number, &path, *session),
+            Event::Saved(number, saved) => self.take_saved(ctx, number, *saved),
             Event::Recoveries(list) if list.is_empty() => {}
-            Event::Recoveries(list) => self.dialog = Some(Dialog::Recover(list)),
+            Event::Recoveries(list) => self.dialogs.put(Dialog::Recover(list)),
             Event::Recent(list) => self.recent = list,
         }
     }
 
-    fn desk_of(&mut self, number: u64) -> Option<&mut Desk> {
+    pub(super) fn desk_of(&mut self, number: u64) -> Option<&mut Desk> {
         self.desk.as_mut().filter(|d| d.number == number)
     }
 
-    fn take_picked(&mut self, ask: &Ask, path: PathBuf) {
-        match ask {
-            Ask::Capture | Ask::Session => self.want_open(&path),
-            Ask::SaveSession(_) => self.save_to(&path),
-            Ask::Locate => {
-                if let Some(Dialog::Missing(loaded, file, _)) = self.dialog.take() {
-                    self.locate(*loaded, file, path);
-                }
-            }
+    pub(super) fn locate(&mut self, kept: Kept, path: PathBuf) {
+        let name = file_name(&path);
+        let found = Found { path, moved: true };
+        self.open_on_lane(name, move |watch| files::open_found(kept, &found, watch));
+    }
+
+    /// Takes in what came of an opening, unless it was called off or another one took its place.
+    fn take_outcome(&mut self, number: u64, outcome: Outcome) {
+        let Some(opening) = self.opening.take_if(|o| o.number == number) else { return };
+        if opening.watch.is_cancelled() {
+            return;
+        }
+        match outcome {
+            Outcome::Opened(opened) => self.deliver(opened, opening.given_up.as_ref()),
+            Outcome::Refused(text) => self.notices.refuse(&text),
+            Outcome::CalledOff => {}
+            Outcome::Missing(kept) => self.dialogs.put(Dialog::Missing(kept, String::new())),
+            Outcome::Changed(changed) => self.dialogs.put(Dialog::Changed(changed)),
         }
     }
 
-    fn locate(&mut self, loaded: crate::session::Loaded, file: PathBuf, path: PathBuf) {
-        let name = file_name(&path);
-        let found = Found { path, moved: true };
-        self.open_on_lane(name, move |watch| files::open_found(loaded, &file, &found, watch));
+    /// Puts what was opened on the desk; asks before, where that holds unsaved work other than the user gave up: it may
+    /// have been changed while the file was opened.
+    fn deliver(&mut self, opened: Box<Opened>, given_up: Option<&Session>) {
+        let loses = self.desk.as_ref().is_some_and(|d| d.is_unsaved() && !given_up.is_some_and(|g| d.holds(g)));
+        if loses {
+            self.dialogs.put(Dialog::Unsaved(After::Take(opened)));
+        } else {
+            self.accept(*opened);
+        }
     }
 
-    fn take_opened(&mut self, opened: Opened) {
-        let Opened { capture, session, file, as_saved, remark } = opened;
-        self.opening = None;
+    /// Puts what was opened on the desk; what lay there is gone.
+    pub(super) fn accept(&mut self, opened: Opened) {
+        let Opened { capture, session, file, as_saved, remark, recovered } = opened;
         self.n_opened += 1;
         let number = self.n_opened;
         let capture = Arc::new(capture);
@@ -209,6 +176,9 @@ impl Workbench {
             Some(session) => Desk::with_session(number, Arc::clone(&capture), session, file),
             None => Desk::fresh(number, Arc::clone(&capture)),
         };
+        if let Some(threads) = &self.threads {
+            desk.latest = Latest::after(threads.worker.newest());
+        }
         if !as_saved {
             desk.mark_unsaved();
         }
@@ -216,29 +186,53 @@ impl Workbench {
         for text in capture.doubts.iter().chain(&remark) {
             self.notices.tell(text);
         }
+        self.saving.give_up();
+        self.given_up = None;
         self.view.for_new_capture();
         self.start_survey(&desk);
         self.note_recent(desk.file.as_deref().unwrap_or(&capture.path));
-        self.autosave_due = None;
+        self.clear_slot();
+        if let Some(recovered) = recovered {
+            self.take_up(&desk, recovered);
+        }
         self.desk = Some(desk);
         if !as_saved {
             self.note_change();
         }
     }
 
+    /// Keeps what an earlier run left in this run's own slot; only then the old one may go.
+    fn take_up(&self, desk: &Desk, recovered: Recovered) {
+        let (Some(threads), Some(folder)) = (&self.threads, self.services.recovery.clone()) else { return };
+        let (slot, session, file) = (self.slot.clone(), desk.session.clone(), desk.file.clone());
+        threads.files.run(move |tell| match slot.keep(&folder, &session, file.as_deref()) {
+            Some(event) => tell(event),
+            // A leftover would only be offered once too often.
+            None => drop(crate::session::discard(recovered)),
+        });
+    }
+
     fn start_survey(&self, desk: &Desk) {
         let Some(threads) = &self.threads else { return };
         let (capture, session, watch) = (Arc::clone(&desk.capture), desk.session.clone(), desk.watch.clone());
         let (number, overview) = (desk.number, desk.overview.clone());
-        threads.survey.run(move |tell| files::survey(number, (&capture, &overview), &session, &watch, tell));
+        threads.survey.run(move |tell| {
+            if guarded(|| files::survey(number, (&capture, &overview), &session, &watch, tell)).is_none() {
+                tell(Event::Said(UNFORESEEN.to_owned()));
+                tell(Event::Surveyed(number));
+            }
+        });
     }
 
     /// Has columns read that the strip wants from the samples themselves.
     pub(super) fn read_columns(&mut self) {
-        let (Some(desk), Some(threads)) = (&self.desk, &self.threads) else { return };
+        let (Some(desk), Some(threads)) = (&mut self.desk, &self.threads) else { return };
         let Some((key, edges)) = self.view.strip_cache.wanted() else { return };
-        let (capture, watch, number) = (Arc::clone(&desk.capture), desk.watch.clone(), desk.number);
-        threads.files.run(move |tell| {
+        // The strip has moved on: what it wanted before is of no use any more.
+        let watch = Watch::new();
+        std::mem::replace(&mut desk.columns_watch, watch.clone()).cancel();
+        let (capture, number) = (Arc::clone(&desk.capture), desk.number);
+        threads.strip.run(move |tell| {
             // What cannot be read stays as coarse as it is drawn; the reading of the segment says why.
             if let Ok(columns) = crate::capture::raw_columns(&*capture.source, key.channel, &edges, &watch) {
                 tell(Event::Columns(number, key, columns));
@@ -246,12 +240,12 @@ impl Workbench {
         });
     }
 
-    fn note_recent(&self, path: &Path) {
+    pub(super) fn note_recent(&self, path: &Path) {
         let (Some(threads), Some(file)) = (&self.threads, self.services.recent.clone()) else { return };
         let path = path.to_owned();
         threads.files.run(move |tell| {
             if let Err(error) = crate::session::note_recent(&file, &path) {
-                tell(Event::Refused(format!("the list of recent files could not be kept: {error}")));
+                tell(Event::Said(format!("the list of recent files could not be kept: {error}")));
             }
             tell(Event::Recent(crate::session::list_recent(&file)));
         });
@@ -260,38 +254,9 @@ impl Workbench {
     fn take_suggestion(&mut self, number: u64, span: crate::signal::Span) {
         let Some(desk) = self.desk_of(number) else { return };
         desk.suggestion = Some(span);
-        if desk.is_unmarked() {
+        if desk.untouched {
             desk.start_from(span);
             self.view.refit_level = true;
-        }
-    }
-
-    fn take_saved(&mut self, ctx: &Context, number: u64, path: &Path, session: crate::session::Session) {
-        self.saving = false;
-        let Some(desk) = self.desk_of(number) else { return };
-        desk.session.capture.blake3.clone_from(&session.capture.blake3);
-        desk.mark_saved(session);
-        desk.file = Some(path.to_owned());
-        let unsaved = desk.is_unsaved();
-        if let (false, Some(threads)) = (unsaved, &self.threads) {
-            let slot = self.slot.clone();
-            threads.files.run(move |_| slot.clear());
-            self.autosave_due = None;
-        }
-        self.note_recent(path);
-        self.notices.tell(&format!("Saved in {}.", path.display()));
-        if let Some(after) = self.after_save.take() {
-            self.go_on(ctx, after);
-        }
-    }
-
-    fn go_on(&mut self, ctx: &Context, after: After) {
-        match after {
-            After::Quit => {
-                self.may_close = true;
-                ctx.send_viewport_cmd(ViewportCommand::Close);
-            }
-            After::Open(path) => self.start_opening(&path),
         }
     }
 
@@ -301,24 +266,30 @@ impl Workbench {
             Reply::Close => {}
             Reply::Open(path) => self.want_open(&path),
             Reply::SaveThen(after) => {
-                self.after_save = Some(after);
+                self.saving.after = Some(after);
                 self.save();
             }
             Reply::DiscardThen(after) => {
-                let slot = self.slot.clone();
-                if let Some(threads) = &self.threads {
-                    threads.files.run(move |_| slot.clear());
-                }
-                self.autosave_due = None;
+                self.given_up = self.desk.as_ref().map(|d| d.session.clone());
                 self.go_on(ctx, after);
             }
-            Reply::AskLocate(loaded, file) => {
-                self.dialog = Some(Dialog::Missing(loaded, file, String::new()));
+            Reply::SaveAt(path) => self.save_at(path),
+            Reply::Replace(number, path) => {
+                if self.desk_of(number).is_some() {
+                    self.save_to(&path);
+                }
+            }
+            Reply::NoSave => self.saving.after = None,
+            Reply::AskLocate(kept) => {
+                self.dialogs.interrupt(Dialog::Missing(kept, String::new()));
                 self.ask(Ask::Locate);
             }
-            Reply::Locate(loaded, file, path) => self.locate(*loaded, file, path),
-            Reply::UseChanged(changed) => self.take_opened(files::use_changed(*changed)),
-            Reply::Recover(one, rest) => self.recover(*one, rest),
+            Reply::Locate(kept, path) => self.locate(*kept, path),
+            Reply::UseChanged(changed) => self.deliver(Box::new(files::use_changed(*changed)), None),
+            Reply::Recover(one) => {
+                let name = file_name(Path::new(&one.loaded.session.capture.path));
+                self.open_on_lane(name, move |watch| files::open_session(Kept::left(*one), watch));
+            }
             Reply::DiscardRecoveries(list) => {
                 if let Some(threads) = &self.threads {
                     threads.files.run(move |_| {
@@ -333,23 +304,5 @@ impl Workbench {
                 self.change(Command::SetNote(Note { frequency_hz: Some(frequency_hz), text }));
             }
         }
-    }
-
-    /// Takes up what an earlier run left; it is kept in this run's own slot from then on.
-    fn recover(&mut self, one: Recovered, _rest: Vec<Recovered>) {
-        let (file, loaded) = (one.file.clone(), one.loaded.clone());
-        let name = file_name(Path::new(&loaded.session.capture.path));
-        let (slot, folder) = (self.slot.clone(), self.services.recovery.clone());
-        self.open_on_lane(name, move |watch| {
-            let event = files::recover(loaded, &file, watch);
-            if let (Event::Opened(opened), Some(folder)) = (&event, &folder)
-                && let Some(session) = &opened.session
-                && slot.keep(folder, session, opened.file.as_deref()).is_none()
-            {
-                // Safe in this run's slot: the old one may go.
-                let _ = crate::session::discard(one);
-            }
-            event
-        });
     }
 }

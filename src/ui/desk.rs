@@ -36,6 +36,10 @@ pub(super) struct Desk {
     pub(super) latest: Latest,
     /// Calls off what is still being made of this capture.
     pub(super) watch: Watch,
+    /// Calls off the columns that the strip last wanted.
+    pub(super) columns_watch: Watch,
+    /// Whether it is as it was opened from its capture: nobody has changed anything.
+    pub(super) untouched: bool,
 }
 
 /// What the session says of a capture just opened.
@@ -72,7 +76,9 @@ impl Desk {
     /// A desk with a capture fresh from its file.
     pub(super) fn fresh(number: u64, capture: Arc<Capture>) -> Self {
         let session = Session::new(capture_ref(&capture));
-        Self::with_session(number, capture, session, None)
+        let mut desk = Self::with_session(number, capture, session, None);
+        desk.untouched = true;
+        desk
     }
 
     /// A desk with a session and the capture it is about.
@@ -89,6 +95,8 @@ impl Desk {
             file,
             latest: Latest::default(),
             watch: Watch::new(),
+            columns_watch: Watch::new(),
+            untouched: false,
         }
     }
 
@@ -108,10 +116,15 @@ impl Desk {
         !same_work(&self.session, &self.saved)
     }
 
-    /// Whether the user has marked a segment already.
-    pub(super) fn is_unmarked(&self) -> bool {
-        let whole = Span { start: 0, samples: self.session.capture.frames };
-        self.file.is_none() && self.session.segments.len() == 1 && self.session.segments.iter().all(|s| s.span == whole)
+    /// Whether this is the work that lies on the desk.
+    pub(super) fn holds(&self, session: &Session) -> bool {
+        same_work(&self.session, session)
+    }
+
+    /// Whether figures of the document as it is now are still to come.
+    pub(super) fn awaits_figures(&self) -> bool {
+        let asked = self.latest.asked.as_ref().map(|a| &a.1);
+        asked != Some(&self.request()) || self.latest.is_busy()
     }
 
     /// Puts the suggested stretch in the place of the whole capture; not a step anybody took, so none to undo.
@@ -126,9 +139,11 @@ impl Desk {
         }
     }
 
-    /// What the document asks for.
+    /// What the document asks for. What the file hashes to is left out: it changes no figure.
     pub(super) fn request(&self) -> Request {
-        Request::from_session(&self.session)
+        let mut request = Request::from_session(&self.session);
+        request.capture.blake3.clear();
+        request
     }
 
     /// The segment read.
@@ -156,6 +171,7 @@ impl Desk {
 impl Drop for Desk {
     fn drop(&mut self) {
         self.watch.cancel();
+        self.columns_watch.cancel();
     }
 }
 
@@ -206,13 +222,14 @@ mod tests {
             truncated: false,
             source: Arc::new(Stored::new(100.0, channels, vec![0.0; frames * channels])),
             doubts: Vec::new(),
+            stamp: crate::capture::Stamp::default(),
         }
     }
 
     #[test]
     fn a_pick_is_not_unsaved_work_but_a_name_is() {
         let mut desk = Desk::fresh(1, Arc::new(capture(50, 1)));
-        assert!(!desk.is_unsaved() && desk.is_unmarked());
+        assert!(!desk.is_unsaved() && desk.untouched);
         desk.session.picked_hz = Some(3.0);
         assert!(!desk.is_unsaved());
         desk.session.segments[0].name = "run".to_owned();

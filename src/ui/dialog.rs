@@ -1,20 +1,23 @@
 //! What is asked or told over everything else.
 
-use std::path::PathBuf;
+use std::collections::VecDeque;
+use std::path::{Path, PathBuf};
 
 use eframe::egui::{self, Button, Context, Grid, Id, Modal, RichText, ScrollArea, TextEdit, Ui};
 
 use super::action::{ENTRIES, Menu};
 use super::desk::file_name;
-use super::files::Changed;
+use super::files::{Changed, Kept, Opened};
 use super::{figure, theme, widget};
 use crate::session::{Loaded, Recovered};
 
 /// What is to happen once unsaved work is dealt with.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug)]
 pub(super) enum After {
     Quit,
     Open(PathBuf),
+    /// Put on the desk what was opened meanwhile.
+    Take(Box<Opened>),
 }
 
 /// The question or the text shown.
@@ -23,11 +26,48 @@ pub(super) enum Dialog {
     Keys,
     About,
     Path(String),
+    SavePath(String),
+    /// The desk whose session is to be saved, and the file that stands there already.
+    Replace(u64, PathBuf),
     Unsaved(After),
-    Missing(Box<Loaded>, PathBuf, String),
+    /// The session, and the path typed.
+    Missing(Box<Kept>, String),
     Changed(Box<Changed>),
     Recover(Vec<Recovered>),
-    ToneNote { frequency_hz: f64, text: String },
+    ToneNote {
+        frequency_hz: f64,
+        text: String,
+    },
+}
+
+/// The dialog shown and those that wait for it to close: none throws another away.
+#[derive(Debug, Default)]
+pub(super) struct Dialogs(VecDeque<Dialog>);
+
+impl Dialogs {
+    /// Whether none is shown.
+    pub(super) fn is_empty(&self) -> bool {
+        self.0.is_empty()
+    }
+
+    /// Shows a dialog, after those that are there.
+    pub(super) fn put(&mut self, dialog: Dialog) {
+        self.0.push_back(dialog);
+    }
+
+    /// Shows a dialog now; the one shown comes back after it.
+    pub(super) fn interrupt(&mut self, dialog: Dialog) {
+        if let Dialog::Unsaved(After::Quit) = dialog {
+            self.0.retain(|d| !matches!(d, Dialog::Unsaved(After::Quit)));
+        }
+        self.0.push_front(dialog);
+    }
+
+    /// Takes the one shown, or the first that is such a one, out.
+    pub(super) fn take_if(&mut self, is_it: impl Fn(&Dialog) -> bool) -> Option<Dialog> {
+        let at = self.0.iter().position(is_it)?;
+        self.0.remove(at)
+    }
 }
 
 /// What the user said.
@@ -37,10 +77,14 @@ pub(super) enum Reply {
     Open(PathBuf),
     SaveThen(After),
     DiscardThen(After),
-    AskLocate(Box<Loaded>, PathBuf),
-    Locate(Box<Loaded>, PathBuf, PathBuf),
+    SaveAt(PathBuf),
+    Replace(u64, PathBuf),
+    /// The session is not to be saved.
+    NoSave,
+    AskLocate(Box<Kept>),
+    Locate(Box<Kept>, PathBuf),
     UseChanged(Box<Changed>),
-    Recover(Box<Recovered>, Vec<Recovered>),
+    Recover(Box<Recovered>),
     DiscardRecoveries(Vec<Recovered>),
     Note(f64, String),
 }
@@ -62,9 +106,17 @@ pub(super) fn show(ctx: &Context, dialog: Dialog) -> Result<Dialog, Reply> {
         match &mut dialog {
             Dialog::Keys => keys(ui, &mut said),
             Dialog::About => about(ui, &mut said),
-            Dialog::Path(text) => path(ui, text, &mut said),
+            Dialog::Path(text) => {
+                let label = "Type or paste the path of a capture or a session.";
+                path(ui, ("Open by path", label, "Open"), text, &mut said);
+            }
+            Dialog::SavePath(text) => {
+                let label = "Type or paste the path of the session's file.";
+                path(ui, ("Save by path", label, "Save"), text, &mut said);
+            }
+            Dialog::Replace(_, path) => replace(ui, path, &mut said),
             Dialog::Unsaved(_) => unsaved(ui, &mut said),
-            Dialog::Missing(loaded, _, text) => missing(ui, loaded, text, &mut said),
+            Dialog::Missing(kept, text) => missing(ui, &kept.loaded, text, &mut said),
             Dialog::Changed(changed) => changed_capture(ui, changed, &mut said),
             Dialog::Recover(list) => recover(ui, list, &mut said),
             Dialog::ToneNote { frequency_hz, text } => tone_note(ui, *frequency_hz, text, &mut said),
@@ -93,17 +145,14 @@ fn reply(dialog: Dialog, said: Said) -> Reply {
         (Dialog::Path(text), Said::Yes) => Reply::Open(typed_path(&text)),
         (Dialog::Unsaved(after), Said::Yes) => Reply::SaveThen(after),
         (Dialog::Unsaved(after), Said::Other) => Reply::DiscardThen(after),
-        (Dialog::Missing(loaded, file, text), Said::Yes) => Reply::Locate(loaded, file, typed_path(&text)),
-        (Dialog::Missing(loaded, file, _), Said::Other) => Reply::AskLocate(loaded, file),
+        (Dialog::SavePath(text), Said::Yes) => Reply::SaveAt(typed_path(&text)),
+        (Dialog::Replace(number, path), Said::Yes) => Reply::Replace(number, path),
+        (Dialog::SavePath(_) | Dialog::Replace(..), _) => Reply::NoSave,
+        (Dialog::Missing(kept, text), Said::Yes) => Reply::Locate(kept, typed_path(&text)),
+        (Dialog::Missing(kept, _), Said::Other) => Reply::AskLocate(kept),
         (Dialog::Changed(changed), Said::Yes) => Reply::UseChanged(changed),
-        (Dialog::Changed(changed), Said::Other) => {
-            let Changed { loaded, file, .. } = *changed;
-            Reply::AskLocate(Box::new(loaded), file)
-        }
-        (Dialog::Recover(mut list), Said::Nth(i)) if i < list.len() => {
-            let one = list.remove(i);
-            Reply::Recover(Box::new(one), list)
-        }
+        (Dialog::Changed(changed), Said::Other) => Reply::AskLocate(Box::new(changed.kept)),
+        (Dialog::Recover(mut list), Said::Nth(i)) if i < list.len() => Reply::Recover(Box::new(list.remove(i))),
         (Dialog::Recover(list), Said::Other) => Reply::DiscardRecoveries(list),
         (Dialog::ToneNote { frequency_hz, text }, Said::Yes) => Reply::Note(frequency_hz, text),
         _ => Reply::Close,
@@ -174,9 +223,9 @@ fn about(ui: &mut Ui, said: &mut Option<Said>) {
     buttons(ui, said, &[("Close", Said::No, true)]);
 }
 
-fn path(ui: &mut Ui, text: &mut String, said: &mut Option<Said>) {
-    head(ui, "Open by path");
-    ui.label("Type or paste the path of a capture or a session.");
+fn path(ui: &mut Ui, (title, label, go): (&str, &str, &str), text: &mut String, said: &mut Option<Said>) {
+    head(ui, title);
+    ui.label(label);
     let response = ui.add(TextEdit::singleline(text).desired_width(f32::INFINITY)).accessible_name("Path");
     if ui.memory(|m| m.focused().is_none()) {
         response.request_focus();
@@ -185,7 +234,13 @@ fn path(ui: &mut Ui, text: &mut String, said: &mut Option<Said>) {
     if enter && !text.trim().is_empty() {
         *said = Some(Said::Yes);
     }
-    buttons(ui, said, &[("Open", Said::Yes, !text.trim().is_empty()), ("Cancel", Said::No, true)]);
+    buttons(ui, said, &[(go, Said::Yes, !text.trim().is_empty()), ("Cancel", Said::No, true)]);
+}
+
+fn replace(ui: &mut Ui, path: &Path, said: &mut Option<Said>) {
+    head(ui, "There is a session of that name");
+    ui.label(format!("{} is there already. What it holds would be gone.", path.display()));
+    buttons(ui, said, &[("Replace", Said::Yes, true), ("Cancel", Said::No, true)]);
 }
 
 fn unsaved(ui: &mut Ui, said: &mut Option<Said>) {
@@ -210,7 +265,7 @@ fn missing(ui: &mut Ui, loaded: &Loaded, text: &mut String, said: &mut Option<Sa
 fn changed_capture(ui: &mut Ui, changed: &Changed, said: &mut Option<Said>) {
     head(ui, "The capture has changed since the session was saved");
     ui.label(format!("{} does not hold what it held then.", changed.capture.path.display()));
-    if let Some(figures) = &changed.loaded.figures {
+    if let Some(figures) = &changed.kept.loaded.figures {
         ui.label(format!("The session was saved with these figures ({}):", figures.reference));
         ScrollArea::vertical().max_height(160.0).show(ui, |ui| {
             for tone in &figures.tones {

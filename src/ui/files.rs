@@ -2,31 +2,30 @@
 
 use std::path::{Path, PathBuf};
 use std::sync::{Arc, Mutex, PoisonError};
+use std::time::Duration;
 
-use super::desk::{adopt, capture_ref};
+use super::desk::adopt;
 use super::services::Ask;
 use super::strip::StripKey;
 use crate::capture::{self, Capture, Overview};
 use crate::session::{
-    self, CaptureState, Figures, Found, Loaded, RecentFile, Recovered, Recovery, Session, capture_state, find_capture,
+    self, CaptureState, Figures, Found, Loaded, RecentFile, Recovered, Recovery, Session, SessionCapture, SessionError,
+    find_capture, open_capture,
 };
 use crate::signal::{Extent, Span, Watch};
+
+/// What is said of file work that failed in a way nobody thought of.
+pub(super) const UNFORESEEN: &str = "file work failed in a way that was not foreseen: try again";
 
 /// What came of file work.
 #[derive(Debug)]
 pub(super) enum Event {
     /// A question for a file was answered.
-    Picked(Ask, Option<PathBuf>),
-    /// A capture is open.
-    Opened(Box<Opened>),
-    /// Something did not work; one sentence.
-    Refused(String),
-    /// Opening was called off.
-    CalledOff,
-    /// A session's capture is nowhere to be found.
-    Missing(Box<Loaded>, PathBuf),
-    /// A session's capture is not what it was.
-    Changed(Box<Changed>),
+    Picked(Picked),
+    /// What came of the opening of that number.
+    Opening(u64, Outcome),
+    /// Something by the way did not work; one sentence.
+    Said(String),
     /// More of the capture has been read through.
     Read,
     /// What is doubtful about the samples of the channel read.
@@ -40,11 +39,80 @@ pub(super) enum Event {
     /// The capture's BLAKE3.
     Hashed(u64, String),
     /// The session is saved, as it was then.
-    Saved(u64, PathBuf, Box<Session>),
+    Saved(u64, Box<Saved>),
+    /// A session could not be saved; one sentence.
+    NotSaved(String),
     /// What earlier runs left unsaved.
     Recoveries(Vec<Recovered>),
     /// The list of recent files.
     Recent(Vec<RecentFile>),
+}
+
+/// A file that was asked for.
+#[derive(Debug)]
+pub(super) struct Picked {
+    pub(super) ask: Ask,
+    /// The desk it was asked for, if there was one.
+    pub(super) desk: Option<u64>,
+    /// The file chosen.
+    pub(super) path: Option<PathBuf>,
+    /// Whether a file stands there that nobody was asked about.
+    pub(super) replaces: bool,
+    /// How long the question stood.
+    pub(super) took: Duration,
+}
+
+/// A session that was saved.
+#[derive(Debug, Clone)]
+pub(super) struct Saved {
+    pub(super) path: PathBuf,
+    pub(super) session: Session,
+    /// Whether the figures it reads as went with it.
+    pub(super) with_figures: bool,
+}
+
+/// What came of opening a file.
+#[derive(Debug)]
+pub(super) enum Outcome {
+    /// It is open.
+    Opened(Box<Opened>),
+    /// It could not be opened; one sentence.
+    Refused(String),
+    /// It was called off.
+    CalledOff,
+    /// A session's capture is nowhere to be found.
+    Missing(Box<Kept>),
+    /// A session's capture is not what it was.
+    Changed(Box<Changed>),
+}
+
+/// A session as it was found, and where.
+#[derive(Debug)]
+pub(super) struct Kept {
+    pub(super) loaded: Loaded,
+    /// The file it was found in.
+    pub(super) found_in: PathBuf,
+    /// Set where an earlier run left it unsaved; nobody else is offered it while this lives.
+    pub(super) recovered: Option<Recovered>,
+}
+
+impl Kept {
+    /// What an earlier run left.
+    pub(super) fn left(recovered: Recovered) -> Self {
+        Self { loaded: recovered.loaded.clone(), found_in: recovered.file.clone(), recovered: Some(recovered) }
+    }
+
+    /// The file the session is kept in: for one that was left unsaved the one it was saved in before, if any.
+    fn file(&self) -> Option<PathBuf> {
+        if self.recovered.is_some() { self.loaded.saved_as.clone() } else { Some(self.found_in.clone()) }
+    }
+
+    /// The session with its capture.
+    fn opened(self, session: Session, capture: Capture, as_saved: bool, remark: Option<String>) -> Opened {
+        let (file, recovered) = (self.file(), self.recovered);
+        let as_saved = as_saved && recovered.is_none();
+        Opened { capture, session: Some(session), file, as_saved, remark, recovered }
+    }
 }
 
 /// A capture that is open, with the session about it, if there is one.
@@ -58,90 +126,70 @@ pub(super) struct Opened {
     pub(super) as_saved: bool,
     /// What the user should know.
     pub(super) remark: Option<String>,
+    /// What an earlier run left of it: may go once the session is safe elsewhere.
+    pub(super) recovered: Option<Recovered>,
 }
 
 /// A session whose capture is not what it was.
 #[derive(Debug)]
 pub(super) struct Changed {
-    pub(super) loaded: Loaded,
-    pub(super) file: PathBuf,
+    pub(super) kept: Kept,
     pub(super) capture: Capture,
     pub(super) blake3: String,
 }
 
 /// Opens what `path` names: a session where its name says so, else a capture.
-pub(super) fn open(path: &Path, watch: &Watch) -> Event {
+pub(super) fn open(path: &Path, watch: &Watch) -> Outcome {
     if session::has_extension(path) {
         return match session::load(path) {
-            Ok(loaded) => open_session(loaded, path, watch),
-            Err(error) => Event::Refused(error.to_string()),
+            Ok(loaded) => open_session(Kept { loaded, found_in: path.to_owned(), recovered: None }, watch),
+            Err(error) => Outcome::Refused(error.to_string()),
         };
     }
     match capture::open(path) {
         Ok(capture) => {
-            let opened = Opened { capture, session: None, file: None, as_saved: true, remark: None };
-            Event::Opened(Box::new(opened))
+            let opened = Opened { capture, session: None, file: None, as_saved: true, remark: None, recovered: None };
+            Outcome::Opened(Box::new(opened))
         }
-        Err(error) => Event::Refused(error.to_string()),
+        Err(error) => Outcome::Refused(error.to_string()),
     }
 }
 
 /// Opens the capture a session is about, wherever it is now.
-pub(super) fn open_session(loaded: Loaded, file: &Path, watch: &Watch) -> Event {
-    match find_capture(&loaded.session.capture, file) {
-        Some(found) => open_found(loaded, file, &found, watch),
-        None => Event::Missing(Box::new(loaded), file.to_owned()),
+pub(super) fn open_session(kept: Kept, watch: &Watch) -> Outcome {
+    match find_capture(&kept.loaded.session.capture, &kept.found_in) {
+        Some(found) => open_found(kept, &found, watch),
+        None => Outcome::Missing(Box::new(kept)),
     }
 }
 
 /// Opens a session with a capture that was found, and says whether that is what it was.
-pub(super) fn open_found(loaded: Loaded, file: &Path, found: &Found, watch: &Watch) -> Event {
-    let opened = capture::open(&found.path).and_then(|capture| {
-        let blake3 = capture.blake3(watch)?;
-        Ok((capture, blake3))
-    });
-    let (capture, blake3) = match opened {
-        Ok(both) => both,
-        Err(_) if watch.is_cancelled() => return Event::CalledOff,
-        Err(error) => return Event::Refused(error.to_string()),
+pub(super) fn open_found(kept: Kept, found: &Found, watch: &Watch) -> Outcome {
+    let SessionCapture { capture, state, now } = match open_capture(&kept.loaded.session.capture, found, watch) {
+        Ok(opened) => opened,
+        Err(_) if watch.is_cancelled() => return Outcome::CalledOff,
+        Err(error) => return Outcome::Refused(error.to_string()),
     };
-    let state = capture_state(&loaded.session.capture, found, &blake3);
     if state == CaptureState::Changed {
-        return Event::Changed(Box::new(Changed { loaded, file: file.to_owned(), capture, blake3 }));
+        return Outcome::Changed(Box::new(Changed { kept, capture, blake3: now.blake3 }));
     }
-    let mut session = loaded.session;
-    session.capture = crate::session::CaptureRef { blake3, ..capture_ref(&capture) };
+    let session = Session { capture: now, ..kept.loaded.session.clone() };
+    if let Err(what) = session.check() {
+        return Outcome::Refused(SessionError::Invalid { path: kept.found_in, what }.to_string());
+    }
     let moved = format!("The capture has moved and is the same: it was found at {}.", found.path.display());
-    Event::Opened(Box::new(Opened {
-        capture,
-        session: Some(session),
-        file: Some(file.to_owned()),
-        as_saved: state == CaptureState::Same,
-        remark: (state == CaptureState::Moved).then_some(moved),
-    }))
-}
-
-/// Opens what an earlier run left unsaved; it stays unsaved, in the file it was saved in before, if any.
-pub(super) fn recover(loaded: Loaded, file: &Path, watch: &Watch) -> Event {
-    let saved_as = loaded.saved_as.clone();
-    match open_session(loaded, file, watch) {
-        Event::Opened(mut opened) => {
-            opened.file = saved_as;
-            opened.as_saved = false;
-            Event::Opened(opened)
-        }
-        other => other,
-    }
+    let remark = (state == CaptureState::Moved).then_some(moved);
+    Outcome::Opened(Box::new(kept.opened(session, capture, state == CaptureState::Same, remark)))
 }
 
 /// Takes a changed capture after the user has said so.
 pub(super) fn use_changed(changed: Changed) -> Opened {
-    let Changed { loaded, file, capture, blake3 } = changed;
-    let mut session = loaded.session;
+    let Changed { kept, capture, blake3 } = changed;
+    let mut session = kept.loaded.session.clone();
     adopt(&mut session, &capture, blake3);
     let remark = "The capture has changed since the session was saved: all figures are computed anew from what it \
                   holds now.";
-    Opened { capture, session: Some(session), file: Some(file), as_saved: false, remark: Some(remark.to_owned()) }
+    kept.opened(session, capture, false, Some(remark.to_owned()))
 }
 
 /// Makes of a capture what takes reading it through: small picture, doubts, suggestion, BLAKE3.
@@ -155,7 +203,7 @@ pub(super) fn survey(
     if let Err(error) = overview.fill(&*capture.source, watch, || tell(Event::Read))
         && !watch.is_cancelled()
     {
-        tell(Event::Refused(error.to_string()));
+        tell(Event::Said(error.to_string()));
     }
     let doubts = overview.damage(session.channel).map(|d| d.doubts()).unwrap_or_default();
     tell(Event::Doubts(number, doubts.into_iter().map(|(_, text)| text).collect()));
@@ -174,21 +222,20 @@ pub(super) fn survey(
 /// Saves the session, with its capture's BLAKE3 where that is not known yet.
 pub(super) fn save(
     number: u64,
-    path: &Path,
+    path: PathBuf,
     mut session: Session,
     figures: Option<&Figures>,
     capture: &Capture,
-    watch: &Watch,
 ) -> Event {
     if session.capture.blake3.is_empty() {
-        match capture.blake3(watch) {
+        match capture.blake3(&Watch::new()) {
             Ok(blake3) => session.capture.blake3 = blake3,
-            Err(error) => return Event::Refused(error.to_string()),
+            Err(error) => return Event::NotSaved(error.to_string()),
         }
     }
-    match session::save(path, &session, figures) {
-        Ok(()) => Event::Saved(number, path.to_owned(), Box::new(session)),
-        Err(error) => Event::Refused(error.to_string()),
+    match session::save(&path, &session, figures) {
+        Ok(()) => Event::Saved(number, Box::new(Saved { path, session, with_figures: figures.is_some() })),
+        Err(error) => Event::NotSaved(error.to_string()),
     }
 }
 
@@ -203,11 +250,11 @@ impl Slot {
         if slot.is_none() {
             match session::start_recovery(folder) {
                 Ok(new) => *slot = Some(new),
-                Err(error) => return Some(Event::Refused(format!("nothing is kept for recovery: {error}"))),
+                Err(error) => return Some(Event::Said(format!("nothing is kept for recovery: {error}"))),
             }
         }
         let written = session::write_recovery(slot.as_ref()?, session, file);
-        written.err().map(|error| Event::Refused(format!("not kept for recovery: {error}")))
+        written.err().map(|error| Event::Said(format!("not kept for recovery: {error}")))
     }
 
     /// There is nothing unsaved any more.

@@ -50,6 +50,11 @@ impl<E: Send + 'static> Lane<E> {
     }
 }
 
+/// What `job` gives; `None` where it failed in a way that was not foreseen. For jobs somebody waits for by name.
+pub(super) fn guarded<T>(job: impl FnOnce() -> T) -> Option<T> {
+    catch_unwind(AssertUnwindSafe(job)).ok()
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

@@ -12,6 +12,7 @@ mod dialog;
 mod empty;
 mod figure;
 mod files;
+mod keep;
 mod lane;
 mod menu;
 mod notice;
@@ -26,6 +27,8 @@ mod setup_scale;
 mod status;
 mod strip;
 mod table;
+#[cfg(test)]
+mod tests;
 mod theme;
 mod view;
 mod widget;

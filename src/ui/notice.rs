@@ -38,6 +38,11 @@ impl Notices {
         }
     }
 
+    /// What was said is not so any more.
+    pub(super) fn forget(&mut self, text: &str) {
+        self.list.retain(|n| n.text != text);
+    }
+
     /// What belonged to another capture.
     pub(super) fn clear(&mut self) {
         self.list.clear();

@@ -40,7 +40,7 @@ fn segments(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
     let mut moved: Option<Span> = None;
     let fields = [("Start", span.start), ("End", span.end()), ("Length", span.samples)];
     for (label, samples) in fields {
-        let most = if label == "Start" { span.end() - 1 } else { frames };
+        let most = if label == "Start" { span.end().saturating_sub(1) } else { frames };
         let typed = row(ui, label, |ui, id| {
             let typed = number(ui, id, samples as f64 * unit, |f| {
                 let suffix = if view.in_samples { "" } else { " s" };

@@ -70,7 +70,9 @@ impl StripCache {
 
     /// Takes in columns read from the samples.
     pub(super) fn take(&mut self, key: StripKey, columns: Vec<Extent>) {
-        self.raw = Some((key, columns));
+        if self.asked == Some(key) {
+            self.raw = Some((key, columns));
+        }
     }
 }
 

@@ -9,8 +9,9 @@ use eframe::egui::{CentralPanel, Context, Frame, Margin, Panel, Ui, ViewportComm
 
 use super::action;
 use super::desk::Desk;
-use super::dialog::{After, Dialog};
-use super::files::{Event, Slot};
+use super::dialog::Dialogs;
+use super::files::{Event, Slot, UNFORESEEN};
+use super::keep::Saving;
 use super::lane::Lane;
 use super::menu::Menus;
 use super::notice::Notices;
@@ -29,12 +30,29 @@ pub(super) const AUTOSAVE_AFTER: Duration = Duration::from_secs(3);
 #[derive(Debug)]
 pub(super) struct Threads {
     pub(super) worker: Worker,
-    /// Opening and saving.
+    /// Opening.
+    pub(super) opening: Lane<Event>,
+    /// Saving.
     pub(super) files: Lane<Event>,
+    /// Reading the samples behind the columns of the strip.
+    pub(super) strip: Lane<Event>,
     /// Reading captures through.
     pub(super) survey: Lane<Event>,
     /// The desktop's dialogs.
     pub(super) dialogs: Lane<Event>,
+}
+
+/// What is being opened.
+#[derive(Debug)]
+pub(super) struct Opening {
+    /// Which opening it is: what comes of another one is dropped.
+    pub(super) number: u64,
+    /// The file's name.
+    pub(super) name: String,
+    /// Calls it off.
+    pub(super) watch: Watch,
+    /// The unsaved work that the user gave up for it.
+    pub(super) given_up: Option<Session>,
 }
 
 /// The screen: everything but the window it is shown in.
@@ -47,19 +65,21 @@ pub struct Workbench {
     pub(super) desk: Option<Desk>,
     pub(super) view: View,
     pub(super) notices: Notices,
-    pub(super) dialog: Option<Dialog>,
+    pub(super) dialogs: Dialogs,
     pub(super) recent: Vec<RecentFile>,
     pub(super) slot: Slot,
-    /// What is being opened, and how to call it off.
-    pub(super) opening: Option<(String, Watch)>,
+    /// What is being opened.
+    pub(super) opening: Option<Opening>,
     /// Openings so far.
+    pub(super) n_openings: u64,
+    /// Desks so far.
     pub(super) n_opened: u64,
+    /// The unsaved work that the user gave up for the opening that comes next.
+    pub(super) given_up: Option<Session>,
     /// A file to open as soon as there are threads.
     pub(super) waiting: Option<PathBuf>,
-    /// Whether a save is on its way.
-    pub(super) saving: bool,
-    /// What follows once the session is saved.
-    pub(super) after_save: Option<After>,
+    /// Saves that wait or are on their way.
+    pub(super) saving: Saving,
     /// When the document has to be kept for recovery.
     pub(super) autosave_due: Option<Instant>,
     /// Whether the window may close.
@@ -79,14 +99,15 @@ impl Workbench {
             desk: None,
             view: View::default(),
             notices: Notices::default(),
-            dialog: None,
+            dialogs: Dialogs::default(),
             recent: Vec::new(),
             slot: Slot::default(),
             opening: None,
+            n_openings: 0,
             n_opened: 0,
+            given_up: None,
             waiting: None,
-            saving: false,
-            after_save: None,
+            saving: Saving::default(),
             autosave_due: None,
             may_close: false,
             title: String::new(),
@@ -122,12 +143,12 @@ impl Workbench {
     /// Whether nothing is being opened, saved or computed.
     pub fn is_settled(&self) -> bool {
         let busy = self.desk.as_ref().is_some_and(|d| d.latest.is_busy() || !d.surveyed);
-        self.opening.is_none() && self.waiting.is_none() && !self.saving && !busy
+        self.opening.is_none() && self.waiting.is_none() && !self.saving.is_busy() && !busy
     }
 
-    /// Whether the window may close: nothing is unsaved, or the user has said so.
+    /// Whether the window may close: nothing is unsaved or being saved, or the user has said so.
     pub fn may_close(&self) -> bool {
-        self.may_close || !self.is_unsaved()
+        self.may_close || !(self.is_unsaved() || self.saving.is_busy())
     }
 
     /// A regular end: nothing is offered for recovery at the next start.
@@ -144,14 +165,15 @@ impl Workbench {
         for event in self.events.try_iter().collect::<Vec<_>>() {
             self.take_event(ctx, event);
         }
-        self.take_answers();
+        self.take_answers(ctx);
+        self.save_due();
         for file in ctx.input(|i| i.raw.dropped_files.clone()) {
             self.want_open(file.path());
         }
         self.autosave(ctx);
         if ctx.input(|i| i.viewport().close_requested()) && !self.may_close() {
             ctx.send_viewport_cmd(ViewportCommand::CancelClose);
-            self.dialog = Some(Dialog::Unsaved(After::Quit));
+            self.want_quit(ctx);
         }
         self.name_window(ctx);
     }
@@ -159,7 +181,7 @@ impl Workbench {
     /// One frame.
     pub fn ui(&mut self, ui: &mut Ui) {
         let mut intents = Intents::new();
-        if self.dialog.is_none() {
+        if self.dialogs.is_empty() {
             let typing = ui.ctx().text_edit_focused();
             intents.extend(action::pressed(ui.ctx(), typing).into_iter().map(Intent::Do));
         }
@@ -169,9 +191,9 @@ impl Workbench {
         }
         self.submit();
         self.read_columns();
-        if let Some(shown) = self.dialog.take() {
+        if let Some(shown) = self.dialogs.take_if(|_| true) {
             match dialog::show(ui.ctx(), shown) {
-                Ok(open) => self.dialog = Some(open),
+                Ok(open) => self.dialogs.interrupt(open),
                 Err(reply) => self.take_reply(ui.ctx(), reply),
             }
         }
@@ -187,7 +209,7 @@ impl Workbench {
         if !self.notices.is_empty() {
             Panel::top("notices").frame(paper(12, 4)).show(ui, |ui| self.notices.show(ui));
         }
-        if let Some((name, watch)) = &self.opening {
+        if let Some(Opening { name, watch, .. }) = &self.opening {
             Panel::top("opening").frame(paper(12, 4)).show(ui, |ui| status::opening(ui, name, watch));
         }
         let Some(desk) = &self.desk else {
@@ -217,12 +239,10 @@ impl Workbench {
             let ctx = ctx.clone();
             move || ctx.request_repaint()
         };
-        let lane = |name: &str| {
-            let unforeseen = || Event::Refused("file work failed in a way that was not foreseen: try again".to_owned());
-            Lane::start(name, self.sender.clone(), wake(), unforeseen)
-        };
+        let lane = |name: &str| Lane::start(name, self.sender.clone(), wake(), || Event::Said(UNFORESEEN.to_owned()));
         let started = Worker::start(wake()).and_then(|worker| {
-            Ok(Threads { worker, files: lane("files")?, survey: lane("survey")?, dialogs: lane("dialogs")? })
+            let (opening, files, strip) = (lane("opening")?, lane("files")?, lane("strip")?);
+            Ok(Threads { worker, opening, files, strip, survey: lane("survey")?, dialogs: lane("dialogs")? })
         });
         match started {
             Ok(threads) => {
@@ -241,7 +261,7 @@ impl Workbench {
         }
     }
 
-    fn take_answers(&mut self) {
+    fn take_answers(&mut self, ctx: &Context) {
         let Some(threads) = &self.threads else { return };
         let answers = threads.worker.answers();
         if let Some(desk) = &mut self.desk {
@@ -249,15 +269,17 @@ impl Workbench {
                 desk.latest.take(answer);
             }
             desk.latest.progress = threads.worker.progress();
+            if desk.latest.is_busy() {
+                // Also while an edge is held still in a drag: what waits is served by asking for answers.
+                ctx.request_repaint_after(Duration::from_millis(100));
+            }
         }
     }
 
     /// Asks for what the document asks for, where that has changed.
     pub(super) fn submit(&mut self) {
         let (Some(desk), Some(threads)) = (&mut self.desk, &self.threads) else { return };
-        let mut request = desk.request();
-        // What the file hashes to does not change a figure.
-        request.capture.blake3.clear();
+        let request = desk.request();
         if desk.latest.asked.as_ref().is_some_and(|(_, asked)| *asked == request) {
             return;
         }

@@ -1,13 +1,12 @@
 //! The one thread that computes: curves first, then the Reading; the newest request wins.
 
 use std::panic::{AssertUnwindSafe, catch_unwind};
-use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::mpsc::{Receiver, Sender, channel};
-use std::sync::{Arc, Mutex, PoisonError};
+use std::sync::{Arc, Mutex, MutexGuard, PoisonError};
 use std::time::{Duration, Instant};
 
 use crate::reading::{Analysis, Reading, ReadingError, Request, Segment, analyse, analyse_curves, with_windows};
-use crate::signal::{Source, Watch};
+use crate::signal::{SignalError, Source, Watch};
 
 /// A transform that has run for so long is called off by a newer request; a shorter one may finish, so that curves
 /// keep following while an edge is dragged.
@@ -35,21 +34,46 @@ struct Job {
     reading_watch: Watch,
 }
 
-/// What runs now.
+/// What runs now, as the thread says.
 #[derive(Debug)]
 struct Running {
+    generation: u64,
     since: Instant,
     curves_watch: Watch,
     reading_watch: Watch,
 }
 
+/// What the thread and those who ask it both look at.
+#[derive(Debug, Default)]
+struct State {
+    running: Option<Running>,
+    /// The newest generation asked for.
+    newest: u64,
+    /// Nothing up to this generation is wanted any more.
+    called_off: u64,
+}
+
+impl State {
+    /// Calls off what runs, where something newer waits: its Reading at once, its curves when patience is over.
+    fn hurry(&self) {
+        let Some(running) = self.running.as_ref().filter(|r| r.generation < self.newest) else { return };
+        running.reading_watch.cancel();
+        if running.since.elapsed() > PATIENCE {
+            running.curves_watch.cancel();
+        }
+    }
+}
+
 /// The computing thread.
 #[derive(Debug)]
 pub(super) struct Worker {
-    newest: Arc<AtomicU64>,
     jobs: Sender<Job>,
     answers: Receiver<Answer>,
-    running: Mutex<Option<Running>>,
+    state: Arc<Mutex<State>>,
+}
+
+fn locked(state: &Mutex<State>) -> MutexGuard<'_, State> {
+    state.lock().unwrap_or_else(PoisonError::into_inner)
 }
 
 impl Worker {
@@ -60,64 +84,62 @@ impl Worker {
     pub(super) fn start(wake: impl Fn() + Send + 'static) -> std::io::Result<Self> {
         let (jobs, inbox) = channel::<Job>();
         let (outbox, answers) = channel();
-        let newest = Arc::new(AtomicU64::new(0));
+        let state = Arc::new(Mutex::new(State::default()));
+        let shared = Arc::clone(&state);
         std::thread::Builder::new().name("computing".to_owned()).spawn(move || {
+            let say = |answer| {
+                let heard = outbox.send(answer).is_ok();
+                wake();
+                heard
+            };
             while let Ok(first) = inbox.recv() {
-                let job = inbox.try_iter().last().unwrap_or(first);
-                let say = |answer| {
-                    let heard = outbox.send(answer).is_ok();
-                    wake();
-                    heard
-                };
-                let generation = job.generation;
-                if catch_unwind(AssertUnwindSafe(|| work(job, &say))).is_err() {
-                    let text = "the computation failed in a way that was not foreseen: please report the capture \
-                                and the segment; the document is as it was";
-                    say(Answer::Failed(generation, text.to_owned()));
+                if let Some(job) = take(first, &inbox, &shared) {
+                    run(job, &say);
+                    locked(&shared).running = None;
                 }
             }
         })?;
-        Ok(Self { newest, jobs, answers, running: Mutex::new(None) })
+        Ok(Self { jobs, answers, state })
     }
 
     /// Asks for a request; an older one is called off. Gives its generation.
     pub(super) fn submit(&self, source: Arc<dyn Source>, request: Request, curves: Option<Segment>) -> u64 {
-        let generation = self.newest.fetch_add(1, Ordering::Relaxed) + 1;
+        let mut state = locked(&self.state);
+        state.newest += 1;
+        let generation = state.newest;
         let (curves_watch, reading_watch) = (Watch::new(), Watch::new());
-        let running =
-            Running { since: Instant::now(), curves_watch: curves_watch.clone(), reading_watch: reading_watch.clone() };
-        let mut now = self.running.lock().unwrap_or_else(PoisonError::into_inner);
-        if let Some(old) = now.replace(running) {
-            old.reading_watch.cancel();
-            if old.since.elapsed() > PATIENCE {
-                old.curves_watch.cancel();
-            } else if let Some(now) = now.as_mut() {
-                // Patience is counted from the first of a row of requests.
-                now.since = old.since.max(Instant::now().checked_sub(PATIENCE / 2).unwrap_or(old.since));
-            }
-        }
-        drop(now);
         // Where the thread is gone there is nobody to compute; the screen shows the old figures as old.
         let _ = self.jobs.send(Job { generation, source, request, curves, curves_watch, reading_watch });
+        state.hurry();
         generation
     }
 
-    /// Calls off whatever runs.
+    /// Calls off whatever runs or waits.
     pub(super) fn cancel(&self) {
-        if let Some(running) = self.running.lock().unwrap_or_else(PoisonError::into_inner).as_ref() {
+        let mut state = locked(&self.state);
+        state.called_off = state.newest;
+        if let Some(running) = &state.running {
             running.curves_watch.cancel();
             running.reading_watch.cancel();
         }
     }
 
-    /// How much of the newest request is done, 0 to 1.
-    pub(super) fn progress(&self) -> f64 {
-        let running = self.running.lock().unwrap_or_else(PoisonError::into_inner);
-        running.as_ref().map_or(0.0, |r| r.curves_watch.progress().max(r.reading_watch.progress()))
+    /// The generation of the newest request.
+    pub(super) fn newest(&self) -> u64 {
+        locked(&self.state).newest
     }
 
-    /// What came since the last time.
+    /// How much of the newest request is done, 0 to 1: half of it is the curves, half the Reading.
+    pub(super) fn progress(&self) -> f64 {
+        let state = locked(&self.state);
+        let running = state.running.as_ref().filter(|r| r.generation == state.newest);
+        running.map_or(0.0, |r| 0.5 * (r.curves_watch.progress() + r.reading_watch.progress()))
+    }
+
+    /// What came since the last time. Has to be called now and then while something is computed: what runs is called
+    /// off here once a newer request has waited for long.
     pub(super) fn answers(&self) -> Vec<Answer> {
+        locked(&self.state).hurry();
         self.answers.try_iter().collect()
     }
 }
@@ -125,6 +147,27 @@ impl Worker {
 impl Drop for Worker {
     fn drop(&mut self) {
         self.cancel();
+    }
+}
+
+/// The newest of the jobs that wait, if it is still wanted; from now on it runs.
+fn take(first: Job, inbox: &Receiver<Job>, state: &Mutex<State>) -> Option<Job> {
+    let mut state = locked(state);
+    let job = inbox.try_iter().last().unwrap_or(first);
+    if job.generation <= state.called_off {
+        return None;
+    }
+    let (curves_watch, reading_watch) = (job.curves_watch.clone(), job.reading_watch.clone());
+    state.running = Some(Running { generation: job.generation, since: Instant::now(), curves_watch, reading_watch });
+    Some(job)
+}
+
+fn run(job: Job, say: &dyn Fn(Answer) -> bool) {
+    let generation = job.generation;
+    if catch_unwind(AssertUnwindSafe(|| work(job, say))).is_err() {
+        let text = "the computation failed in a way that was not foreseen: please report the capture and the \
+                    segment; the document is as it was";
+        say(Answer::Failed(generation, text.to_owned()));
     }
 }
 
@@ -139,6 +182,8 @@ fn work(job: Job, say: &dyn Fn(Answer) -> bool) {
         Ok(curves) => curves,
         Err(error) => return refuse(generation, &error, say),
     };
+    // Curves that were there before were done before anybody watched.
+    curves_watch.report(1.0);
     if !say(Answer::Curves(generation, Box::new(request.clone()), curves.clone())) {
         return;
     }
@@ -149,7 +194,8 @@ fn work(job: Job, say: &dyn Fn(Answer) -> bool) {
 }
 
 fn refuse(generation: u64, error: &ReadingError, say: &dyn Fn(Answer) -> bool) {
-    if !matches!(error, ReadingError::Cancelled(_)) {
+    // Called off while samples were read it is an error of theirs.
+    if !matches!(error, ReadingError::Cancelled(_) | ReadingError::Signal(SignalError::Cancelled(_))) {
         say(Answer::Failed(generation, error.to_string()));
     }
 }
@@ -157,6 +203,8 @@ fn refuse(generation: u64, error: &ReadingError, say: &dyn Fn(Answer) -> bool) {
 /// The newest figures there are, and whether they belong to what is asked now.
 #[derive(Debug, Default)]
 pub(super) struct Latest {
+    /// Answers to this generation or older ones are about another capture.
+    since: u64,
     /// The request last submitted and its generation.
     pub(super) asked: Option<(u64, Request)>,
     /// The newest curves, with their request.
@@ -172,6 +220,11 @@ pub(super) struct Latest {
 }
 
 impl Latest {
+    /// No figures yet; those of generation `newest` and before were asked for about another capture.
+    pub(super) fn after(newest: u64) -> Self {
+        Self { since: newest, ..Self::default() }
+    }
+
     /// The panes of the newest curves.
     pub(super) fn spectra(&self) -> Option<&Arc<crate::spectrum::Spectra>> {
         self.curves.as_ref().map(|c| &c.2.spectra)
@@ -181,19 +234,19 @@ impl Latest {
     pub(super) fn take(&mut self, answer: Answer) {
         let newest = self.asked.as_ref().map_or(0, |a| a.0);
         match answer {
-            Answer::Curves(generation, request, segment) => {
+            Answer::Curves(generation, request, segment) if generation > self.since => {
                 if self.curves.as_ref().is_none_or(|c| c.0 < generation) {
                     self.curves = Some((generation, *request, segment));
                 }
             }
-            Answer::Reading(generation, analysis) if generation == newest => {
+            Answer::Reading(generation, analysis) if generation == newest && generation > self.since => {
                 let Analysis { request, segment, reading } = *analysis;
                 self.curves = Some((generation, request.clone(), segment));
                 self.reading = Some((generation, request, reading));
                 self.failure = None;
             }
             Answer::Failed(generation, text) if generation == newest => self.failure = Some(text),
-            Answer::Reading(..) | Answer::Failed(..) => {}
+            Answer::Curves(..) | Answer::Reading(..) | Answer::Failed(..) => {}
         }
     }
 
@@ -235,6 +288,7 @@ mod tests {
     use super::*;
     use crate::session::{CaptureRef, Session};
     use crate::signal::Stored;
+    use std::sync::atomic::{AtomicUsize, Ordering};
 
     fn request(samples: u64) -> Request {
         let capture = CaptureRef {
@@ -256,6 +310,88 @@ mod tests {
         latest.take(Answer::Failed(2, "new".to_owned()));
         assert_eq!(latest.failure.as_deref(), Some("new"));
         assert!(!latest.is_busy() && !latest.is_current());
+    }
+
+    #[test]
+    fn an_answer_about_another_capture_is_not_taken() {
+        let source = Stored::new(1000.0, 1, (0..64).map(|i| f64::from(i % 7)).collect());
+        let curves = analyse_curves(&source, &request(64), &Watch::new()).unwrap();
+        let mut latest = Latest::after(4);
+        latest.take(Answer::Curves(4, Box::new(request(64)), curves.clone()));
+        assert!(latest.curves.is_none() && latest.reusable(&request(64)).is_none());
+        latest.take(Answer::Curves(5, Box::new(request(64)), curves));
+        assert!(latest.reusable(&request(64)).is_some());
+    }
+
+    /// A source that can be kept waiting, and counts how often it is read.
+    #[derive(Debug, Default)]
+    struct Slow {
+        reads: AtomicUsize,
+    }
+
+    impl Source for Slow {
+        fn sample_rate_hz(&self) -> f64 {
+            1000.0
+        }
+        fn n_channels(&self) -> usize {
+            1
+        }
+        fn n_frames(&self) -> u64 {
+            1 << 24
+        }
+        fn read_frames(&self, _: u64, out: &mut [f64]) -> Result<(), crate::signal::SignalError> {
+            self.reads.fetch_add(1, Ordering::Relaxed);
+            std::thread::sleep(Duration::from_millis(50));
+            out.fill(0.5);
+            Ok(())
+        }
+    }
+
+    fn wait_until(what: &str, done: impl Fn() -> bool) {
+        for _ in 0..1000 {
+            if done() {
+                return;
+            }
+            std::thread::sleep(Duration::from_millis(5));
+        }
+        panic!("after five seconds: {what}");
+    }
+
+    #[test]
+    fn a_drag_calls_off_what_has_run_for_long_and_cancel_stops_what_runs() {
+        let worker = Worker::start(|| {}).unwrap();
+        let slow = Arc::new(Slow::default());
+        let first = worker.submit(Arc::<Slow>::clone(&slow), request(1 << 24), None);
+        wait_until("it does not start", || slow.reads.load(Ordering::Relaxed) > 0);
+        // A request every 16 ms, as in a drag.
+        let watch = locked(&worker.state).running.as_ref().map(|r| r.curves_watch.clone()).unwrap();
+        for _ in 0..40 {
+            worker.submit(Arc::<Slow>::clone(&slow), request(1 << 24), None);
+            std::thread::sleep(Duration::from_millis(16));
+        }
+        assert!(watch.is_cancelled(), "patience is never over");
+        wait_until("the newest does not run", || {
+            locked(&worker.state).running.as_ref().is_some_and(|r| r.generation > first)
+        });
+        worker.submit(Arc::<Slow>::clone(&slow), request(1 << 24), None);
+        worker.cancel();
+        wait_until("it goes on", || locked(&worker.state).running.is_none());
+        let reads = slow.reads.load(Ordering::Relaxed);
+        std::thread::sleep(Duration::from_millis(200));
+        assert_eq!(slow.reads.load(Ordering::Relaxed), reads, "what waited was started");
+        // What is asked for afterwards is computed.
+        worker.submit(Arc::new(Stored::new(1000.0, 1, vec![0.0; 8])), request(4096), None);
+        assert!(wait_for_failure(&worker).contains("4096"));
+    }
+
+    #[test]
+    fn a_request_that_waits_alone_is_served_when_patience_is_over() {
+        let worker = Worker::start(|| {}).unwrap();
+        let slow = Arc::new(Slow::default());
+        worker.submit(Arc::<Slow>::clone(&slow), request(1 << 24), None);
+        wait_until("it does not start", || slow.reads.load(Ordering::Relaxed) > 0);
+        worker.submit(Arc::new(Stored::new(1000.0, 1, vec![0.0; 8])), request(4096), None);
+        assert!(wait_for_failure(&worker).contains("4096"));
     }
 
     #[test]

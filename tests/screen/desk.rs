@@ -125,6 +125,18 @@ impl Screen<'_> {
         panic!("after ten seconds: {what}");
     }
 
+    /// Lets frames pass until a text is shown, or fails after ten seconds.
+    pub(crate) fn wait_for(&mut self, text: &str) {
+        for _ in 0..1000 {
+            self.harness.step();
+            if self.shows(text) {
+                return;
+            }
+            std::thread::sleep(Duration::from_millis(10));
+        }
+        panic!("after ten seconds not shown: {text}");
+    }
+
     /// Lets frames pass until nothing is being opened, saved or computed.
     pub(crate) fn settle(&mut self) {
         self.harness.step();

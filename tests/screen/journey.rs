@@ -34,7 +34,7 @@ fn a_file_that_is_none_is_one_sentence_that_can_be_dismissed() {
     std::fs::write(desk.path("bad.wav"), b"not a recording").unwrap();
     let mut screen = desk.bare();
     screen.harness.state_mut().open(&desk.path("bad.wav"));
-    screen.wait("no notice", |_| true);
+    screen.wait_for("Dismiss:");
     screen.settle();
     assert!(screen.harness.state().session().is_none());
     let dismiss = screen.harness.get_by_label_contains("Dismiss:");

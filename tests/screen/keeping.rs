@@ -99,21 +99,98 @@ fn work_lost_in_a_crash_is_offered_again() {
     let start = screen.session().segments[0].span.start;
     let kept = || std::fs::read_dir(desk.path("recovery")).map_or(0, Iterator::count);
     screen.wait("nothing is kept", |_| kept() >= 2);
-    std::thread::sleep(std::time::Duration::from_millis(200));
+    screen.settle();
     // The program is gone without a regular end.
     drop(screen);
     let mut screen = desk.bare();
-    screen.wait("nothing is offered", |_| true);
-    for _ in 0..200 {
-        screen.harness.step();
-        if screen.shows("An earlier run ended without saving") {
-            break;
-        }
-        std::thread::sleep(std::time::Duration::from_millis(10));
-    }
+    screen.wait_for("An earlier run ended without saving");
     screen.harness.get_by_label_contains("Recover pump.wav").click();
     screen.harness.step();
     screen.settle();
     assert_eq!(screen.session().segments[0].span.start, start);
     assert!(screen.harness.state().is_unsaved());
+}
+
+#[test]
+fn work_left_in_a_crash_is_taken_up_with_a_moved_capture_and_saved_where_the_user_kept_it() {
+    let desk = Desk::new();
+    let file = desk.path("pump.session.ron");
+    let mut screen = desk.open("pump.wav");
+    desk.picker.paths.lock().unwrap().push_back(file.clone());
+    screen.key(Modifiers::COMMAND, Key::S);
+    screen.wait("it is not saved", |_| file.is_file());
+    screen.settle();
+    screen.type_number("Start", "5");
+    let start = screen.session().segments[0].span.start;
+    let left = || -> Vec<_> {
+        let files = std::fs::read_dir(desk.path("recovery")).map(|d| d.flatten().map(|e| e.path()).collect());
+        let files: Vec<_> = files.unwrap_or_default();
+        files.into_iter().filter(|p| p.to_string_lossy().ends_with(".recovery.ron")).collect()
+    };
+    screen.wait("nothing is kept", |_| left().len() == 1);
+    let old = left();
+    drop(screen);
+    std::fs::create_dir(desk.path("elsewhere")).unwrap();
+    std::fs::rename(desk.path("pump.wav"), desk.path("elsewhere/pump.wav")).unwrap();
+
+    let mut screen = desk.bare();
+    screen.wait_for("An earlier run ended without saving");
+    screen.harness.get_by_label_contains("Recover pump.wav").click();
+    screen.harness.step();
+    screen.wait_for("Path of the capture");
+    assert_eq!(left(), old, "it is there until it is safe elsewhere");
+    screen.harness.get_by_label("Path of the capture").click();
+    screen.harness.step();
+    let there = desk.path("elsewhere/pump.wav");
+    screen.harness.get_by_label("Path of the capture").type_text(&there.to_string_lossy());
+    screen.harness.step();
+    screen.click("Use this path");
+    screen.settle();
+    assert_eq!(screen.session().segments[0].span.start, start);
+    screen.wait("the old recovery file is still there", |_| !old[0].exists());
+    assert_eq!(left().len(), 1, "it is kept by this run");
+    screen.key(Modifiers::COMMAND, Key::S);
+    screen.wait("it is not saved", |b| !b.is_unsaved());
+    assert_eq!(panewise::session::load(&file).unwrap().session.segments[0].span.start, start);
+    screen.wait("what is saved is still kept for recovery", |_| left().is_empty());
+}
+
+#[test]
+fn a_session_saved_right_after_a_change_takes_its_figures_along() {
+    let desk = Desk::new();
+    let file = desk.path("pump.session.ron");
+    let mut screen = desk.open("pump.wav");
+    desk.picker.paths.lock().unwrap().push_back(file.clone());
+    screen.key(Modifiers::COMMAND, Key::S);
+    screen.wait("it is not saved", |_| file.is_file());
+    screen.settle();
+    screen.harness.key_press(Key::Delete);
+    screen.harness.key_press_modifiers(Modifiers::COMMAND, Key::S);
+    screen.wait("it is not changed", |b| b.session().is_some_and(|s| s.panes.len() == 5));
+    screen.wait("it is not saved", |b| !b.is_unsaved());
+    let figures = panewise::session::load(&file).unwrap().figures.expect("figures");
+    assert_eq!(figures.windows.len(), 5);
+}
+
+#[test]
+fn where_there_are_no_desktop_dialogs_a_session_is_saved_by_path() {
+    let desk = Desk::new();
+    let mut screen = desk.open("pump.wav");
+    screen.key(Modifiers::COMMAND, Key::S);
+    screen.wait_for("Save by path");
+    screen.click("Save");
+    screen.settle();
+    assert!(desk.path("pump.session.ron").is_file());
+    // Another file is not replaced unasked.
+    std::fs::write(desk.path("other.session.ron"), "precious").unwrap();
+    screen.menu("Capture", "Save session by path");
+    screen.harness.get_by_label("Path").click();
+    screen.key(Modifiers::COMMAND, Key::A);
+    screen.harness.get_by_label("Path").type_text(&desk.path("other").to_string_lossy());
+    screen.harness.step();
+    screen.click("Save");
+    screen.wait_for("There is a session of that name");
+    assert_eq!(std::fs::read_to_string(desk.path("other.session.ron")).unwrap(), "precious");
+    screen.click("Replace");
+    screen.wait("it is not saved", |_| panewise::session::load(&desk.path("other.session.ron")).is_ok());
 }

@@ -121,3 +121,32 @@ fn a_session_without_figures_has_nothing_to_recheck() {
     let said = shop.run(&["recheck", "pump.session.ron"]).refused();
     assert!(said.contains("without figures"), "{said}");
 }
+
+#[test]
+fn a_session_that_does_not_state_its_captures_hash_is_never_said_to_be_the_same() {
+    let shop = saved();
+    let path = shop.path("pump.session.ron");
+    let text = fs::read_to_string(&path).unwrap();
+    let at = text.find("blake3: \"").unwrap() + "blake3: \"".len();
+    fs::write(&path, format!("{}{}", &text[..at], &text[at + 64..])).unwrap();
+    let said = shop.run(&["recheck", "pump.session.ron"]).refused();
+    assert!(said.contains("BLAKE3"), "{said}");
+}
+
+#[test]
+fn a_session_that_tells_of_samples_its_capture_does_not_have_is_refused() {
+    let shop = saved();
+    let path = shop.path("pump.session.ron");
+    let text = fs::read_to_string(&path).unwrap();
+    let emptied = |mut text: String| {
+        for name in ["frames: ", "start: ", "samples: "] {
+            let at = text.find(name).unwrap() + name.len();
+            let end = at + text[at..].find(',').unwrap();
+            text.replace_range(at..end, "0");
+        }
+        text
+    };
+    fs::write(&path, emptied(text)).unwrap();
+    let said = shop.run(&["read", "pump.session.ron"]).refused();
+    assert!(said.contains("takes samples 0 to 0"), "{said}");
+}
