@@ -130,6 +130,9 @@ impl Screen<'_> {
         for _ in 0..1000 {
             self.harness.step();
             if self.shows(text) {
+                // What has just come is laid out once more before it can be clicked.
+                self.harness.step();
+                self.harness.step();
                 return;
             }
             std::thread::sleep(Duration::from_millis(10));
