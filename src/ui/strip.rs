@@ -68,6 +68,18 @@ impl StripCache {
         Some(wanted)
     }
 
+    /// Wants columns of the first channel.
+    #[cfg(test)]
+    pub(super) fn want(&mut self, range: (f64, f64)) {
+        self.wanted = Some((StripKey { channel: 0, range, n: 1 }, vec![range.0, range.1]));
+    }
+
+    /// Whether columns of this range were read.
+    #[cfg(test)]
+    pub(super) fn has(&self, range: (f64, f64)) -> bool {
+        self.raw.as_ref().is_some_and(|raw| raw.0.range == range)
+    }
+
     /// Takes in columns read from the samples.
     pub(super) fn take(&mut self, key: StripKey, columns: Vec<Extent>) {
         if self.asked == Some(key) {

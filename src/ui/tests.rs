@@ -2,6 +2,7 @@
 
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
+use std::sync::atomic::{AtomicUsize, Ordering};
 use std::time::Duration;
 
 use eframe::egui::Context;
@@ -13,7 +14,7 @@ use super::services::{Ask, Picker, Services};
 use super::workbench::{Opening, Workbench};
 use crate::capture::{Capture, Stamp};
 use crate::session::{Command, Loaded, Session};
-use crate::signal::{Span, Stored, Watch};
+use crate::signal::{SignalError, Source, Span, Stored, Watch};
 
 #[derive(Debug)]
 struct Nobody;
@@ -208,6 +209,55 @@ fn where_the_desktop_asks_nobody_the_path_is_typed() {
     // Somebody who thought about it and said no is not asked again.
     take(&mut bench, picked(ask(), 1, None, false, 2000));
     assert!(shown(&mut bench).is_none());
+}
+
+/// Counts how often it is read, and takes its time.
+#[derive(Debug, Default)]
+struct Slow {
+    reads: AtomicUsize,
+}
+
+impl Source for Slow {
+    fn sample_rate_hz(&self) -> f64 {
+        100.0
+    }
+    fn n_channels(&self) -> usize {
+        1
+    }
+    fn n_frames(&self) -> u64 {
+        400
+    }
+    fn read_frames(&self, _: u64, out: &mut [f64]) -> Result<(), SignalError> {
+        self.reads.fetch_add(1, Ordering::Relaxed);
+        std::thread::sleep(Duration::from_millis(40));
+        out.fill(0.5);
+        Ok(())
+    }
+}
+
+#[test]
+fn of_the_columns_a_strip_wants_while_it_moves_only_the_newest_are_read() {
+    let mut bench = bench();
+    let ctx = Context::default();
+    bench.logic(&ctx);
+    let slow = Arc::new(Slow::default());
+    let capture = Capture { source: Arc::<Slow>::clone(&slow), ..capture("pump.wav") };
+    bench.desk = Some(Desk::fresh(1, Arc::new(capture)));
+    for i in 0..30 {
+        bench.view.strip_cache.want((f64::from(i), 100.0));
+        bench.read_columns();
+    }
+    let newest = (29.0, 100.0);
+    for _ in 0..500 {
+        bench.logic(&ctx);
+        if bench.view.strip_cache.has(newest) {
+            break;
+        }
+        std::thread::sleep(Duration::from_millis(10));
+    }
+    assert!(bench.view.strip_cache.has(newest), "after five seconds there are no columns");
+    let reads = slow.reads.load(Ordering::Relaxed);
+    assert!(reads <= 3, "{reads} of 30 were read");
 }
 
 #[test]
