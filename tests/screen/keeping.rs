@@ -1,5 +1,7 @@
 //! Save, reopen, close, recover.
 
+use std::path::PathBuf;
+
 use eframe::egui::{Key, Modifiers};
 use egui_kittest::kittest::Queryable as _;
 use panewise::ui::Ask;
@@ -91,17 +93,33 @@ fn unsaved_changes_are_asked_about_before_another_capture() {
     assert!(screen.session().capture.path.ends_with("other.wav"));
 }
 
+/// The recovery files there are.
+fn left(desk: &Desk) -> Vec<PathBuf> {
+    let entries = std::fs::read_dir(desk.path("recovery")).into_iter().flatten().flatten().map(|e| e.path());
+    entries.filter(|p| p.to_string_lossy().ends_with(".recovery.ron")).collect()
+}
+
+/// A thread of the program that is gone may hold its slot for a moment yet.
+fn wait_until_given_up(desk: &Desk) {
+    for _ in 0..1000 {
+        if !panewise::session::find_recoveries(&desk.path("recovery")).is_empty() {
+            return;
+        }
+        std::thread::sleep(std::time::Duration::from_millis(10));
+    }
+    panic!("after ten seconds the slot is not given up");
+}
+
 #[test]
 fn work_lost_in_a_crash_is_offered_again() {
     let desk = Desk::new();
     let mut screen = desk.open("pump.wav");
     screen.type_number("Start", "5");
     let start = screen.session().segments[0].span.start;
-    let kept = || std::fs::read_dir(desk.path("recovery")).map_or(0, Iterator::count);
-    screen.wait("nothing is kept", |_| kept() >= 2);
-    screen.settle();
+    screen.wait("nothing is kept", |_| left(&desk).len() == 1);
     // The program is gone without a regular end.
     drop(screen);
+    wait_until_given_up(&desk);
     let mut screen = desk.bare();
     screen.wait_for("An earlier run ended without saving");
     screen.harness.get_by_label_contains("Recover pump.wav").click();
@@ -122,14 +140,11 @@ fn work_left_in_a_crash_is_taken_up_with_a_moved_capture_and_saved_where_the_use
     screen.settle();
     screen.type_number("Start", "5");
     let start = screen.session().segments[0].span.start;
-    let left = || -> Vec<_> {
-        let files = std::fs::read_dir(desk.path("recovery")).map(|d| d.flatten().map(|e| e.path()).collect());
-        let files: Vec<_> = files.unwrap_or_default();
-        files.into_iter().filter(|p| p.to_string_lossy().ends_with(".recovery.ron")).collect()
-    };
+    let left = || left(&desk);
     screen.wait("nothing is kept", |_| left().len() == 1);
     let old = left();
     drop(screen);
+    wait_until_given_up(&desk);
     std::fs::create_dir(desk.path("elsewhere")).unwrap();
     std::fs::rename(desk.path("pump.wav"), desk.path("elsewhere/pump.wav")).unwrap();
 
