@@ -182,6 +182,17 @@ fn buttons(ui: &mut Ui, said: &mut Option<Said>, list: &[(&str, Said, bool)]) {
     });
 }
 
+/// The text field of a dialog, which takes the keys when nothing else has them; whether Enter was pressed in it.
+fn entered(ui: &mut Ui, name: &str, text: &mut String) -> bool {
+    let response = ui.add(TextEdit::singleline(text).desired_width(f32::INFINITY)).accessible_name(name);
+    // Enter takes the focus away, and a field that has it again has not lost it: this is asked first.
+    let enter = response.lost_focus() && ui.input(|i| i.key_pressed(egui::Key::Enter));
+    if !enter && ui.memory(|m| m.focused().is_none()) {
+        response.request_focus();
+    }
+    enter
+}
+
 fn keys(ui: &mut Ui, said: &mut Option<Said>) {
     head(ui, "Keys");
     ScrollArea::vertical().max_height(420.0).show(ui, |ui| {
@@ -226,12 +237,7 @@ fn about(ui: &mut Ui, said: &mut Option<Said>) {
 fn path(ui: &mut Ui, (title, label, go): (&str, &str, &str), text: &mut String, said: &mut Option<Said>) {
     head(ui, title);
     ui.label(label);
-    let response = ui.add(TextEdit::singleline(text).desired_width(f32::INFINITY)).accessible_name("Path");
-    if ui.memory(|m| m.focused().is_none()) {
-        response.request_focus();
-    }
-    let enter = response.lost_focus() && ui.input(|i| i.key_pressed(egui::Key::Enter));
-    if enter && !text.trim().is_empty() {
+    if entered(ui, "Path", text) && !text.trim().is_empty() {
         *said = Some(Said::Yes);
     }
     buttons(ui, said, &[(go, Said::Yes, !text.trim().is_empty()), ("Cancel", Said::No, true)]);
@@ -253,8 +259,11 @@ fn missing(ui: &mut Ui, loaded: &Loaded, text: &mut String, said: &mut Option<Sa
     head(ui, "The session's capture is not there");
     ui.label(format!("It was {}.", loaded.session.capture.path));
     ui.label("Say where it is now; it is checked against what the session knows of it.");
-    ui.add(TextEdit::singleline(text).desired_width(f32::INFINITY)).accessible_name("Path of the capture");
+    let enter = entered(ui, "Path of the capture", text);
     let typed = !text.trim().is_empty();
+    if enter && typed {
+        *said = Some(Said::Yes);
+    }
     buttons(
         ui,
         said,
@@ -311,11 +320,7 @@ fn ago(seconds: u64) -> String {
 
 fn tone_note(ui: &mut Ui, frequency_hz: f64, text: &mut String, said: &mut Option<Said>) {
     head(ui, &format!("Note on the tone at {} Hz", figure::fixed(frequency_hz, 2)));
-    let response = ui.add(TextEdit::singleline(text).desired_width(f32::INFINITY)).accessible_name("Note on the tone");
-    if ui.memory(|m| m.focused().is_none()) {
-        response.request_focus();
-    }
-    if response.lost_focus() && ui.input(|i| i.key_pressed(egui::Key::Enter)) {
+    if entered(ui, "Note on the tone", text) {
         *said = Some(Said::Yes);
     }
     buttons(ui, said, &[("Keep", Said::Yes, true), ("Cancel", Said::No, true)]);

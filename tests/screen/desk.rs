@@ -184,6 +184,13 @@ impl Screen<'_> {
         self.harness.step();
     }
 
+    /// Types into whatever has the keys.
+    pub(crate) fn text(&mut self, text: &str) {
+        self.harness.event(Event::Text(text.to_owned()));
+        self.harness.step();
+        self.harness.step();
+    }
+
     /// Types a number into the field of that name.
     pub(crate) fn type_number(&mut self, label: &str, text: &str) {
         self.harness.get_by_role_and_label(egui::Role::SpinButton, label).click();

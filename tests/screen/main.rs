@@ -7,3 +7,4 @@ mod desk;
 mod journey;
 mod keeping;
 mod setup;
+mod typing;
