@@ -195,7 +195,7 @@ fn where_there_are_no_desktop_dialogs_a_session_is_saved_by_path() {
     screen.wait_for("Save by path");
     screen.click("Save");
     screen.settle();
-    assert!(desk.path("pump.session.ron").is_file());
+    screen.wait("it is not saved", |_| desk.path("pump.session.ron").is_file());
     // Another file is not replaced unasked.
     std::fs::write(desk.path("other.session.ron"), "precious").unwrap();
     screen.menu("Capture", "Save session by path");
