@@ -67,6 +67,7 @@ impl Screen {
             picker: Arc::new(DesktopPicker),
             recent: Some(folder.join("recent.ron")),
             recovery: None,
+            preferences: None,
             demonstration: None,
         };
         let mut screen = Self { ctx, bench: Workbench::new(services), n_frames: 0 };

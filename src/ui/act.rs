@@ -3,9 +3,11 @@
 use eframe::egui::Context;
 
 use super::action::Action;
+use super::chooser::Choosing;
 use super::desk::Desk;
 use super::dialog::Dialog;
 use super::plot::Axis;
+use super::preferences::SCALES;
 use super::services::Ask;
 use super::table;
 use super::view::{Intents, View, frequency_range, held_range};
@@ -13,8 +15,8 @@ use super::workbench::Workbench;
 use crate::session::{Command, FrequencyAxis, HandTone, MAX_PANES, PaneId, ViewAxes};
 use crate::signal::Span;
 
-/// Steps of the screen's scale.
-const SCALE: (f32, f32, f32) = (1.0, 2.0, 0.1);
+/// A step of the screen's scale.
+const SCALE_STEP: f32 = 0.1;
 /// A tone is shown with so many lines to either side.
 const LINES_AROUND: f64 = 30.0;
 
@@ -38,9 +40,9 @@ impl Workbench {
             Action::Keys => self.dialogs.put(Dialog::Keys),
             Action::About => self.dialogs.put(Dialog::About),
             Action::ToggleSetup => self.view.setup_open = !self.view.setup_open,
-            Action::Larger => ctx.set_zoom_factor((ctx.zoom_factor() + SCALE.2).clamp(SCALE.0, SCALE.1)),
-            Action::Smaller => ctx.set_zoom_factor((ctx.zoom_factor() - SCALE.2).clamp(SCALE.0, SCALE.1)),
-            Action::NormalSize => ctx.set_zoom_factor(SCALE.0),
+            Action::Larger => scale(ctx, ctx.zoom_factor() + SCALE_STEP),
+            Action::Smaller => scale(ctx, ctx.zoom_factor() - SCALE_STEP),
+            Action::NormalSize => scale(ctx, SCALES.0),
             Action::CopyTable => self.copy_table(ctx),
             Action::NoteTone => self.ask_note(),
             other => self.act_on_desk(other),
@@ -92,6 +94,10 @@ impl Workbench {
             }
         }
     }
+}
+
+fn scale(ctx: &Context, factor: f32) {
+    ctx.set_zoom_factor(factor.clamp(SCALES.0, SCALES.1));
 }
 
 fn on_segment(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
@@ -177,6 +183,14 @@ fn current_pane(desk: &Desk, view: &View) -> Option<(usize, PaneId)> {
 fn on_panes(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
     let (at, id) = current_pane(desk, view)?;
     match action {
+        Action::ChooseWindow => {
+            view.choosing = Choosing::for_pane(desk, id);
+            None
+        }
+        Action::AddPane => {
+            view.choosing = Choosing::for_new_pane(desk);
+            None
+        }
         Action::EnlargePane => {
             view.enlarged = if view.enlarged.is_some() { None } else { Some(id) };
             None
@@ -194,6 +208,7 @@ fn on_tones(desk: &Desk, view: &mut View, action: Action, intents: &mut Intents)
         Action::PreviousTone => table::step(desk, view, intents, false),
         Action::HairlineToTone => view.hairline_hz = desk.session.picked_hz.or(view.hairline_hz),
         Action::Unpick => return Some(Command::Pick(None)),
+        Action::TakeBackTone => return hand_tone(desk, view).map(Command::RemoveHandTone),
         Action::NameTone => {
             let frequency_hz = view.hairline_hz?;
             return Some(Command::AddHandTone(HandTone { frequency_hz, held: false }));
@@ -201,4 +216,16 @@ fn on_tones(desk: &Desk, view: &mut View, action: Action, intents: &mut Intents)
         _ => {}
     }
     None
+}
+
+/// The tone named by hand that is picked, or that the hairline stands on. What was named moves to the peak beside it
+/// when it is read, so the nearest within a line counts.
+pub(super) fn hand_tone(desk: &Desk, view: &View) -> Option<usize> {
+    let spacing = desk.line_spacing_hz();
+    let nearest = |hz: f64| {
+        let tones = desk.session.hand_tones.iter().enumerate();
+        let near = tones.map(|(i, t)| (i, (t.frequency_hz - hz).abs())).filter(|(_, d)| *d <= spacing);
+        near.min_by(|a, b| a.1.total_cmp(&b.1)).map(|(i, _)| i)
+    };
+    desk.session.picked_hz.and_then(nearest).or_else(|| view.hairline_hz.and_then(nearest))
 }

@@ -4,6 +4,7 @@ use std::path::PathBuf;
 
 use eframe::egui;
 
+use super::preferences::Preferences;
 use super::{Services, Workbench};
 
 /// Why there is no window.
@@ -23,10 +24,13 @@ pub enum RunError {
 /// # Errors
 /// [`RunError::NoWindow`] where there is no display or no OpenGL.
 pub fn run(start: Option<PathBuf>) -> Result<(), RunError> {
+    let services = Services::desktop();
+    let kept = services.preferences.as_deref().map(Preferences::load).unwrap_or_default();
     let viewport = egui::ViewportBuilder::default()
         .with_title("Panewise")
         .with_app_id("panewise")
-        .with_inner_size([1280.0, 800.0])
+        .with_inner_size([kept.window.0, kept.window.1])
+        .with_maximized(kept.maximised)
         .with_min_inner_size([800.0, 560.0])
         .with_drag_and_drop(true);
     let viewport = match eframe::icon_data::from_png_bytes(include_bytes!("../../assets/icon.png")) {
@@ -34,7 +38,11 @@ pub fn run(start: Option<PathBuf>) -> Result<(), RunError> {
         Err(_) => viewport,
     };
     let options = eframe::NativeOptions { viewport, ..Default::default() };
-    let made = eframe::run_native("panewise", options, Box::new(move |cc| Ok(Box::new(App::new(&cc.egui_ctx, start)))));
+    let made = eframe::run_native(
+        "panewise",
+        options,
+        Box::new(move |cc| Ok(Box::new(App::new(&cc.egui_ctx, services, start)))),
+    );
     made.map_err(|error| RunError::NoWindow { reason: reason(&error) })
 }
 
@@ -56,9 +64,9 @@ struct App {
 }
 
 impl App {
-    fn new(ctx: &egui::Context, start: Option<PathBuf>) -> Self {
+    fn new(ctx: &egui::Context, services: Services, start: Option<PathBuf>) -> Self {
         Workbench::dress(ctx);
-        let mut bench = Workbench::new(Services::desktop());
+        let mut bench = Workbench::new(services);
         if let Some(path) = start {
             bench.open(&path);
         }

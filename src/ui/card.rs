@@ -10,6 +10,10 @@ use crate::reading::{PaneReading, Reading, ReadingState, Tone};
 
 /// Width of the card.
 pub(super) const WIDTH: f32 = 276.0;
+/// From this width on the card stands beside the table, in less below it.
+pub(super) const BESIDE: f32 = 960.0;
+/// Height of the card below the table.
+pub(super) const HEIGHT: f32 = 66.0;
 
 /// A step so small is only named.
 const SMALL_DB: f64 = 0.0005;
@@ -48,6 +52,46 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &View, reading: &Reading) {
     });
 }
 
+/// Shows the card low and wide, for screens without room beside the table.
+pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &View, reading: &Reading) {
+    let Some((tone, pane)) = chosen(reading, desk, view) else { return };
+    let Some(cell) = tone.readings.get(pane) else { return };
+    if !desk.latest.is_current() {
+        ui.multiply_opacity(0.55);
+    }
+    let spacing = desk.line_spacing_hz();
+    ui.spacing_mut().item_spacing = egui::vec2(10.0, 1.0);
+    ui.spacing_mut().interact_size.y = 16.0;
+    ScrollArea::vertical().id_salt("card below").auto_shrink(false).show(ui, |ui| {
+        ui.horizontal(|ui| {
+            let head = theme::heavy(ui.ctx(), theme::BODY);
+            let title = format!("{} Hz in {}", figure::hertz(tone.frequency_hz, spacing), cell.window);
+            ui.label(RichText::new(title).font(head));
+            state(ui, cell);
+        });
+        ui.horizontal_wrapped(|ui| {
+            let palette = theme::palette(ui.ctx());
+            for step in cell.ledger.iter().filter(|s| s.db.abs() >= SMALL_DB) {
+                let text = format!("{} {}", step.step, figure::fixed(step.db, 3));
+                ui.label(RichText::new(text).color(palette.ink));
+            }
+            let sum: f64 = cell.ledger.iter().map(|s| s.db).sum();
+            let text = format!("level {} dB", figure::fixed(sum, 3));
+            ui.label(RichText::new(text).font(theme::heavy(ui.ctx(), theme::BODY)));
+            facts(ui, cell, spacing);
+            small(ui, cell);
+        });
+    });
+}
+
+/// The steps too small to be written out.
+fn small(ui: &mut Ui, cell: &PaneReading) {
+    let names: Vec<&str> = cell.ledger.iter().filter(|s| s.db.abs() < SMALL_DB).map(|s| s.step).collect();
+    if !names.is_empty() {
+        widget::quiet(ui, format!("less than {SMALL_DB} dB each: {}", names.join(", ")));
+    }
+}
+
 fn state(ui: &mut Ui, cell: &PaneReading) {
     let why = match cell.state {
         ReadingState::Clear => "clear: nothing stands in the way",
@@ -74,14 +118,10 @@ fn facts(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
 /// The steps in decibels, and their sum.
 fn ledger(ui: &mut Ui, cell: &PaneReading, reference: &str) {
     let palette = theme::palette(ui.ctx());
-    let (small, large): (Vec<_>, Vec<_>) = cell.ledger.iter().partition(|s| s.db.abs() < SMALL_DB);
-    for step in large {
+    for step in cell.ledger.iter().filter(|s| s.db.abs() >= SMALL_DB) {
         line(ui, step.step, &figure::fixed(step.db, 3), palette.ink, false);
     }
-    if !small.is_empty() {
-        let names: Vec<&str> = small.iter().map(|s| s.step).collect();
-        widget::quiet(ui, format!("less than {SMALL_DB} dB each: {}", names.join(", ")));
-    }
+    small(ui, cell);
     let (rect, _) = ui.allocate_exact_size(egui::vec2(ui.available_width(), 5.0), egui::Sense::hover());
     ui.painter().hline(rect.x_range(), rect.center().y, egui::Stroke::new(1.0, palette.rule));
     let sum: f64 = cell.ledger.iter().map(|s| s.db).sum();

@@ -2,17 +2,17 @@
 
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
-use std::time::Instant;
 
 use eframe::egui::Context;
 
+use super::demonstration;
 use super::desk::{Desk, file_name};
 use super::dialog::{After, Dialog, Reply};
 use super::files::{self, Event, Kept, Opened, Outcome, UNFORESEEN};
 use super::lane::guarded;
 use super::services::Ask;
 use super::view::Intent;
-use super::workbench::{AUTOSAVE_AFTER, Opening, Workbench};
+use super::workbench::{Opening, Workbench};
 use super::worker::Latest;
 use crate::session::{Command, Found, Note, Recovered, Session};
 use crate::signal::Watch;
@@ -51,17 +51,26 @@ impl Workbench {
             command,
             Command::ChooseChannel(_) | Command::ChooseSegment(_) | Command::AddSegment(_) | Command::RemoveSegment(_)
         );
+        let marks = matches!(
+            command,
+            Command::MoveSegment(..)
+                | Command::AddSegment(_)
+                | Command::RemoveSegment(_)
+                | Command::RenameSegment(..)
+                | Command::ChooseSegment(_)
+        );
+        let sets_axes = matches!(command, Command::SetAxes(_));
+        let is_step = !sets_axes && !matches!(command, Command::Pick(_) | Command::ChooseChannel(_));
+        let rate_before = desk.session.sample_rate_hz();
         if desk.history.apply(&mut desk.session, command) {
-            // What is picked and shown is no step.
-            desk.untouched &= desk.history.undo_name().is_none();
+            // A channel may still bring its suggestion with it, as long as nothing is marked.
+            desk.untouched &= !is_step;
+            desk.marked |= marks;
+            desk.fits_axes &= !sets_axes;
+            follow_rate(desk, rate_before);
             self.view.refit_level |= windows || other_samples;
             self.note_change();
         }
-    }
-
-    /// The document has changed: it has to be kept for recovery before long.
-    pub(super) fn note_change(&mut self) {
-        self.autosave_due.get_or_insert_with(|| Instant::now() + AUTOSAVE_AFTER);
     }
 
     /// Opens a file, once unsaved work is dealt with.
@@ -105,19 +114,10 @@ impl Workbench {
                     self.view.strip_cache.take(key, columns);
                 }
             }
-            Event::Doubts(number, doubts) => {
-                if self.desk_of(number).is_some() {
-                    for text in &doubts {
-                        self.notices.tell(text);
-                    }
-                }
-            }
-            Event::Surveyed(number) => {
-                if let Some(desk) = self.desk_of(number) {
-                    desk.surveyed = true;
-                }
-            }
-            Event::Suggested(number, span) => self.take_suggestion(number, span),
+            Event::Doubts(about, doubts) => self.take_doubts(about, &doubts),
+            Event::Surveyed(about) => self.take_surveyed(about),
+            Event::Suggested(about, span) => self.take_suggestion(about, span),
+            Event::Figures(key, figures) => self.view.merits.take(key, figures),
             Event::Hashed(number, blake3) => {
                 if let Some(desk) = self.desk_of(number) {
                     desk.session.capture.blake3 = blake3;
@@ -172,9 +172,13 @@ impl Workbench {
         self.n_opened += 1;
         let number = self.n_opened;
         let capture = Arc::new(capture);
-        let mut desk = match session {
-            Some(session) => Desk::with_session(number, Arc::clone(&capture), session, file),
-            None => Desk::fresh(number, Arc::clone(&capture)),
+        let demonstration = self.services.demonstration.as_deref();
+        let mut desk = if let Some(session) = session {
+            Desk::with_session(number, Arc::clone(&capture), session, file)
+        } else if demonstration::is(&capture.path, demonstration) {
+            Desk::fresh(number, Arc::clone(&capture), demonstration::dress)
+        } else {
+            Desk::fresh(number, Arc::clone(&capture), |_| {})
         };
         if let Some(threads) = &self.threads {
             desk.latest = Latest::after(threads.worker.newest());
@@ -189,7 +193,6 @@ impl Workbench {
         self.saving.give_up();
         self.given_up = None;
         self.view.for_new_capture();
-        self.start_survey(&desk);
         self.note_recent(desk.file.as_deref().unwrap_or(&capture.path));
         self.clear_slot();
         if let Some(recovered) = recovered {
@@ -212,34 +215,6 @@ impl Workbench {
         });
     }
 
-    fn start_survey(&self, desk: &Desk) {
-        let Some(threads) = &self.threads else { return };
-        let (capture, session, watch) = (Arc::clone(&desk.capture), desk.session.clone(), desk.watch.clone());
-        let (number, overview) = (desk.number, desk.overview.clone());
-        threads.survey.run(move |tell| {
-            if guarded(|| files::survey(number, (&capture, &overview), &session, &watch, tell)).is_none() {
-                tell(Event::Said(UNFORESEEN.to_owned()));
-                tell(Event::Surveyed(number));
-            }
-        });
-    }
-
-    /// Has columns read that the strip wants from the samples themselves.
-    pub(super) fn read_columns(&mut self) {
-        let (Some(desk), Some(threads)) = (&mut self.desk, &self.threads) else { return };
-        let Some((key, edges)) = self.view.strip_cache.wanted() else { return };
-        // The strip has moved on: what it wanted before is of no use any more.
-        let watch = Watch::new();
-        std::mem::replace(&mut desk.columns_watch, watch.clone()).cancel();
-        let (capture, number) = (Arc::clone(&desk.capture), desk.number);
-        threads.strip.run(move |tell| {
-            // What cannot be read stays as coarse as it is drawn; the reading of the segment says why.
-            if let Ok(columns) = crate::capture::raw_columns(&*capture.source, key.channel, &edges, &watch) {
-                tell(Event::Columns(number, key, columns));
-            }
-        });
-    }
-
     pub(super) fn note_recent(&self, path: &Path) {
         let (Some(threads), Some(file)) = (&self.threads, self.services.recent.clone()) else { return };
         let path = path.to_owned();
@@ -249,15 +224,6 @@ impl Workbench {
             }
             tell(Event::Recent(crate::session::list_recent(&file)));
         });
-    }
-
-    fn take_suggestion(&mut self, number: u64, span: crate::signal::Span) {
-        let Some(desk) = self.desk_of(number) else { return };
-        desk.suggestion = Some(span);
-        if desk.untouched {
-            desk.start_from(span);
-            self.view.refit_level = true;
-        }
     }
 
     /// Takes in what the user said to a dialog.
@@ -305,4 +271,15 @@ impl Workbench {
             }
         }
     }
+}
+
+/// Where another rate stands in for the file's, what is shown goes on showing the same lines.
+fn follow_rate(desk: &mut Desk, rate_before_hz: f64) {
+    let ratio = desk.session.sample_rate_hz() / rate_before_hz;
+    if ratio == 1.0 || !ratio.is_finite() {
+        return;
+    }
+    let axes = &mut desk.session.axes;
+    axes.frequency_hz = axes.frequency_hz.map(|(lo, hi)| (lo * ratio, hi * ratio));
+    desk.session.picked_hz = desk.session.picked_hz.map(|hz| hz * ratio);
 }

@@ -13,6 +13,7 @@ use crate::window::Window;
 
 /// The open capture and all that belongs to it.
 #[derive(Debug)]
+#[expect(clippy::struct_excessive_bools, reason = "each is a state of its own: nothing here excludes another")]
 pub(super) struct Desk {
     /// Which opening this is; what comes from an earlier one is dropped.
     pub(super) number: u64,
@@ -26,6 +27,12 @@ pub(super) struct Desk {
     pub(super) overview: Overview,
     /// Whether everything there is to find in the capture has been found.
     pub(super) surveyed: bool,
+    /// The channel that was, or is being, read through.
+    pub(super) surveyed_channel: Option<usize>,
+    /// Whether the user has marked anything: then no suggestion takes its place.
+    pub(super) marked: bool,
+    /// Whether the range shown still follows the tones found, as it does until the user touches it.
+    pub(super) fits_axes: bool,
     /// The stretch that is suggested.
     pub(super) suggestion: Option<Span>,
     /// The file the session is kept in.
@@ -73,11 +80,13 @@ impl Desk {
         if scale.check().is_ok() { scale } else { Scale::default() }
     }
 
-    /// A desk with a capture fresh from its file.
-    pub(super) fn fresh(number: u64, capture: Arc<Capture>) -> Self {
-        let session = Session::new(capture_ref(&capture));
+    /// A desk with a capture fresh from its file; `dress` puts in the document what is known of it already.
+    pub(super) fn fresh(number: u64, capture: Arc<Capture>, dress: impl FnOnce(&mut Session)) -> Self {
+        let mut session = Session::new(capture_ref(&capture));
+        dress(&mut session);
+        let fits_axes = session.axes.frequency_hz.is_none();
         let mut desk = Self::with_session(number, capture, session, None);
-        desk.untouched = true;
+        (desk.fits_axes, desk.marked, desk.untouched) = (fits_axes, false, true);
         desk
     }
 
@@ -91,6 +100,9 @@ impl Desk {
             overview: Overview::new(&capture),
             capture,
             surveyed: false,
+            surveyed_channel: None,
+            marked: true,
+            fits_axes: false,
             suggestion: None,
             file,
             latest: Latest::default(),
@@ -228,8 +240,8 @@ mod tests {
 
     #[test]
     fn a_pick_is_not_unsaved_work_but_a_name_is() {
-        let mut desk = Desk::fresh(1, Arc::new(capture(50, 1)));
-        assert!(!desk.is_unsaved() && desk.untouched);
+        let mut desk = Desk::fresh(1, Arc::new(capture(50, 1)), |_| {});
+        assert!(!desk.is_unsaved() && desk.untouched && !desk.marked);
         desk.session.picked_hz = Some(3.0);
         assert!(!desk.is_unsaved());
         desk.session.segments[0].name = "run".to_owned();

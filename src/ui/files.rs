@@ -28,20 +28,22 @@ pub(super) enum Event {
     Said(String),
     /// More of the capture has been read through.
     Read,
-    /// What is doubtful about the samples of the channel read.
-    Doubts(u64, Vec<String>),
+    /// What is doubtful about the samples of a channel; behind the opening's number stands the channel.
+    Doubts((u64, usize), Vec<String>),
     /// Columns of samples that were wanted for the strip.
     Columns(u64, StripKey, Vec<Extent>),
-    /// All of the capture has been read through.
-    Surveyed(u64),
-    /// The stretch suggested.
-    Suggested(u64, Span),
+    /// All there is to find in a channel has been found.
+    Surveyed((u64, usize)),
+    /// The stretch suggested for a channel.
+    Suggested((u64, usize), Span),
     /// The capture's BLAKE3.
     Hashed(u64, String),
     /// The session is saved, as it was then.
     Saved(u64, Box<Saved>),
     /// A session could not be saved; one sentence.
     NotSaved(String),
+    /// Figures of a window that were wanted.
+    Figures(super::merits::Key, super::merits::Figures),
     /// What earlier runs left unsaved.
     Recoveries(Vec<Recovered>),
     /// The list of recent files.
@@ -192,7 +194,8 @@ pub(super) fn use_changed(changed: Changed) -> Opened {
     kept.opened(session, capture, false, Some(remark.to_owned()))
 }
 
-/// Makes of a capture what takes reading it through: small picture, doubts, suggestion, BLAKE3.
+/// Makes of a capture what takes reading it through: small picture, BLAKE3, and of the channel read its doubts and
+/// the stretch suggested. What is made already costs nothing.
 pub(super) fn survey(
     number: u64,
     (capture, overview): (&Capture, &Overview),
@@ -205,18 +208,19 @@ pub(super) fn survey(
     {
         tell(Event::Said(error.to_string()));
     }
+    let about = (number, session.channel);
     let doubts = overview.damage(session.channel).map(|d| d.doubts()).unwrap_or_default();
-    tell(Event::Doubts(number, doubts.into_iter().map(|(_, text)| text).collect()));
+    tell(Event::Doubts(about, doubts.into_iter().map(|(_, text)| text).collect()));
     let rate = session.sample_rate_hz();
     if let Ok(Some(span)) = crate::tone::suggest_steady(&*capture.source, session.channel, rate, watch) {
-        tell(Event::Suggested(number, span));
+        tell(Event::Suggested(about, span));
     }
     if session.capture.blake3.is_empty()
         && let Ok(blake3) = capture.blake3(watch)
     {
         tell(Event::Hashed(number, blake3));
     }
-    tell(Event::Surveyed(number));
+    tell(Event::Surveyed(about));
 }
 
 /// Saves the session, with its capture's BLAKE3 where that is not known yet.

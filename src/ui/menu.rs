@@ -7,7 +7,7 @@ use eframe::egui::{self, Align, Button, ComboBox, Layout, MenuBar, RichText, The
 use super::action::{Action, ENTRIES, Entry, Menu};
 use super::desk::{Desk, file_name};
 use super::view::{Intent, Intents, View};
-use super::{figure, pane_menu, theme};
+use super::{figure, theme};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, RecentFile};
 use crate::signal::Removal;
 
@@ -36,9 +36,6 @@ impl Menus<'_> {
     }
 
     fn menu(&self, ui: &mut Ui, menu: Menu, view: &View, intents: &mut Intents) {
-        if menu == Menu::Panes {
-            self.add_pane(ui, intents);
-        }
         for entry in ENTRIES.iter().filter(|e| e.menu == menu) {
             if matches!(
                 entry.action,
@@ -46,6 +43,7 @@ impl Menus<'_> {
                     | Action::Undo
                     | Action::Quit
                     | Action::ShowSegment
+                    | Action::ZoomIn
                     | Action::EnlargePane
                     | Action::NameTone
             ) {
@@ -65,7 +63,7 @@ impl Menus<'_> {
 
     fn item(&self, ui: &mut Ui, entry: &Entry, view: &View, intents: &mut Intents) {
         let key = entry.key.map(|k| ui.ctx().format_shortcut(&k)).unwrap_or_default();
-        let (name, enabled) = self.state(entry);
+        let (name, enabled) = self.state(entry, view);
         let on = match entry.action {
             Action::ToggleSetup => view.setup_open,
             Action::ToggleLog => self.desk.is_some_and(|d| d.session.axes.frequency_axis == FrequencyAxis::Logarithmic),
@@ -79,7 +77,7 @@ impl Menus<'_> {
     }
 
     /// The name an entry goes by now, and whether it can be done.
-    fn state(&self, entry: &Entry) -> (String, bool) {
+    fn state(&self, entry: &Entry, view: &View) -> (String, bool) {
         let with = |name: &str, step: Option<&'static str>| {
             (step.map_or_else(|| name.to_owned(), |s| format!("{name}: {s}")), step.is_some())
         };
@@ -93,6 +91,9 @@ impl Menus<'_> {
             Action::OpenDemonstration => self.demonstration.is_some(),
             Action::UseSuggestion => desk.suggestion.is_some(),
             Action::RemoveSegment | Action::NextSegment => desk.session.segments.len() > 1,
+            Action::AddPane => desk.session.panes.len() < MAX_PANES,
+            Action::TakeBackTone => super::act::hand_tone(desk, view).is_some(),
+            Action::NameTone => view.hairline_hz.is_some(),
             Action::RemovePane | Action::PaneLeft | Action::PaneRight => desk.session.panes.len() > 1,
             Action::FitTone | Action::HairlineToTone | Action::Unpick | Action::NoteTone => {
                 desk.session.picked_hz.is_some()
@@ -117,16 +118,6 @@ impl Menus<'_> {
                 }
             });
         });
-    }
-
-    fn add_pane(&self, ui: &mut Ui, intents: &mut Intents) {
-        let room = self.desk.is_some_and(|d| d.session.panes.len() < MAX_PANES);
-        ui.add_enabled_ui(room, |ui| {
-            ui.menu_button("Add pane", |ui| {
-                pane_menu::choose(ui, |window| intents.push(Intent::Change(Command::AddPane(window))));
-            });
-        });
-        ui.separator();
     }
 
     fn removal(&self, ui: &mut Ui, intents: &mut Intents) {

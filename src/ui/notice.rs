@@ -11,6 +11,8 @@ const MOST: usize = 4;
 struct Notice {
     text: String,
     alarming: bool,
+    /// About the samples of the channel read.
+    doubt: bool,
 }
 
 /// The notices shown.
@@ -22,17 +24,27 @@ pub(super) struct Notices {
 impl Notices {
     /// Something did not work.
     pub(super) fn refuse(&mut self, text: &str) {
-        self.add(text, true);
+        self.add(text, true, false);
     }
 
     /// Something to know.
     pub(super) fn tell(&mut self, text: &str) {
-        self.add(text, false);
+        self.add(text, false, false);
     }
 
-    fn add(&mut self, text: &str, alarming: bool) {
+    /// Something doubtful about the samples of the channel read.
+    pub(super) fn doubt(&mut self, text: &str) {
+        self.add(text, false, true);
+    }
+
+    /// Another channel is read.
+    pub(super) fn forget_doubts(&mut self) {
+        self.list.retain(|n| !n.doubt);
+    }
+
+    fn add(&mut self, text: &str, alarming: bool, doubt: bool) {
         self.list.retain(|n| n.text != text);
-        self.list.push(Notice { text: text.to_owned(), alarming });
+        self.list.push(Notice { text: text.to_owned(), alarming, doubt });
         if self.list.len() > MOST {
             self.list.remove(0);
         }

@@ -12,10 +12,11 @@ use super::panes::Shared;
 use super::plot::{Axis, Trace, draw_trace, place};
 use super::theme::{self, Palette};
 use super::view::{Intent, Intents, View, held_range};
-use super::{figure, pane_head, widget};
+use super::{figure, overlay, pane_head, widget};
 use crate::reading::{PaneReading, Reading, ReadingState, Tone};
 use crate::session::{Command, Pane, ViewAxes};
 use crate::spectrum::Spectra;
+use crate::window::Window;
 
 /// Room for level labels.
 const LEFT: f32 = 40.0;
@@ -106,8 +107,12 @@ impl Plot<'_> {
         let n_clear = desk.reading().map_or(0, |r| {
             r.tones.iter().filter(|t| self.reading_of(t).is_some_and(|x| x.state == ReadingState::Clear)).count()
         });
+        let kernel = view.preview.as_ref().filter(|(id, _)| *id == self.pane.id).zip(overlay::centre(desk));
+        let kernel = kernel.map_or(String::new(), |((_, window), tone)| {
+            format!(", {} drawn over it", kernel_title(window, tone.frequency_hz))
+        });
         let text = format!(
-            "Spectrum {}, {}: {} to {} Hz, {} tones clear{hairline}",
+            "Spectrum {}, {}: {} to {} Hz, {} tones clear{hairline}{kernel}",
             self.index + 1,
             self.pane.window,
             figure::hertz(lo, spacing),
@@ -134,12 +139,18 @@ impl Plot<'_> {
             let n = ((self.area.width() * ppp).round().max(1.0) as usize).min(4096);
             let columns = view.curves.columns(spectra, place, &self.frequency, n);
             let hue = if figures_pass(desk, view) { hue } else { hue.gamma_multiply(STALE) };
-            let trace = Trace { colour: hue, dashed, offset: self.shared.offset_db };
+            let trace = Trace { colour: hue, dashed, width: 1.25, offset: self.shared.offset_db };
             draw_trace(&painter, &columns, (self.area.left(), self.area.width() / n as f32), &self.level, trace);
         }
+        let title = self.draw_kernel(ui, &painter, desk, view);
         self.draw_hairline(&painter, curve, desk, view);
         if let Some(reading) = desk.reading() {
-            self.draw_marks(&painter, reading, desk);
+            let taken: Vec<Rect> = title.iter().map(|t| t.0).collect();
+            self.draw_marks(&painter, reading, desk, &taken);
+        }
+        if let Some((rect, text)) = title {
+            painter.rect_filled(rect.expand2(vec2(3.0, 1.0)), 2.0, self.palette.card);
+            widget::write(&painter, rect.min, Align2::LEFT_TOP, &text, theme::quiet(), self.palette.ink);
         }
     }
 
@@ -184,6 +195,22 @@ impl Plot<'_> {
         painter.extend(Shape::dashed_line(&points, Stroke::new(1.0, self.palette.quiet), 2.0, 3.0));
     }
 
+    /// The kernel of the window being chosen for this pane, over the tone picked; gives its title, to be written
+    /// over the marks, and the title's place.
+    fn draw_kernel(&self, ui: &Ui, painter: &Painter, desk: &Desk, view: &mut View) -> Option<(Rect, String)> {
+        let (_, window) = view.preview.as_ref().filter(|(id, _)| *id == self.pane.id)?;
+        let (tone, segment) = (overlay::centre(desk)?, desk.segment()?);
+        let n = ((self.area.width() * ui.ctx().pixels_per_point()).round().max(1.0) as usize).min(4096);
+        let place = (tone.frequency_hz, self.shared.spacing_hz);
+        let columns = view.kernels.columns(window, segment.span.samples, place, &self.frequency, n);
+        let trace = Trace { colour: self.palette.ink, dashed: false, width: 1.5, offset: tone.level_db };
+        draw_trace(painter, &columns, (self.area.left(), self.area.width() / n as f32), &self.level, trace);
+        let text = kernel_title(window, tone.frequency_hz);
+        let size = widget::text_size(painter, &text, theme::quiet());
+        let rect = Rect::from_min_size(pos2(self.area.right() - size.x - 4.0, self.area.top() + 2.0), size);
+        Some((rect, text))
+    }
+
     fn draw_hairline(&self, painter: &Painter, curve: Option<(usize, &Arc<Spectra>)>, desk: &Desk, view: &View) {
         let Some(hz) = view.hairline_hz.filter(|hz| (self.frequency.lo..=self.frequency.hi).contains(hz)) else {
             return;
@@ -197,7 +224,7 @@ impl Plot<'_> {
     }
 
     /// Marks of tones, the strongest labelled first; what has no room is left out.
-    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk) {
+    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk, taken: &[Rect]) {
         let stale = !desk.latest.is_current();
         let ink = if stale { self.palette.quiet.gamma_multiply(0.6) } else { self.palette.ink };
         let mut marks: Vec<(&Tone, &PaneReading, egui::Pos2)> =
@@ -217,9 +244,19 @@ impl Plot<'_> {
         let texts: Vec<String> = marks.iter().map(|(tone, r, _)| label(tone, r)).collect();
         let sized: Vec<_> =
             marks.iter().zip(&texts).map(|(m, text)| (m.2, widget::text_size(painter, text, theme::quiet()))).collect();
-        for ((found, text), (tone, _, _)) in place(self.area, &sized, &[]).into_iter().zip(&texts).zip(&marks) {
+        for ((found, text), (tone, _, _)) in place(self.area, &sized, taken).into_iter().zip(&texts).zip(&marks) {
             let Some(rect) = found else { continue };
-            painter.rect_filled(rect.expand2(vec2(2.0, 0.0)), 2.0, self.palette.card.gamma_multiply(0.85));
+            let ground = rect.expand2(vec2(3.0, 0.0));
+            let mark = self.mark(tone).map_or(rect.center(), |m| m.1);
+            if mark.y - rect.bottom() > 8.0 {
+                let foot = pos2(mark.x.clamp(rect.left(), rect.right()), rect.bottom());
+                painter.line_segment([foot, mark - vec2(0.0, 4.0)], Stroke::new(1.0, self.palette.quiet));
+            }
+            painter.rect_filled(ground, 2.0, self.palette.card);
+            // In a crowd a label may stand on other tones' marks: these still show, behind the letters.
+            for (reading, at) in reading.tones.iter().filter_map(|t| self.mark(t)).filter(|m| ground.contains(m.1)) {
+                widget::state_mark(&painter.with_clip_rect(ground), at, reading.state, ink.gamma_multiply(0.3));
+            }
             let colour = if self.is_picked(tone, desk) { self.palette.accent } else { ink };
             widget::write(painter, rect.min, Align2::LEFT_TOP, text, theme::quiet(), colour);
         }
@@ -320,6 +357,10 @@ impl Plot<'_> {
 /// Whether a tone is the one picked: its frequency moves a little as windows and segments change.
 pub(super) fn is_picked(tone_hz: f64, picked_hz: Option<f64>, spacing_hz: f64) -> bool {
     picked_hz.is_some_and(|hz| (hz - tone_hz).abs() <= spacing_hz)
+}
+
+fn kernel_title(window: &Window, hz: f64) -> String {
+    format!("kernel of {window} at {} Hz", figure::fixed(hz, 2))
 }
 
 fn label(tone: &Tone, reading: &PaneReading) -> String {

@@ -8,7 +8,7 @@ use super::desk::Desk;
 use super::pane::figures_pass;
 use super::panes::Shared;
 use super::view::{Intent, Intents, View};
-use super::{figure, pane_menu, theme, widget};
+use super::{figure, pane_menu, parameters, theme, widget};
 use crate::session::{Command, Pane};
 use crate::window::Window;
 
@@ -16,8 +16,6 @@ use crate::window::Window;
 pub(super) const HEIGHT: f32 = 42.0;
 /// Points of a shape drawn small.
 const SHAPE: usize = 64;
-/// Samples for figures of merit: enough that they no longer depend on it.
-const MERIT_SAMPLES: usize = 4096;
 
 /// Shows the head of pane `index`.
 pub(super) fn show(
@@ -44,11 +42,11 @@ pub(super) fn show(
         ui.new_child(UiBuilder::new().max_rect(rest).layout(Layout::left_to_right(Align::Center)).id_salt("name"));
     first.set_clip_rect(rest.expand(2.0).intersect(ui.clip_rect()));
     name(&mut first, index, pane, view, intents);
-    parameters(&mut first, index, pane, intents);
+    parameters(&mut first, index, pane, view, intents);
     let below = Rect::from_min_max(egui::pos2(line.left(), line.bottom()), rect.max);
     let mut second =
         ui.new_child(UiBuilder::new().max_rect(below).layout(Layout::left_to_right(Align::Center)).id_salt("second"));
-    merits(&mut second, pane, desk, shared);
+    merits(&mut second, pane, desk, view, shared);
 }
 
 fn name(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut Intents) {
@@ -62,62 +60,19 @@ fn name(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut I
     }
 }
 
-/// A field for each parameter; a long list (a cosine sum's coefficients) is edited as text.
-fn parameters(ui: &mut Ui, index: usize, pane: &Pane, intents: &mut Intents) {
-    let specs = pane.window.entry().parameters;
-    if specs.len().max(pane.window.parameters().len()) > 2 {
-        coefficients(ui, index, pane, intents);
-        return;
+/// The fields of the window's parameters; while one is at hand, the kernel it makes is drawn over the curve.
+fn parameters(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut Intents) {
+    let key = egui::Id::unique(("parameters", pane.id));
+    let edited = parameters::edit(ui, key, &format!("Pane {}", index + 1), &pane.window);
+    if edited.busy && view.choosing.is_none() {
+        view.preview = Some((pane.id, edited.window.clone().unwrap_or_else(|| pane.window.clone())));
     }
-    for (i, (value, spec)) in pane.window.parameters().iter().zip(specs).enumerate().take(2) {
-        let mut v = *value;
-        let decimals = figure::decimals(spec.step * 10.0, 4);
-        let field = egui::DragValue::new(&mut v)
-            .range(spec.min..=spec.max)
-            .speed(spec.step * 0.2)
-            .max_decimals(decimals.max(2))
-            .prefix(format!("{} ", spec.symbol))
-            .update_while_editing(false);
-        let response = ui.add(field).accessible_name(format!("Pane {}: {}", index + 1, spec.symbol));
-        if response.changed() {
-            let mut all = pane.window.parameters().to_vec();
-            if let Some(place) = all.get_mut(i) {
-                *place = v;
-            }
-            if let Some(window) = with_parameters(&pane.window, &all) {
-                intents.push(Intent::Change(Command::SetWindow(pane.id, window)));
-            }
-        }
-        if response.drag_stopped() || response.lost_focus() {
-            intents.push(Intent::CloseStep);
-        }
+    if let Some(window) = edited.window {
+        intents.push(Intent::Change(Command::SetWindow(pane.id, window)));
     }
-}
-
-/// A list of parameters as text, taken when the field is left; a list that cannot be is not taken.
-fn coefficients(ui: &mut Ui, index: usize, pane: &Pane, intents: &mut Intents) {
-    let key = egui::Id::unique(("coefficients", pane.id));
-    let list: Vec<String> = pane.window.parameters().iter().map(f64::to_string).collect();
-    let mut text = ui.data(|d| d.get_temp::<String>(key)).unwrap_or_else(|| list.join(", "));
-    let field = egui::TextEdit::singleline(&mut text).desired_width(110.0).font(theme::quiet());
-    let response = ui.add(field).accessible_name(format!("Pane {}: coefficients", index + 1));
-    if response.changed() {
-        ui.data_mut(|d| d.insert_temp(key, text.clone()));
-    }
-    if response.lost_focus() {
-        ui.data_mut(|d| d.remove_temp::<String>(key));
-        let numbers: Option<Vec<f64>> = text.split(',').map(|part| part.trim().parse().ok()).collect();
-        if let Some(window) = numbers.and_then(|n| with_parameters(&pane.window, &n)) {
-            intents.push(Intent::Change(Command::SetWindow(pane.id, window)));
-        }
+    if edited.ended {
         intents.push(Intent::CloseStep);
     }
-}
-
-/// The same window with other parameters; `None` where they cannot be.
-pub(super) fn with_parameters(window: &Window, parameters: &[f64]) -> Option<Window> {
-    let list: Vec<String> = parameters.iter().map(f64::to_string).collect();
-    Window::parse(&format!("{}={}", window.name(), list.join(","))).ok()
 }
 
 /// Writes the reading at the right end and gives the left end of what it took.
@@ -140,28 +95,25 @@ fn reading_at_hairline(
     left
 }
 
-fn merits(ui: &mut Ui, pane: &Pane, desk: &Desk, shared: &Shared) {
-    let n = desk.segment().map_or(MERIT_SAMPLES, |s| s.span.samples.clamp(16, MERIT_SAMPLES as u64) as usize);
-    let merit = merit_of(ui, &pane.window, n);
-    let hz = merit.0 * shared.spacing_hz;
-    let text = format!("ENBW {} Hz  ·  highest side lobe {} dB", figure::significant(hz, 3), figure::fixed(merit.1, 1));
-    widget::quiet(ui, text);
-}
-
-/// Noise bandwidth in bins and highest side lobe in dB, kept from frame to frame.
-fn merit_of(ui: &Ui, window: &Window, n: usize) -> (f64, f64) {
-    let key = egui::Id::unique(("merit", window.to_string(), n));
-    if let Some(kept) = ui.data(|d| d.get_temp(key)) {
-        return kept;
+/// Noise bandwidth and highest side lobe; while they are being computed the old ones are shown dimmed.
+fn merits(ui: &mut Ui, pane: &Pane, desk: &Desk, view: &mut View, shared: &Shared) {
+    let key = egui::Id::unique(("merits", pane.id));
+    let samples = desk.segment().map_or(1, |s| s.span.samples);
+    let known = view.merits.of(&pane.window, samples);
+    if let Some(figures) = known {
+        ui.data_mut(|d| d.insert_temp(key, figures));
     }
-    let merit = window.merit(n);
-    let figures = (merit.enbw_bins, merit.highest_side_lobe_db);
-    ui.data_mut(|d| d.insert_temp(key, figures));
-    figures
+    let Some(figures) = known.or_else(|| ui.data(|d| d.get_temp(key))) else { return };
+    if known.is_none() {
+        ui.multiply_opacity(0.55);
+    }
+    let hz = figures.enbw_bins * shared.spacing_hz;
+    let side_lobe = figure::fixed(figures.side_lobe_db, 1);
+    widget::quiet(ui, format!("ENBW {} Hz  ·  highest side lobe {side_lobe} dB", figure::significant(hz, 3)));
 }
 
 /// The window's shape in few points, kept from frame to frame.
-fn shape_of(ui: &Ui, window: &Window) -> std::sync::Arc<Vec<f32>> {
+pub(super) fn shape_of(ui: &Ui, window: &Window) -> std::sync::Arc<Vec<f32>> {
     let key = egui::Id::unique(("shape", window.to_string()));
     if let Some(kept) = ui.data(|d| d.get_temp::<std::sync::Arc<Vec<f32>>>(key)) {
         return kept;

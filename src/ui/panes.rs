@@ -2,10 +2,11 @@
 
 use eframe::egui::{self, Rect, ScrollArea, Sense, Ui, UiBuilder, pos2, vec2};
 
+use super::action::Action;
 use super::desk::Desk;
 use super::plot::Axis;
 use super::view::{Intent, Intents, View, frequency_range};
-use super::{pane, pane_menu, theme};
+use super::{pane, theme};
 use crate::session::{FrequencyAxis, MAX_PANES};
 use crate::units::{Scale, from_db};
 
@@ -124,6 +125,12 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
     }
     ScrollArea::vertical().id_salt("panes").auto_shrink(false).show(ui, |ui| {
         let (rect, _) = ui.allocate_exact_size(vec2(ui.available_width() - 8.0, total), Sense::hover());
+        if let Some(id) = view.reveal_pane.take()
+            && let Some(place) = shown.iter().position(|&i| panes.get(i).is_some_and(|p| p.id == id))
+        {
+            let top = rect.top() + (place / columns) as f32 * (height + GAP);
+            ui.scroll_to_rect(Rect::from_x_y_ranges(rect.x_range(), top..=top + height), None);
+        }
         lay(ui, rect, (columns, height), &shown, desk, view, &shared, intents);
     });
 }
@@ -165,9 +172,9 @@ fn free_cell(ui: &mut Ui, rect: Rect, intents: &mut Intents) {
     let place = Rect::from_center_size(rect.center(), vec2(110.0, 28.0));
     let mut inner = ui.new_child(UiBuilder::new().max_rect(place).id_salt("free cell"));
     inner.vertical_centered(|ui| {
-        ui.menu_button("Add pane", |ui| {
-            pane_menu::choose(ui, |w| intents.push(Intent::Change(crate::session::Command::AddPane(w))));
-        });
+        if ui.button("Add a pane").clicked() {
+            intents.push(Intent::Do(Action::AddPane));
+        }
     });
 }
 

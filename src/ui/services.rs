@@ -52,6 +52,8 @@ pub struct Services {
     pub recent: Option<PathBuf>,
     /// The folder of recovery files; `None`: nothing is kept for recovery.
     pub recovery: Option<PathBuf>,
+    /// The file that keeps theme and sizes; `None`: they are not kept.
+    pub preferences: Option<PathBuf>,
     /// Where to look for the demonstration capture.
     pub demonstration: Option<PathBuf>,
 }
@@ -66,6 +68,7 @@ impl Services {
             picker: Arc::new(DesktopPicker),
             recent: recent_file().ok(),
             recovery: recovery_dir().ok(),
+            preferences: recent_file().ok().map(|file| file.with_file_name("preferences.ron")),
             demonstration: demonstration(),
         }
     }

@@ -2,11 +2,12 @@
 
 use eframe::egui::{self, ComboBox, RichText, ScrollArea, TextEdit, Ui};
 
+use super::action::Action;
 use super::desk::Desk;
-use super::setup_scale;
 use super::view::{Intent, Intents, View};
 use super::widget::{number, quiet, row, section};
-use super::{figure, pane_menu, theme};
+use super::{figure, theme};
+use super::{setup_rate, setup_scale, setup_search};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, Note, ViewAxes};
 use crate::signal::{Removal, Span};
 
@@ -19,8 +20,10 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
         ui.set_max_width(WIDTH - 24.0);
         ui.spacing_mut().combo_width = 120.0;
         setup_scale::show(ui, desk, intents);
+        setup_rate::show(ui, desk, intents);
         segments(ui, desk, view, intents);
         panes(ui, desk, intents);
+        setup_search::show(ui, desk, intents);
         notes(ui, desk, intents);
         ui.add_space(12.0);
     });
@@ -156,10 +159,10 @@ fn panes(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
         });
     }
     ui.add_enabled_ui(desk.session.panes.len() < MAX_PANES, |ui| {
-        let (response, _) = egui::containers::menu::MenuButton::new("Add a window").ui(ui, |ui| {
-            pane_menu::choose(ui, |window| intents.push(Intent::Change(Command::AddPane(window))));
-        });
-        response.on_disabled_hover_text("Eight panes are the most: remove one first.");
+        let response = ui.button("Add a window");
+        if response.on_disabled_hover_text("Eight panes are the most: remove one first.").clicked() {
+            intents.push(Intent::Do(Action::AddPane));
+        }
     });
     frequency(ui, desk, intents);
 }

@@ -1,5 +1,7 @@
 //! The tone table: a row a tone, a column a pane.
 
+use std::cell::RefCell;
+
 use eframe::egui::{
     self, Align, Align2, Key, Layout, Modifiers, Rect, Response, Role, ScrollArea, Sense, Ui, WidgetInfo, pos2, vec2,
 };
@@ -14,6 +16,10 @@ use crate::reading::{PaneFacts, PaneReading, Reading, ReadingState, Tone, Verdic
 use crate::session::Command;
 
 const ROW: f32 = 24.0;
+/// Width of the first column.
+const FREQUENCY: f32 = 78.0;
+/// In less room uncertainties are left to the report.
+const NARROW: f32 = 900.0;
 
 /// Shows the table; figures that are not those asked for are dimmed.
 pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
@@ -29,10 +35,17 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
         ui.label("No tone stands over the floor of this segment. Mark a longer one, or name a tone at the hairline.");
         return;
     }
-    let table =
-        Table { desk, reading: &reading, picked: picked_row(&reading, desk), palette: theme::palette(ui.ctx()) };
+    let table = Table {
+        desk,
+        reading: &reading,
+        picked: picked_row(&reading, desk),
+        palette: theme::palette(ui.ctx()),
+        narrow: ui.available_width() < NARROW,
+        frequencies: RefCell::default(),
+    };
     ScrollArea::horizontal().id_salt("tone table, sideways").auto_shrink(false).show(ui, |ui| {
         table.show(ui, view, intents);
+        table.keep_frequencies_in_sight(ui);
     });
 }
 
@@ -61,6 +74,10 @@ struct Table<'a> {
     reading: &'a Reading,
     picked: Option<usize>,
     palette: &'static Palette,
+    /// There is no room for uncertainties beside levels.
+    narrow: bool,
+    /// Where frequencies stand, and what they are: they are written again where the table is scrolled sideways.
+    frequencies: RefCell<Vec<(Rect, String, bool)>>,
 }
 
 impl Table<'_> {
@@ -69,55 +86,86 @@ impl Table<'_> {
         // Chosen figures stay in ink.
         ui.visuals_mut().selection.stroke.color = self.palette.ink;
         let has_verdicts = self.reading.tones.iter().any(|t| t.verdict.is_some());
-        let has_spread = self.reading.tones.iter().any(|t| t.amplitude_u95.is_some());
+        let has_spread = !self.narrow && self.reading.tones.iter().any(|t| t.amplitude_u95.is_some());
         let n_panes = self.reading.panes.len();
+        let heads = self.heads(has_verdicts);
         let mut builder = TableBuilder::new(ui)
             .id_salt(("tone table", n_panes, has_verdicts, has_spread))
             .sense(Sense::click())
             .auto_shrink(false)
             .cell_layout(Layout::right_to_left(Align::Center))
-            .column(Column::exact(86.0))
-            .column(Column::exact(if has_spread { 164.0 } else { 116.0 }))
-            .column(Column::exact(66.0));
+            .column(Column::exact(FREQUENCY))
+            .column(Column::exact(if has_spread { 150.0 } else { 104.0 }))
+            .column(Column::exact(58.0));
         if has_verdicts {
-            builder = builder.column(Column::exact(84.0));
+            builder = builder.column(Column::exact(80.0));
         }
-        builder = builder.column(Column::exact(98.0));
         for pane in &self.reading.panes {
-            builder = builder.column(Column::exact((pane.window.len() as f32 * 7.2 + 10.0).max(88.0)));
+            builder = builder.column(Column::exact((pane.window.len() as f32 * 6.2 + 8.0).clamp(88.0, 130.0)));
         }
-        builder = builder.column(Column::remainder().at_least(70.0).clip(true));
+        builder = builder.column(Column::exact(80.0)).column(Column::remainder().at_least(70.0).clip(true));
         if std::mem::take(&mut view.reveal_pick)
             && let Some(row) = self.picked
         {
             builder = builder.scroll_to_row(row, None);
         }
-        builder.header(ROW, |row| self.head(row, has_verdicts)).body(|body| {
+        builder.header(ROW, |row| self.head(row, &heads)).body(|body| {
             body.rows(ROW, self.reading.tones.len(), |row| self.row(row, has_verdicts, view, intents));
         });
     }
 
-    fn head(&self, mut row: TableRow<'_, '_>, has_verdicts: bool) {
+    /// What stands over the columns, but for the last.
+    fn heads(&self, has_verdicts: bool) -> Vec<String> {
         let scale = &self.reading.scale;
         let level = format!("level, {} {}", scale.unit, scale.detector.title());
         let mut heads = vec!["frequency, Hz".to_owned(), level, "level, dB".to_owned()];
         if has_verdicts {
             heads.push("verdict".to_owned());
         }
-        heads.push("agreement, dB".to_owned());
         heads.extend(self.reading.panes.iter().map(PaneFacts::written));
-        heads.resize(self.reading.panes.len() + 4 + usize::from(has_verdicts), String::new());
-        for head in heads {
+        heads.resize(self.reading.panes.len() + 3 + usize::from(has_verdicts), String::new());
+        heads.push("agreement, dB".to_owned());
+        heads
+    }
+
+    fn head(&self, mut row: TableRow<'_, '_>, heads: &[String]) {
+        let quiet = |text: &str| egui::RichText::new(text).font(theme::quiet()).color(self.palette.quiet);
+        for (column, head) in heads.iter().enumerate() {
             row.col(|ui| {
-                ui.add(egui::Label::new(egui::RichText::new(head).color(self.palette.quiet)).truncate());
+                if column == 0 {
+                    self.frequencies.borrow_mut().push((ui.max_rect(), head.clone(), false));
+                }
+                ui.add(egui::Label::new(quiet(head)).truncate());
             });
         }
         row.col(|ui| {
             ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
                 ui.add_space(12.0);
-                ui.label(egui::RichText::new("note").color(self.palette.quiet));
+                ui.label(quiet("note"));
             });
         });
+    }
+
+    /// Scrolled sideways, the frequencies stay at the left edge, on paper of their own.
+    fn keep_frequencies_in_sight(&self, ui: &Ui) {
+        let frequencies = self.frequencies.borrow();
+        let (Some((head, ..)), sight) = (frequencies.first(), ui.clip_rect()) else { return };
+        if head.left() >= sight.left() - 0.5 {
+            return;
+        }
+        let strip = Rect::from_x_y_ranges(sight.left()..=sight.left() + FREQUENCY + 6.0, sight.y_range());
+        let below = Rect::from_min_max(pos2(strip.left(), head.bottom()), strip.max);
+        for (i, (cell, text, picked)) in frequencies.iter().enumerate() {
+            let painter = ui.painter().with_clip_rect(if i == 0 { strip } else { below.intersect(sight) });
+            let place = Rect::from_x_y_ranges(strip.x_range(), cell.y_range());
+            painter.rect_filled(place, 0.0, if *picked { self.palette.selection } else { self.palette.paper });
+            let (font, ink) =
+                if i == 0 { (theme::quiet(), self.palette.quiet) } else { (theme::body(), self.palette.ink) };
+            let at = pos2(strip.left() + FREQUENCY, place.center().y);
+            widget::write(&painter, at, Align2::RIGHT_CENTER, text, font, ink);
+        }
+        let rule = egui::Stroke::new(1.0, self.palette.rule);
+        ui.painter().with_clip_rect(sight).vline(strip.right(), strip.y_range(), rule);
     }
 
     fn row(&self, mut row: TableRow<'_, '_>, has_verdicts: bool, view: &mut View, intents: &mut Intents) {
@@ -126,16 +174,18 @@ impl Table<'_> {
         let spacing = self.desk.line_spacing_hz();
         row.set_selected(self.picked == Some(index));
         let frequency = figure::hertz(tone.frequency_hz, spacing);
-        row.col(|ui| drop(ui.add(egui::Label::new(&frequency).selectable(false))));
+        row.col(|ui| {
+            let place = (ui.max_rect(), frequency.clone(), self.picked == Some(index));
+            self.frequencies.borrow_mut().push(place);
+            ui.add(egui::Label::new(&frequency).selectable(false));
+        });
         let detector = self.reading.scale.detector.of_unit_peak();
         let (level, spread) = figure::with_uncertainty(tone.level, tone.amplitude_u95.map(|u| u * detector));
-        row.col(|ui| self.figure(ui, &level, &spread));
+        row.col(|ui| self.figure(ui, &level, if self.narrow { "" } else { &spread }));
         row.col(|ui| self.figure(ui, &figure::fixed(tone.level_db, 2), ""));
         if has_verdicts {
             row.col(|ui| self.verdict(ui, tone));
         }
-        let agreement = tone.agreement_db.map_or_else(|| "–".to_owned(), |a| figure::fixed(a, 3));
-        row.col(|ui| drop(ui.add(egui::Label::new(agreement).selectable(false))));
         let mut chosen: Option<Option<usize>> = None;
         for (pane, reading) in tone.readings.iter().enumerate() {
             row.col(|ui| {
@@ -144,6 +194,8 @@ impl Table<'_> {
                 }
             });
         }
+        let agreement = tone.agreement_db.map_or_else(|| "–".to_owned(), |a| figure::fixed(a, 3));
+        row.col(|ui| drop(ui.add(egui::Label::new(agreement).selectable(false))));
         row.col(|ui| self.note(ui, tone, spacing));
         let response = row.response();
         let name = format!("Tone {frequency} Hz");
@@ -192,7 +244,10 @@ impl Table<'_> {
         view: &View,
     ) -> Response {
         let rect = ui.available_rect_before_wrap();
-        let response = ui.interact(rect, egui::Id::unique(("cell", cell.tone, cell.pane)), Sense::click());
+        // What the frequencies cover when the table is scrolled sideways is not to be clicked.
+        let sight = ui.clip_rect();
+        let free = Rect::from_min_max(pos2(rect.left().max(sight.left() + FREQUENCY + 6.0), rect.top()), rect.max);
+        let response = ui.interact(free, egui::Id::unique(("cell", cell.tone, cell.pane)), Sense::click());
         let level = figure::fixed(reading.level_db, 2);
         let word = reading.state.word();
         let window = &reading.window;

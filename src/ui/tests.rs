@@ -51,9 +51,10 @@ fn opened(path: &str) -> Outcome {
 
 /// A screen whose threads have not started, with a capture on the desk.
 fn bench() -> Workbench {
-    let services = Services { picker: Arc::new(Nobody), recent: None, recovery: None, demonstration: None };
+    let services =
+        Services { picker: Arc::new(Nobody), recent: None, recovery: None, preferences: None, demonstration: None };
     let mut bench = Workbench::new(services);
-    bench.desk = Some(Desk::fresh(1, Arc::new(capture("pump.wav"))));
+    bench.desk = Some(Desk::fresh(1, Arc::new(capture("pump.wav")), |_| {}));
     bench.n_opened = 1;
     bench
 }
@@ -242,7 +243,7 @@ fn of_the_columns_a_strip_wants_while_it_moves_only_the_newest_are_read() {
     bench.logic(&ctx);
     let slow = Arc::new(Slow::default());
     let capture = Capture { source: Arc::<Slow>::clone(&slow), ..capture("pump.wav") };
-    bench.desk = Some(Desk::fresh(1, Arc::new(capture)));
+    bench.desk = Some(Desk::fresh(1, Arc::new(capture), |_| {}));
     for i in 0..30 {
         bench.view.strip_cache.want((f64::from(i), 100.0));
         bench.read_columns();
@@ -288,18 +289,18 @@ fn a_suggestion_marks_only_what_nobody_has_touched() {
     let marked = |bench: &Workbench| bench.session().unwrap().segments[0].span;
     let mut fresh = bench();
     fresh.change(Command::Pick(Some(3.0)));
-    take(&mut fresh, Event::Suggested(1, span));
+    take(&mut fresh, Event::Suggested((1, 0), span));
     assert_eq!(marked(&fresh), span);
 
     let mut edited = bench();
     let whole = marked(&edited);
     edit(&mut edited);
-    take(&mut edited, Event::Suggested(1, span));
+    take(&mut edited, Event::Suggested((1, 0), span));
     assert_eq!(marked(&edited), whole, "undoing the change would take the span back too");
 
     let mut loaded = bench();
     let session = loaded.session().unwrap().clone();
     loaded.desk = Some(Desk::with_session(1, Arc::new(capture("pump.wav")), session, None));
-    take(&mut loaded, Event::Suggested(1, span));
+    take(&mut loaded, Event::Suggested((1, 0), span));
     assert_eq!(marked(&loaded), whole, "a recovered session is as it was left");
 }

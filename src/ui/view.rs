@@ -3,9 +3,13 @@
 use std::path::PathBuf;
 
 use super::action::Action;
+use super::chooser::Choosing;
+use super::merits::Merits;
+use super::overlay::KernelCache;
 use super::plot::CurveCache;
 use super::strip::StripCache;
 use crate::session::{Command, PaneId, ViewAxes};
+use crate::window::Window;
 
 /// Something a panel wants done. Panels only push these; they are carried out in one place after the panels.
 #[derive(Debug)]
@@ -62,6 +66,16 @@ pub(super) struct View {
     pub(super) card_pane: Option<usize>,
     /// Whether the picked tone's row has to be brought into sight.
     pub(super) reveal_pick: bool,
+    /// The window being chosen.
+    pub(super) choosing: Option<Choosing>,
+    /// The window whose kernel is drawn over a pane in this frame.
+    pub(super) preview: Option<(PaneId, Window)>,
+    /// A pane to bring into sight.
+    pub(super) reveal_pane: Option<PaneId>,
+    /// Figures of windows.
+    pub(super) merits: Merits,
+    /// The kernel last drawn.
+    pub(super) kernels: KernelCache,
     /// Columns of curves.
     pub(super) curves: CurveCache,
     /// Columns of the strip.
@@ -85,6 +99,11 @@ impl Default for View {
             enlarged: None,
             card_pane: None,
             reveal_pick: false,
+            choosing: None,
+            preview: None,
+            reveal_pane: None,
+            merits: Merits::default(),
+            kernels: KernelCache::default(),
             curves: CurveCache::default(),
             strip_cache: StripCache::default(),
             typed_path: String::new(),
@@ -98,6 +117,7 @@ impl View {
         let old = std::mem::take(self);
         self.setup_open = old.setup_open;
         self.in_samples = old.in_samples;
+        self.merits = old.merits;
     }
 }
 

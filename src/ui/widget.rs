@@ -56,6 +56,26 @@ pub(super) fn number(
     Typed { value, changed: response.changed(), ended: response.drag_stopped() || response.lost_focus() }
 }
 
+/// A text field that is taken when it is left, not while it is typed in: gives the text then. Esc leaves it as it was.
+pub(super) fn text_when_left(
+    ui: &mut Ui,
+    key: Id,
+    current: &str,
+    shape: impl for<'a> FnOnce(egui::TextEdit<'a>) -> egui::TextEdit<'a>,
+) -> (Response, Option<String>) {
+    let mut text = ui.data(|d| d.get_temp::<String>(key)).unwrap_or_else(|| current.to_owned());
+    let response = ui.add(shape(egui::TextEdit::singleline(&mut text)));
+    if response.changed() {
+        ui.data_mut(|d| d.insert_temp(key, text.clone()));
+    }
+    if !response.lost_focus() {
+        return (response, None);
+    }
+    ui.data_mut(|d| d.remove_temp::<String>(key));
+    let taken = !ui.input(|i| i.key_pressed(egui::Key::Escape)) && text != current;
+    (response, taken.then_some(text))
+}
+
 /// Draws the mark of a reading's state: a disc is clear, a ring is crowded, a short bar is under a skirt, a dot is
 /// below the floor.
 pub(super) fn state_mark(painter: &Painter, at: Pos2, state: ReadingState, ink: Color32) {
@@ -117,6 +137,14 @@ pub(super) fn write(
     colour: Color32,
 ) -> Rect {
     painter.text(at, anchor, text, font, colour)
+}
+
+/// Writes text from `at`, its left end half-way up, in one line no longer than `width`; what is cut off becomes dots.
+pub(super) fn write_cut(painter: &Painter, at: Pos2, width: f32, text: &str, font: egui::FontId, colour: Color32) {
+    let mut job = egui::text::LayoutJob::simple_singleline(text.to_owned(), font, colour);
+    job.wrap = egui::text::TextWrapping::truncate_at_width(width);
+    let galley = painter.layout_job(job);
+    painter.galley(pos2(at.x, at.y - 0.5 * galley.size().y), galley, colour);
 }
 
 /// The size a text takes in one line.

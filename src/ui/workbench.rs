@@ -15,16 +15,15 @@ use super::keep::Saving;
 use super::lane::Lane;
 use super::menu::Menus;
 use super::notice::Notices;
+use super::preferences::Preferences;
 use super::services::Services;
+use super::survey::fit_axes_at_first;
 use super::view::{Intent, Intents, View};
 use super::worker::Worker;
-use super::{card, dialog, empty, panes, setup, status, strip, table, theme};
+use super::{card, chooser, dialog, empty, panes, setup, status, strip, table, theme};
 use crate::reading::Reading;
 use crate::session::{RecentFile, Session};
 use crate::signal::Watch;
-
-/// A document that was changed is kept for recovery so long after.
-pub(super) const AUTOSAVE_AFTER: Duration = Duration::from_secs(3);
 
 /// The threads, started with the first frame, when there is something to wake.
 #[derive(Debug)]
@@ -38,6 +37,8 @@ pub(super) struct Threads {
     pub(super) strip: Lane<Event>,
     /// Reading captures through.
     pub(super) survey: Lane<Event>,
+    /// Figures of windows.
+    pub(super) figures: Lane<Event>,
     /// The desktop's dialogs.
     pub(super) dialogs: Lane<Event>,
 }
@@ -84,6 +85,10 @@ pub struct Workbench {
     pub(super) autosave_due: Option<Instant>,
     /// Whether the window may close.
     pub(super) may_close: bool,
+    /// Theme and sizes as they were last seen; `None` until they are read from their file.
+    pub(super) preferences: Option<Preferences>,
+    /// When they have to be written.
+    pub(super) preferences_due: Option<Instant>,
     title: String,
 }
 
@@ -110,6 +115,8 @@ impl Workbench {
             saving: Saving::default(),
             autosave_due: None,
             may_close: false,
+            preferences: None,
+            preferences_due: None,
             title: String::new(),
         }
     }
@@ -154,11 +161,17 @@ impl Workbench {
     /// A regular end: nothing is offered for recovery at the next start.
     pub fn finish(&self) {
         self.slot.finish();
+        if let (Some(_), Some(now), Some(file)) = (&self.preferences_due, &self.preferences, &self.services.preferences)
+        {
+            // What cannot be kept is set anew next time.
+            let _ = now.save(file);
+        }
     }
 
     /// What goes on without drawing: answers of the threads, dropped files, autosave, the question on closing.
     pub fn logic(&mut self, ctx: &Context) {
         self.start_threads(ctx);
+        self.keep_preferences(ctx);
         if let Some(path) = self.waiting.take() {
             self.want_open(&path);
         }
@@ -185,12 +198,15 @@ impl Workbench {
             let typing = ui.ctx().text_edit_focused();
             intents.extend(action::pressed(ui.ctx(), typing).into_iter().map(Intent::Do));
         }
+        self.view.preview = None;
         self.panels(ui, &mut intents);
         for intent in intents {
             self.carry_out(ui.ctx(), intent);
         }
         self.submit();
+        self.survey();
         self.read_columns();
+        self.read_figures();
         if let Some(shown) = self.dialogs.take_if(|_| true) {
             match dialog::show(ui.ctx(), shown) {
                 Ok(open) => self.dialogs.interrupt(open),
@@ -242,7 +258,8 @@ impl Workbench {
         let lane = |name: &str| Lane::start(name, self.sender.clone(), wake(), || Event::Said(UNFORESEEN.to_owned()));
         let started = Worker::start(wake()).and_then(|worker| {
             let (opening, files, strip) = (lane("opening")?, lane("files")?, lane("strip")?);
-            Ok(Threads { worker, opening, files, strip, survey: lane("survey")?, dialogs: lane("dialogs")? })
+            let (survey, figures, dialogs) = (lane("survey")?, lane("figures")?, lane("dialogs")?);
+            Ok(Threads { worker, opening, files, strip, survey, figures, dialogs })
         });
         match started {
             Ok(threads) => {
@@ -281,6 +298,7 @@ impl Workbench {
         let (Some(desk), Some(threads)) = (&mut self.desk, &self.threads) else { return };
         let request = desk.request();
         if desk.latest.asked.as_ref().is_some_and(|(_, asked)| *asked == request) {
+            fit_axes_at_first(desk);
             return;
         }
         let curves = desk.latest.reusable(&request);
@@ -291,28 +309,15 @@ impl Workbench {
         desk.latest.called_off = false;
     }
 
-    fn autosave(&mut self, ctx: &Context) {
-        let Some(due) = self.autosave_due else { return };
-        let left = due.saturating_duration_since(Instant::now());
-        if !left.is_zero() {
-            ctx.request_repaint_after(left);
-            return;
+    /// Has figures of windows computed that are shown as soon as they are there.
+    fn read_figures(&mut self) {
+        let Some(threads) = &self.threads else { return };
+        for wanted in self.view.merits.wanted() {
+            threads.figures.run(move |tell| {
+                let (key, figures) = wanted.compute();
+                tell(Event::Figures(key, figures));
+            });
         }
-        self.autosave_due = None;
-        let (Some(desk), Some(threads), Some(folder)) = (&self.desk, &self.threads, &self.services.recovery) else {
-            return;
-        };
-        let slot = self.slot.clone();
-        if !desk.is_unsaved() {
-            threads.files.run(move |_| slot.clear());
-            return;
-        }
-        let (folder, session, file) = (folder.clone(), desk.session.clone(), desk.file.clone());
-        threads.files.run(move |tell| {
-            if let Some(event) = slot.keep(&folder, &session, file.as_deref()) {
-                tell(event);
-            }
-        });
     }
 
     fn name_window(&mut self, ctx: &Context) {
@@ -333,15 +338,31 @@ fn bench(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents, paper
         strip::show(ui, desk, view, intents);
     });
     let height = ui.available_height();
-    let table_height = (height * 0.3).clamp(118.0, 260.0);
+    let beside = ui.available_width() >= card::BESIDE;
+    let table_height = (height * if beside { 0.3 } else { 0.38 }).clamp(118.0, 260.0);
+    if view.choosing.is_some() {
+        let height = (height * 0.46).clamp(210.0, 440.0);
+        let bottom = Panel::bottom("choosing").resizable(true).default_size(height).size_range(150.0..=600.0);
+        bottom.frame(paper(8, 6)).show(ui, |ui| {
+            chooser::show(ui, desk, view, intents);
+            ui.take_available_space();
+        });
+        CentralPanel::default().frame(paper(8, 4)).show(ui, |ui| panes::show(ui, desk, view, intents));
+        return;
+    }
     let bottom = Panel::bottom("tones").resizable(true).default_size(table_height).size_range(96.0..=height * 0.7);
     bottom.frame(paper(8, 6)).show(ui, |ui| {
         status::figures(ui, desk, view, intents);
         if let Some(reading) = desk.reading().cloned()
             && card::chosen(&reading, desk, view).is_some()
         {
-            let card = Panel::right("card").resizable(false).exact_size(card::WIDTH).frame(paper(8, 0));
-            card.show(ui, |ui| card::show(ui, desk, view, &reading));
+            if beside {
+                let card = Panel::right("card").resizable(false).exact_size(card::WIDTH).frame(paper(8, 0));
+                card.show(ui, |ui| card::show(ui, desk, view, &reading));
+            } else {
+                let card = Panel::bottom("card below").resizable(false).exact_size(card::HEIGHT).frame(paper(0, 6));
+                card.show(ui, |ui| card::show_below(ui, desk, view, &reading));
+            }
         }
         CentralPanel::no_frame().show(ui, |ui| table::show(ui, desk, view, intents));
         ui.take_available_space();

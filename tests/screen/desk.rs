@@ -54,7 +54,8 @@ impl Desk {
             picker: Arc::<Answers>::clone(&self.picker),
             recent: Some(self.path("recent.ron")),
             recovery: Some(self.path("recovery")),
-            demonstration: Some(self.path("pump.wav")),
+            preferences: Some(self.path("preferences.ron")),
+            demonstration: Some(self.path("demonstration.wav")),
         }
     }
 
@@ -85,8 +86,13 @@ impl Desk {
     }
 }
 
-/// Writes the invented capture: a quiet start, then the tones, 24-bit.
+/// Writes the invented capture: the tones in a little noise, half as strong on the second channel, 24-bit.
 pub(crate) fn write_capture(path: &Path, gain: f64) {
+    write_channels(path, |_, x| [gain * x, gain * x / 2.0]);
+}
+
+/// Writes what `channels` makes of the tones and of the time in seconds.
+pub(crate) fn write_channels(path: &Path, channels: impl Fn(f64, f64) -> [f64; 2]) {
     let spec = hound::WavSpec {
         channels: 2,
         sample_rate: RATE_HZ,
@@ -100,9 +106,9 @@ pub(crate) fn write_capture(path: &Path, gain: f64) {
         state = state.wrapping_mul(1_664_525).wrapping_add(1_013_904_223);
         let noise = (f64::from(state >> 8) / f64::from(1 << 24) - 0.5) * 2e-4;
         let tones: f64 = TONES.iter().map(|(hz, a)| a * (std::f64::consts::TAU * hz * t).sin()).sum();
-        let x = (gain * (0.9 * tones + noise) * 8_388_607.0).round() as i32;
-        writer.write_sample(x).unwrap();
-        writer.write_sample(x / 2).unwrap();
+        for x in channels(t, 0.9 * tones + noise) {
+            writer.write_sample((x * 8_388_607.0).round() as i32).unwrap();
+        }
     }
     writer.finalize().unwrap();
 }
@@ -193,12 +199,41 @@ impl Screen<'_> {
 
     /// Types a number into the field of that name.
     pub(crate) fn type_number(&mut self, label: &str, text: &str) {
+        self.harness.get_by_role_and_label(egui::Role::SpinButton, label).scroll_to_me();
+        // Scrolling glides.
+        self.harness.run_steps(8);
         self.harness.get_by_role_and_label(egui::Role::SpinButton, label).click();
         self.harness.step();
         self.harness.step();
         self.key(Modifiers::COMMAND, Key::A);
         self.harness.event(Event::Text(text.to_owned()));
         self.harness.step();
+        self.key(Modifiers::NONE, Key::Enter);
+        self.settle();
+    }
+
+    /// Marks a window in the list that is chosen from.
+    pub(crate) fn choose(&mut self, window: &str) {
+        let start = format!("{window}: ENBW");
+        let row = self.harness.get_by(move |node| {
+            node.role() == egui::Role::Button && node.label().is_some_and(|label| label.starts_with(&start))
+        });
+        row.click_accesskit();
+        self.harness.step();
+        self.harness.step();
+    }
+
+    /// Types a text in the place of what stands in the field of that name.
+    pub(crate) fn type_text(&mut self, label: &str, text: &str) {
+        self.harness.get_by_role_and_label(egui::Role::TextInput, label).click();
+        self.harness.step();
+        self.harness.step();
+        self.key(Modifiers::COMMAND, Key::A);
+        self.key(Modifiers::NONE, Key::Delete);
+        if !text.is_empty() {
+            self.harness.event(Event::Text(text.to_owned()));
+            self.harness.step();
+        }
         self.key(Modifiers::NONE, Key::Enter);
         self.settle();
     }

@@ -94,8 +94,8 @@ fn a_pane_is_added_its_parameter_changed_and_the_curve_follows() {
     let mut screen = desk.open("pump.wav");
     assert_eq!(screen.session().panes.len(), 6);
     screen.click("Add a window");
-    screen.harness.get_by_role_and_label(Role::Button, "kaiser").click_accesskit();
-    screen.harness.step();
+    screen.choose("kaiser=8.6");
+    screen.click("Take kaiser=8.6");
     screen.settle();
     let session = screen.session();
     assert_eq!((session.panes.len(), session.panes[6].window.name()), (7, "kaiser"));

@@ -3,8 +3,10 @@
 
 #![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used)]
 
+mod choosing;
 mod desk;
 mod journey;
 mod keeping;
+mod opening;
 mod setup;
 mod typing;

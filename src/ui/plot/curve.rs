@@ -63,6 +63,8 @@ impl CurveCache {
 pub(crate) struct Trace {
     pub(crate) colour: Color32,
     pub(crate) dashed: bool,
+    /// Of the stroke, in points.
+    pub(crate) width: f32,
     /// Added to every value before it meets the axis.
     pub(crate) offset: f64,
 }
@@ -70,7 +72,7 @@ pub(crate) struct Trace {
 /// Draws columns as one stroke that goes through the least and the greatest of each; `left` is the first column's
 /// left edge and `width` a column's width, in points.
 pub(crate) fn draw_trace(painter: &Painter, columns: &[Extent], (left, width): (f32, f32), level: &Axis, trace: Trace) {
-    let stroke = Stroke::new(1.25, trace.colour);
+    let stroke = Stroke::new(trace.width, trace.colour);
     for points in strokes(columns, (left, width), level, trace.offset) {
         if trace.dashed {
             painter.extend(Shape::dashed_line(&points, stroke, 6.0, 3.0));

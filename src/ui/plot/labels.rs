@@ -5,6 +5,9 @@ use eframe::egui::{Pos2, Rect, Vec2, pos2};
 /// How far a label stands from the mark it belongs to.
 const AWAY: f32 = 6.0;
 
+/// A label stands at most so many rows above its mark.
+const ROWS_OFF: usize = 3;
+
 /// Finds a place for each label, the first served first: beside its mark, inside `area`, clear of the labels placed
 /// before it, of marks and of `taken`. `None` where there is no such place.
 pub(crate) fn place(area: Rect, marks: &[(Pos2, Vec2)], taken: &[Rect]) -> Vec<Option<Rect>> {
@@ -27,18 +30,22 @@ pub(crate) fn place(area: Rect, marks: &[(Pos2, Vec2)], taken: &[Rect]) -> Vec<O
     placed
 }
 
-/// Places beside a mark, best first.
-fn candidates(mark: Pos2, size: Vec2) -> [Rect; 6] {
+/// Places beside a mark, best first; the last ones stand off above it.
+fn candidates(mark: Pos2, size: Vec2) -> Vec<Rect> {
     let (w, h) = (size.x, size.y);
-    [
+    let beside = [
         pos2(mark.x + AWAY, mark.y - h / 2.0),
         pos2(mark.x - AWAY - w, mark.y - h / 2.0),
         pos2(mark.x + AWAY - 2.0, mark.y - h - 3.0),
         pos2(mark.x - AWAY + 2.0 - w, mark.y - h - 3.0),
         pos2(mark.x - w / 2.0, mark.y - h - AWAY),
         pos2(mark.x + AWAY, mark.y + 3.0),
-    ]
-    .map(|min| Rect::from_min_size(min, size))
+    ];
+    let off = (1..=ROWS_OFF).flat_map(|row| {
+        let y = mark.y - AWAY - h - row as f32 * (h + 2.0);
+        [mark.x - w / 2.0, mark.x - 4.0, mark.x + 4.0 - w].map(|x| pos2(x, y))
+    });
+    beside.into_iter().chain(off).map(|min| Rect::from_min_size(min, size)).collect()
 }
 
 #[cfg(test)]
