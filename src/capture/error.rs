@@ -1,13 +1,32 @@
 //! Why a capture cannot be opened.
 
+use std::io::{Error, ErrorKind};
 use std::path::PathBuf;
+
+/// What the system said of a file or folder, and what to do about it, in words without its error numbers.
+pub fn plainly(reason: &Error) -> String {
+    let (what, advice) = match reason.kind() {
+        ErrorKind::NotFound => ("there is no such file or folder", "check the path"),
+        ErrorKind::NotADirectory => ("a part of the path is not a folder", "check the path"),
+        ErrorKind::InvalidFilename => ("the name is one that the system cannot have", "check the path"),
+        ErrorKind::IsADirectory => ("it is a folder", "give a file"),
+        ErrorKind::PermissionDenied => {
+            ("the system does not allow it", "check the permission of the file and of its folder")
+        }
+        ErrorKind::ReadOnlyFilesystem => ("the disk can only be read", "choose another place"),
+        ErrorKind::StorageFull | ErrorKind::QuotaExceeded => ("the disk is full", "make room or choose another place"),
+        ErrorKind::Interrupted => ("it was broken off", "try again"),
+        _ => return format!("the system says '{reason}': check that the disk is well and connected"),
+    };
+    format!("{what}: {advice}")
+}
 
 /// Why a capture cannot be opened: one sentence that says which file, what is wrong and what to do.
 #[derive(Debug, thiserror::Error)]
 #[non_exhaustive]
 pub enum CaptureError {
     /// The system refused.
-    #[error("{}: {reason}", .path.display())]
+    #[error("{}: {}", .path.display(), plainly(.reason))]
     Io {
         /// The file.
         path: PathBuf,
@@ -74,4 +93,26 @@ pub enum CaptureError {
         /// The file.
         path: PathBuf,
     },
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn what_the_system_says_comes_with_what_to_do() {
+        for (kind, part) in [
+            (ErrorKind::NotFound, "check the path"),
+            (ErrorKind::PermissionDenied, "check the permission"),
+            (ErrorKind::StorageFull, "make room"),
+        ] {
+            let said = plainly(&kind.into());
+            assert!(said.contains(part), "{kind}: {said}");
+        }
+        let said = plainly(&Error::other("bus reset"));
+        assert!(said.contains("'bus reset': check that the disk"), "{said}");
+        let path = PathBuf::from("site/pump.wav");
+        let error = CaptureError::Io { path, reason: ErrorKind::NotFound.into() };
+        assert_eq!(error.to_string(), "site/pump.wav: there is no such file or folder: check the path");
+    }
 }

@@ -12,6 +12,6 @@ mod riff;
 mod wav;
 
 pub use damage::{Damage, segment_doubts};
-pub use error::CaptureError;
+pub use error::{CaptureError, plainly};
 pub use open::{Capture, Stamp, open};
 pub use overview::{Overview, raw_columns};

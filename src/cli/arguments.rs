@@ -4,7 +4,10 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand};
 
-use super::grammar::{SegmentWish, WindowList, detector, positive, quantity, removal, segment, tone, windows};
+use super::grammar::{
+    SegmentWish, WindowList, count, detector, duration, of_scale, positive, quantity, rate, removal, segment, tone,
+    windows,
+};
 use crate::session::HandTone;
 use crate::signal::Removal;
 use crate::units::{Detector, Quantity};
@@ -17,6 +20,7 @@ Examples:
   panewise read pump2.wav --segment 9..33 --save pump2.session.ron
   panewise recheck pump2.session.ron       compute all anew: does every figure stand?
   panewise windows                         the windows and their figures of merit
+  panewise windows --kernel hann,flat-top --duration 24 > kernels.svg
 
 Exit status: 0 done; 1 the work found a problem (a recheck that differs); 2 bad usage or input.";
 
@@ -28,7 +32,8 @@ Examples:
   panewise read pump2.session.ron --csv    read what a saved session asks for
 
 Levels are corrected for the window's gain, the place between two lines, the mirror image and
-what the removed mean took along. A reading is 'clear', 'crowded' (another tone in the pane's
+what the removed mean took along. Frequency and level of a row are those of all tones fitted together;
+a pane's columns are what its window reads. A reading is 'clear', 'crowded' (another tone in the pane's
 main lobe), 'under-skirt' (leakage of other tones moves it) or 'below-floor'.";
 
 /// From a recorded capture to a signed figure: mark a steady segment, lay several DFT windows over it side by side,
@@ -61,10 +66,10 @@ pub(super) struct ReadWish {
     pub input: PathBuf,
 
     /// Channel, counted from 1 [default: 1]
-    #[arg(long, value_name = "K", help_heading = "What to read")]
+    #[arg(long, value_name = "K", value_parser = count, allow_hyphen_values = true, help_heading = "What to read")]
     pub channel: Option<usize>,
     /// Segment in seconds (9.0..33.0) or samples (0n..4096n), END exclusive [default: the longest steady stretch]
-    #[arg(long, value_name = "START..END", value_parser = segment, help_heading = "What to read")]
+    #[arg(long, value_name = "START..END", value_parser = segment, allow_hyphen_values = true, help_heading = "What to read")]
     pub segment: Option<SegmentWish>,
     /// Windows, one a pane, 1 to 8, as 'panewise windows' lists them
     /// [default: rectangular,hann,hamming,blackman,blackman-harris,flat-top]
@@ -74,7 +79,7 @@ pub(super) struct ReadWish {
     #[arg(long, value_name = "WHAT", value_parser = removal, help_heading = "What to read")]
     pub remove: Option<Removal>,
     /// Samples a second, in place of what the file says
-    #[arg(long, value_name = "HZ", value_parser = positive, allow_negative_numbers = true, help_heading = "What to read")]
+    #[arg(long, value_name = "HZ", value_parser = rate, allow_negative_numbers = true, help_heading = "What to read")]
     pub rate: Option<f64>,
 
     #[command(flatten)]
@@ -91,6 +96,9 @@ pub(super) struct ReadWish {
     /// Save the session with its figures, for the window and for 'panewise recheck'
     #[arg(long, value_name = "NAME.session.ron", help_heading = "Output")]
     pub save: Option<PathBuf>,
+    /// Let --save replace a session that is there already
+    #[arg(long, help_heading = "Output", requires = "save")]
+    pub replace: bool,
 }
 
 #[derive(Debug, Args)]
@@ -104,19 +112,19 @@ pub(super) struct ScaleWish {
     #[arg(long, value_name = "U")]
     pub unit: Option<String>,
     /// Units per full scale
-    #[arg(long, value_name = "F", value_parser = positive, allow_negative_numbers = true, conflicts_with = "sensitivity")]
+    #[arg(long, value_name = "F", value_parser = of_scale, allow_negative_numbers = true, conflicts_with = "sensitivity")]
     pub factor: Option<f64>,
     /// Volts per unit, of the sensor with its amplifier
-    #[arg(long, value_name = "S", value_parser = positive, allow_negative_numbers = true, requires = "full_scale_volts")]
+    #[arg(long, value_name = "S", value_parser = of_scale, allow_negative_numbers = true, requires = "full_scale_volts")]
     pub sensitivity: Option<f64>,
     /// Volts at full scale of the input
-    #[arg(long, value_name = "V", value_parser = positive, allow_negative_numbers = true, requires = "sensitivity")]
+    #[arg(long, value_name = "V", value_parser = of_scale, allow_negative_numbers = true, requires = "sensitivity")]
     pub full_scale_volts: Option<f64>,
     /// What a level states: rms, peak or peak-to-peak [default: rms]
     #[arg(long, value_name = "D", value_parser = detector)]
     pub detector: Option<Detector>,
     /// Reference of levels in decibels, in the unit [default: ISO 1683's for the quantity, else 1]
-    #[arg(long, value_name = "R", value_parser = positive, allow_negative_numbers = true)]
+    #[arg(long, value_name = "R", value_parser = of_scale, allow_negative_numbers = true)]
     pub reference: Option<f64>,
 }
 
@@ -127,7 +135,7 @@ pub(super) struct SearchWish {
     #[arg(long, value_name = "HZ[,held]", value_parser = tone, allow_negative_numbers = true)]
     pub tone: Vec<HandTone>,
     /// At most so many tones; the weakest over their floor are left out [default: 200]
-    #[arg(long, value_name = "K")]
+    #[arg(long, value_name = "K", value_parser = count, allow_negative_numbers = true)]
     pub max_tones: Option<usize>,
     /// The chance that noise alone gives any tone at all [default: 0.001]
     #[arg(long, value_name = "P", value_parser = positive, allow_negative_numbers = true)]
@@ -152,6 +160,6 @@ pub(super) struct WindowsWish {
     #[arg(long, value_name = "NAME[=PARAM],...", value_parser = windows, requires = "duration")]
     pub kernel: Option<WindowList>,
     /// The segment's duration for the figure, in seconds
-    #[arg(long, value_name = "SECONDS", value_parser = positive, requires = "kernel")]
+    #[arg(long, value_name = "SECONDS", value_parser = duration, allow_negative_numbers = true, requires = "kernel")]
     pub duration: Option<f64>,
 }

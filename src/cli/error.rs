@@ -3,7 +3,7 @@
 use std::io;
 use std::path::PathBuf;
 
-use crate::capture::CaptureError;
+use crate::capture::{CaptureError, plainly};
 use crate::reading::ReadingError;
 use crate::report::ReportError;
 use crate::session::SessionError;
@@ -25,8 +25,10 @@ pub(super) enum CliError {
     Report(#[from] ReportError),
     #[error("{0}")]
     Usage(String),
-    #[error("the output could not be written: {0}")]
+    #[error("the output could not be written: {}", plainly(.0))]
     Output(io::Error),
+    #[error("{}: is there already, and may be another session: save under another name, or give --replace too", .0.display())]
+    Standing(PathBuf),
     #[error("{}: its capture {capture} is not there, nor in the session's folder: put it back, or mark it anew with 'panewise read CAPTURE'", .session.display())]
     Missing { session: PathBuf, capture: String },
     #[error("{}: its capture {} has changed since the session was saved: 'panewise recheck' lists what moved", .session.display(), .capture.display())]

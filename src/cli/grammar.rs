@@ -1,9 +1,12 @@
 //! How values are written on the command line.
 
+use std::ops::RangeInclusive;
+
+use super::usage::nearest;
 use crate::session::{HandTone, MAX_PANES};
-use crate::signal::{Removal, Span};
-use crate::units::{Detector, Quantity};
-use crate::window::Window;
+use crate::signal::{RATES_HZ, Removal, Span};
+use crate::units::{Detector, Quantity, Scale};
+use crate::window::{Window, WindowError, catalogue};
 
 /// One edge of a segment.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -25,17 +28,28 @@ pub(super) struct SegmentWish {
 pub(super) struct WindowList(pub Vec<Window>);
 
 pub(super) fn segment(text: &str) -> Result<SegmentWish, String> {
-    let shape = || "write START..END, in seconds (9.0..33.0) or in samples (0n..4096n)".to_owned();
-    let (start, end) = text.split_once("..").ok_or_else(shape)?;
-    let edge = |text: &str| {
-        let text = text.trim();
-        match text.strip_suffix('n') {
-            Some(samples) => samples.parse().ok().map(Edge::Sample),
-            None => text.parse().ok().filter(|s: &f64| s.is_finite() && *s >= 0.0).map(Edge::Seconds),
+    const SHAPE: &str = "write START..END, in seconds (9.0..33.0) or in samples (0n..4096n)";
+    let (start, end) = text.split_once("..").ok_or(SHAPE)?;
+    if end.starts_with('.') {
+        return Err(format!("three dots can be read in two ways: {SHAPE}"));
+    }
+    if [start, end].iter().any(|edge| edge.trim_start().starts_with('-')) {
+        return Err(format!("START and END must not be negative: {SHAPE}"));
+    }
+    match (edge(start).ok_or(SHAPE)?, edge(end).ok_or(SHAPE)?) {
+        (Edge::Seconds(_), Edge::Sample(_)) | (Edge::Sample(_), Edge::Seconds(_)) => {
+            Err("one edge is in samples and the other in seconds: write both with 'n' or both without".to_owned())
         }
-        .ok_or_else(shape)
-    };
-    Ok(SegmentWish { written: text.to_owned(), start: edge(start)?, end: edge(end)? })
+        (start, end) => Ok(SegmentWish { written: text.to_owned(), start, end }),
+    }
+}
+
+fn edge(text: &str) -> Option<Edge> {
+    let text = text.trim();
+    match text.strip_suffix('n') {
+        Some(samples) => samples.parse().ok().map(Edge::Sample),
+        None => text.parse().ok().filter(|s: &f64| s.is_finite() && *s >= 0.0).map(Edge::Seconds),
+    }
 }
 
 impl SegmentWish {
@@ -76,8 +90,23 @@ pub(super) fn windows(text: &str) -> Result<WindowList, String> {
     if written.len() > MAX_PANES {
         return Err(format!("{} windows are more than the {MAX_PANES} there can be panes", written.len()));
     }
-    let windows = written.iter().map(|text| Window::parse(text).map_err(|error| error.to_string()));
-    windows.collect::<Result<_, _>>().map(WindowList)
+    written
+        .iter()
+        .map(|text| Window::parse(text).map_err(|error| no_window(&error)))
+        .collect::<Result<_, _>>()
+        .map(WindowList)
+}
+
+/// Why a window cannot be had, with the one that was most likely meant.
+fn no_window(error: &WindowError) -> String {
+    let near = match error {
+        WindowError::Unknown { given } => nearest(given, catalogue().iter().map(|entry| entry.name)),
+        _ => None,
+    };
+    match near {
+        Some(near) => format!("{error}; did you mean '{near}'?"),
+        None => error.to_string(),
+    }
 }
 
 /// A hand-named tone: `124.47` or `124.47,held`.
@@ -93,6 +122,32 @@ pub(super) fn tone(text: &str) -> Result<HandTone, String> {
 pub(super) fn positive(text: &str) -> Result<f64, String> {
     let value = text.trim().parse().ok().filter(|v: &f64| v.is_finite() && *v > 0.0);
     value.ok_or_else(|| "give a number above 0".to_owned())
+}
+
+/// A number of a scale: a factor, sensitivity, voltage or reference.
+pub(super) fn of_scale(text: &str) -> Result<f64, String> {
+    within(text, Scale::LEAST..=Scale::MOST, "")
+}
+
+pub(super) fn rate(text: &str) -> Result<f64, String> {
+    within(text, RATES_HZ, " Hz")
+}
+
+/// The duration of a segment that a figure is drawn for.
+pub(super) fn duration(text: &str) -> Result<f64, String> {
+    within(text, 1e-6..=1e9, " s")
+}
+
+fn within(text: &str, range: RangeInclusive<f64>, unit: &str) -> Result<f64, String> {
+    let value = positive(text)?;
+    let (least, most) = (range.start(), range.end());
+    if range.contains(&value) { Ok(value) } else { Err(format!("give a number from {least:e} to {most:e}{unit}")) }
+}
+
+/// A number that counts, from 1 on.
+pub(super) fn count(text: &str) -> Result<usize, String> {
+    let value = text.trim().parse().ok().filter(|n: &usize| *n > 0);
+    value.ok_or_else(|| "give a whole number from 1 on".to_owned())
 }
 
 pub(super) fn quantity(text: &str) -> Result<Quantity, String> {
@@ -125,7 +180,7 @@ mod tests {
         let span = |text: &str| segment(text).unwrap().span(8192.0, 327_680);
         assert_eq!(span("9.0..33.0"), Ok(Span { start: 73_728, samples: 196_608 }));
         assert_eq!(span("0n..4096n"), Ok(Span { start: 0, samples: 4096 }));
-        assert_eq!(span("0.00006..1n"), Ok(Span { start: 0, samples: 1 }));
+        assert_eq!(span("0.00006..0.00012"), Ok(Span { start: 0, samples: 1 }));
         assert_eq!(span("0..40"), Ok(Span { start: 0, samples: 327_680 }));
     }
 
@@ -133,6 +188,14 @@ mod tests {
     fn segments_that_cannot_be() {
         for text in ["", "9", "9..", "..9", "9..x", "-1..2", "NaN..2", "0..inf", "1.5n..2n", "0n..4096nn"] {
             assert!(segment(text).is_err(), "{text}");
+        }
+        assert!(segment("9...33").unwrap_err().contains("three dots"), "9 to .33?");
+        assert!(segment("9....33").unwrap_err().contains("three dots"));
+        for mixed in ["9n..33", "9..33n"] {
+            assert!(segment(mixed).unwrap_err().contains("in samples and the other in seconds"), "{mixed}");
+        }
+        for negative in ["-1..5", "1..-5", "-9n..5n"] {
+            assert!(segment(negative).unwrap_err().contains("must not be negative"), "{negative}");
         }
         let span = |text: &str| segment(text).unwrap().span(8192.0, 327_680).unwrap_err();
         assert_eq!(span("33..9"), "segment 33..9 holds no sample: give an END after START");
@@ -147,10 +210,25 @@ mod tests {
         let written = |text: &str| windows(text).map(|l| l.0.iter().map(ToString::to_string).collect::<Vec<_>>());
         assert_eq!(written("hann, rectangular").unwrap(), ["hann", "rectangular"]);
         let error = windows("hann,no-such=4,35").unwrap_err();
-        assert!(error.contains("no-such"), "{error}");
+        assert!(error.contains("no-such") && !error.contains("did you mean"), "{error}");
+        let error = windows("hann,flattop").unwrap_err();
+        assert!(error.ends_with("'panewise windows' lists them; did you mean 'flat-top'?"), "{error}");
         assert!(windows("").is_err());
         assert!(windows("hann,").is_err());
         assert!(windows(&["hann"; 9].join(",")).unwrap_err().starts_with("9 windows are more than the 8"));
+    }
+
+    #[test]
+    fn numbers_stay_in_their_ranges() {
+        assert_eq!((of_scale("98.1"), rate("8192"), count("3")), (Ok(98.1), Ok(8192.0), Ok(3)));
+        for text in ["1e308", "1e-300"] {
+            assert_eq!(of_scale(text).unwrap_err(), "give a number from 1e-12 to 1e12");
+            assert_eq!(rate(text).unwrap_err(), "give a number from 1e-6 to 1e12 Hz");
+            assert_eq!(duration(text).unwrap_err(), "give a number from 1e-6 to 1e9 s");
+        }
+        for text in ["0", "-1", "a", "1.5", "", "99999999999999999999999"] {
+            assert!(count(text).is_err(), "{text}");
+        }
     }
 
     #[test]

@@ -9,6 +9,7 @@ mod grammar;
 mod read;
 mod recheck;
 mod start;
+mod usage;
 
 use std::ffi::OsString;
 use std::fmt;
@@ -54,12 +55,16 @@ pub enum Outcome {
 
 /// Reads the arguments (the program's name first) and does what they ask, all but opening the window.
 pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'_>) -> Outcome {
-    let arguments = match Arguments::try_parse_from(arguments) {
+    let given: Vec<OsString> = arguments.into_iter().collect();
+    let arguments = match Arguments::try_parse_from(&given) {
         Ok(arguments) => arguments,
-        Err(error) => return Outcome::Done(refuse(&error, streams)),
+        Err(error) => return Outcome::Done(refuse(&error, &given, streams)),
     };
     let status = match arguments.task {
-        None => return Outcome::OpenWindow(arguments.start.or_else(start::demonstration)),
+        None => match arguments.start.as_deref().and_then(usage::no_start) {
+            Some(said) => Err(CliError::Usage(said)),
+            None => return Outcome::OpenWindow(arguments.start.or_else(start::demonstration)),
+        },
         Some(Task::Read(wish)) => read::read(&wish, streams.out).map(|()| DONE),
         Some(Task::Recheck(wish)) => recheck::recheck(&wish, streams.out),
         Some(Task::Windows(wish)) => windows(&wish, streams.out).map(|()| DONE),
@@ -116,17 +121,12 @@ fn finish(result: Result<u8, CliError>, streams: &mut Streams<'_>) -> u8 {
 }
 
 /// Help and version are what was asked for; anything else is told in one line.
-fn refuse(error: &clap::Error, streams: &mut Streams<'_>) -> u8 {
-    let text = error.render().to_string();
+fn refuse(error: &clap::Error, given: &[OsString], streams: &mut Streams<'_>) -> u8 {
     if matches!(error.kind(), ErrorKind::DisplayHelp | ErrorKind::DisplayVersion) {
+        let text = error.render().to_string();
         return finish(put(streams.out, text.as_bytes()).map(|()| DONE), streams);
     }
-    let lines = text.lines().map(str::trim).take_while(|line| !line.starts_with("Usage:"));
-    let idle = |line: &str| ["For more information", "tip: to pass"].iter().any(|start| line.starts_with(start));
-    let told: Vec<_> = lines.filter(|line| !line.is_empty() && !idle(line)).collect();
-    let told = told.join(" ");
-    let told = told.strip_prefix("error: ").unwrap_or(&told);
-    say(streams, &format!("{told}: 'panewise --help' and 'panewise read --help' list what can be given"));
+    say(streams, &usage::told(error, given));
     BAD_INPUT
 }
 

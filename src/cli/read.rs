@@ -11,7 +11,7 @@ use crate::report;
 use crate::session::{self, CaptureRef, CaptureState, Command, Pane, PaneId, Session, SessionCapture};
 use crate::signal::{Span, Watch};
 use crate::tone::suggest_steady;
-use crate::units::{Factor, Quantity, Scale, Unit};
+use crate::units::{Factor, Quantity, Scale, Unit, brief};
 
 /// A capture that is open, and the document that says what to read of it.
 pub(super) struct Opened {
@@ -30,6 +30,9 @@ impl Opened {
 }
 
 pub(super) fn read(wish: &ReadWish, out: &mut dyn Write) -> Result<(), CliError> {
+    if let Some(path) = wish.save.as_deref().filter(|path| !wish.replace && stands(path)) {
+        return Err(CliError::Standing(path.to_owned()));
+    }
     // JSON states the content's hash, and so does a session.
     let mut opened = open(&wish.input, wish.json || wish.save.is_some())?;
     change(&mut opened, wish)?;
@@ -44,6 +47,11 @@ pub(super) fn read(wish: &ReadWish, out: &mut dyn Write) -> Result<(), CliError>
     } else {
         put(out, report::tone_table(&reading).as_bytes())
     }
+}
+
+/// Whether a session would be written over. Any other file is refused by its name, whatever was allowed.
+fn stands(path: &Path) -> bool {
+    session::has_extension(path) && path.symlink_metadata().is_ok()
 }
 
 /// The reading of a capture or session as text, with nothing else asked for.
@@ -112,7 +120,7 @@ fn change(opened: &mut Opened, wish: &ReadWish) -> Result<(), CliError> {
     let usage = CliError::Usage;
     if let Some(channel) = wish.channel {
         let channels = session.capture.channels;
-        if channel == 0 || channel > channels {
+        if channel > channels {
             return Err(usage(format!("channel {channel} is not one of the capture's: give 1 to {channels}")));
         }
         Command::ChooseChannel(channel - 1).apply(session);
@@ -182,14 +190,15 @@ fn quantity_of_unit(unit: &str) -> Option<Quantity> {
 fn change_search(session: &mut Session, wish: &SearchWish) -> Result<(), String> {
     let mut tuning = session.tuning;
     if let Some(max_tones) = wish.max_tones {
-        if max_tones == 0 || max_tones > session::MAX_TONES {
+        if max_tones > session::MAX_TONES {
             return Err(format!("--max-tones is {max_tones}: give 1 to {}", session::MAX_TONES));
         }
         tuning.max_tones = max_tones;
     }
     if let Some(false_alarm) = wish.false_alarm {
         if false_alarm >= 1.0 {
-            return Err(format!("--false-alarm is {false_alarm}: give a chance above 0 and below 1"));
+            let given = brief(false_alarm);
+            return Err(format!("--false-alarm is {given}: give a chance above 0 and below 1"));
         }
         tuning.false_alarm = false_alarm;
     }
@@ -197,7 +206,7 @@ fn change_search(session: &mut Session, wish: &SearchWish) -> Result<(), String>
     let half_hz = session.sample_rate_hz() / 2.0;
     for tone in &wish.tone {
         if tone.frequency_hz >= half_hz {
-            let f = tone.frequency_hz;
+            let f = brief(tone.frequency_hz);
             return Err(format!("--tone {f} Hz is not below half the sample rate: give one below {half_hz} Hz"));
         }
         Command::AddHandTone(tone.clone()).apply(session);
@@ -214,19 +223,43 @@ fn mark_steady(opened: &mut Opened) -> Result<(), CliError> {
     let (rate_hz, frames) = (session.sample_rate_hz(), session.capture.frames);
     let steady = suggest_steady(opened.capture.source.as_ref(), session.channel, rate_hz, &Watch::new())
         .map_err(|reason| CliError::Signal { path: PathBuf::from(&session.capture.path), reason })?;
-    let mut span = steady.unwrap_or(Span { start: 0, samples: frames });
-    let whole = span.samples;
-    span.samples = whole.min(Segment::MOST);
+    let (span, text) = assumed(steady, frames, rate_hz);
     Command::MoveSegment(session.current, span).apply(session);
-    let (from_s, to_s) = (span.start as f64 / rate_hz, span.end() as f64 / rate_hz);
-    let which =
-        if steady.is_some() { "the longest steady stretch" } else { "no stretch is steady, so the whole capture" };
-    let part = if span.samples < whole { "as much as one transform takes of " } else { "" };
-    let text = format!(
-        "no segment was given: {part}{which} was read, {from_s:.3}..{to_s:.3} s ({}n..{}n)",
-        span.start,
-        span.end()
-    );
     opened.warnings.push(Warning { code: "assumed-segment", text });
     Ok(())
+}
+
+/// What is read of a capture of `frames` where no segment was given, and what is said about it.
+fn assumed(steady: Option<Span>, frames: u64, rate_hz: f64) -> (Span, String) {
+    let whole = steady.unwrap_or(Span { start: 0, samples: frames });
+    let span = Span { samples: whole.samples.min(Segment::MOST), ..whole };
+    let (from_s, to_s) = (span.start as f64 / rate_hz, span.end() as f64 / rate_hz);
+    let which = match (steady.is_some(), span == whole) {
+        (true, true) => "the longest steady stretch was read",
+        (true, false) => "as much as one transform takes of the longest steady stretch was read",
+        (false, true) => "no stretch is steady, so the whole capture was read",
+        (false, false) => "no stretch is steady, so as much of the capture as one transform takes was read",
+    };
+    let text = format!("no segment was given: {which}, {from_s:.3}..{to_s:.3} s ({}n..{}n)", span.start, span.end());
+    (span, text)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_default_segment_longer_than_one_transform_is_clipped_and_said_to_be() {
+        let long = Span { start: 100, samples: Segment::MOST + 1 };
+        let (span, text) = assumed(Some(long), 1 << 40, 8192.0);
+        assert_eq!(span, Span { start: 100, samples: Segment::MOST });
+        assert!(text.contains("as much as one transform takes of the longest steady stretch"), "{text}");
+        let (span, text) = assumed(None, 1 << 40, 8192.0);
+        assert_eq!(span, Span { start: 0, samples: Segment::MOST });
+        assert!(text.contains("no stretch is steady") && text.ends_with("(0n..33554432n)"), "{text}");
+        let (span, text) = assumed(Some(Span { start: 8192, samples: 16_384 }), 1 << 40, 8192.0);
+        assert_eq!(span, Span { start: 8192, samples: 16_384 });
+        assert_eq!(text, "no segment was given: the longest steady stretch was read, 1.000..3.000 s (8192n..24576n)");
+        assert_eq!(assumed(None, 5, 1.0).0, Span { start: 0, samples: 5 });
+    }
 }

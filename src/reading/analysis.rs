@@ -5,10 +5,10 @@ use std::sync::Arc;
 use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
 use super::{Request, advice, rows};
 use crate::capture::segment_doubts;
-use crate::signal::{Cancelled, Removed, SignalError, Source, Span, Stored, Watch, read_channel, remove};
+use crate::signal::{Cancelled, RATES_HZ, Removed, SignalError, Source, Span, Stored, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
 use crate::tone::{LEAST_CYCLES, NamedTone, Quest, Search, search, suggest_steady};
-use crate::units::ScaleError;
+use crate::units::{ScaleError, brief};
 
 /// Why there is no Reading.
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]
@@ -41,8 +41,11 @@ pub enum ReadingError {
         /// Which sample, counted from the start of the capture.
         at: u64,
     },
-    /// The rate cannot be used.
-    #[error("the sample rate is {rate_hz} Hz: give a number above 0")]
+    /// The rate is not one of [`RATES_HZ`].
+    #[error(
+        "the sample rate is {} Hz: give one from {:e} to {:e} Hz",
+        brief(*.rate_hz), RATES_HZ.start(), RATES_HZ.end()
+    )]
     NoRate {
         /// What it is.
         rate_hz: f64,
@@ -88,7 +91,7 @@ pub struct Analysis {
 /// [`ReadingError`].
 pub fn analyse_curves(source: &dyn Source, request: &Request, watch: &Watch) -> Result<Segment, ReadingError> {
     let rate_hz = request.sample_rate_hz;
-    if !(rate_hz > 0.0 && rate_hz.is_finite()) {
+    if !RATES_HZ.contains(&rate_hz) {
         return Err(ReadingError::NoRate { rate_hz });
     }
     let mut samples = samples_of(source, request, watch)?;

@@ -197,7 +197,11 @@ fn what_cannot_be_read_is_refused_with_a_reason() {
     assert_eq!(error(&spanning(0, 7)), ReadingError::TooShort { samples: 7 });
     assert_eq!(error(&spanning(0, Segment::MOST + 1)), ReadingError::TooLong { samples: Segment::MOST + 1 });
     assert!(matches!(error(&spanning(3, 9)), ReadingError::Signal(_)));
-    assert!(matches!(error(&Request { sample_rate_hz: 0.0, ..spanning(3, 8) }), ReadingError::NoRate { .. }));
+    for sample_rate_hz in [0.0, -1.0, f64::NAN, f64::INFINITY, 1e300, 1e-300] {
+        let refused = error(&Request { sample_rate_hz, ..spanning(3, 8) });
+        assert!(matches!(refused, ReadingError::NoRate { .. }), "{sample_rate_hz:e}");
+        assert!(refused.to_string().ends_with("give one from 1e-6 to 1e12 Hz"), "{refused}");
+    }
 }
 
 #[test]

@@ -19,9 +19,10 @@ pub fn csv_table(reading: &Reading) -> Result<Vec<u8>, ReportError> {
 }
 
 fn head(reading: &Reading) -> Vec<String> {
-    let tone =
-        ["frequency_hz", "amplitude", "level", "level_db", "agreement_db", "unit", "detector", "reference", "tags"];
-    let mut cells: Vec<String> = tone.map(String::from).to_vec();
+    let figures =
+        ["frequency_hz", "frequency_u95_hz", "amplitude", "amplitude_u95", "level", "level_db", "level_u95_db"];
+    let about = ["agreement_db", "unit", "detector", "reference", "tags"];
+    let mut cells: Vec<String> = figures.into_iter().chain(about).map(String::from).collect();
     for (i, pane) in reading.panes.iter().enumerate() {
         let pane = format!("pane {} {}", i + 1, pane.written());
         cells.extend(["level_db", "peak_hz", "state", "u_db"].map(|what| format!("{pane} {what}")));
@@ -33,9 +34,12 @@ fn row(reading: &Reading, tone: &Tone) -> Vec<String> {
     let scale = &reading.scale;
     let mut cells = vec![
         tone.frequency_hz.to_string(),
+        optional(tone.frequency_u95_hz),
         tone.amplitude.to_string(),
+        optional(tone.amplitude_u95),
         tone.level.to_string(),
         tone.level_db.to_string(),
+        optional(tone.level_u95_db),
         optional(tone.agreement_db),
         scale.unit.clone(),
         Detector::name(scale.detector).to_owned(),
@@ -73,6 +77,8 @@ mod tests {
         assert_eq!(rows.len(), reading.tones.len());
         let cell = |name: &str| rows[0].get(head.iter().position(|h| h == name).unwrap()).unwrap().to_owned();
         assert_eq!(cell("level_db").parse::<f64>().unwrap().to_bits(), reading.tones[0].level_db.to_bits());
+        assert_eq!(cell("frequency_u95_hz").parse::<f64>().unwrap(), 0.000_31);
+        assert_eq!((cell("amplitude_u95"), cell("level")), (String::new(), "1".to_owned()));
         assert_eq!(cell("pane 1 rectangular state"), "under-skirt");
         assert_eq!(cell("pane 2 kaiser=8.6 peak_hz").parse::<f64>().unwrap(), 24.96);
         assert_eq!(cell("pane 2 kaiser=8.6 u_db"), "");

@@ -46,7 +46,7 @@ mod tests {
         let value: serde_json::Value = serde_json::from_slice(&reading_json(&reading()).unwrap()).unwrap();
         assert_eq!(value["schema"], 1);
         let tone = value["tones"][0].as_object().unwrap();
-        for key in ["frequency_u95_hz", "verdict", "why", "budget", "phase_rad", "order", "overruled"] {
+        for key in ["amplitude_u95", "verdict", "why", "budget", "phase_rad", "order", "overruled"] {
             assert!(tone.get(key).unwrap().is_null(), "{key}");
         }
         assert_eq!(value["panes"][0]["parameter"], serde_json::Value::Null);

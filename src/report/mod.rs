@@ -12,6 +12,7 @@ mod windows;
 pub use comma::csv_table;
 pub use json::{reading_json, recheck_json};
 pub use kernels::kernels_svg;
+pub(crate) use text::plain;
 pub use text::{figure_text, tone_table};
 pub use windows::{windows_json, windows_table};
 

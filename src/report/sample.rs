@@ -65,12 +65,12 @@ fn pane(window: &str, parameter: &[f64], floor_db: Option<f64>) -> PaneFacts {
 fn tone() -> Tone {
     Tone {
         frequency_hz: 24.96,
-        frequency_u95_hz: None,
+        frequency_u95_hz: Some(0.000_31),
         amplitude: std::f64::consts::SQRT_2,
         amplitude_u95: None,
         level: 1.0,
         level_db: 120.000_000_000_000_01,
-        level_u95_db: None,
+        level_u95_db: Some(0.000_2),
         phase_rad: None,
         verdict: None,
         why: None,

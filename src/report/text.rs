@@ -5,6 +5,9 @@ use super::table::{Align, Table};
 use crate::reading::{PaneReading, Reading, Tone};
 use crate::session::Figure;
 
+/// Decimals of a frequency at most: lines of the slowest rate that can be meant are still told apart.
+const MOST_DECIMALS: f64 = 12.0;
+
 /// The tone table as text: what was read and how levels are stated, a line a tone with a column a pane, then what a
 /// reader of the figures should know.
 pub fn tone_table(reading: &Reading) -> String {
@@ -29,7 +32,8 @@ fn head(reading: &Reading) -> String {
     let end_s = segment.start_s + segment.duration_s;
     let spacing = reading.panes.first().map(|p| format!("; lines {} apart", short(p.line_spacing_hz, "Hz")));
     format!(
-        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: amplitude in {} peak, levels in {}\n",
+        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: levels in {} and in {}\n\
+         U: expanded uncertainty (k = 2) by noise and neighbours alone\n",
         plain(&capture.path),
         capture.format,
         short(capture.sample_rate_hz, "Hz"),
@@ -38,15 +42,20 @@ fn head(reading: &Reading) -> String {
         short(segment.duration_s, "s"),
         spacing.unwrap_or_default(),
         capital(scale.quantity),
-        scale.unit,
+        unit_of_levels(reading),
         scale.reference_label,
     )
 }
 
+/// What the levels that are no decibels are in: `m/s² r.m.s.`.
+fn unit_of_levels(reading: &Reading) -> String {
+    format!("{} {}", reading.scale.unit, reading.scale.detector.title())
+}
+
 fn table(reading: &Reading) -> String {
-    let mut columns = vec![Align::Right; 4];
-    let mut names: Vec<String> = ["frequency", "amplitude", "level", "agreement"].map(String::from).to_vec();
-    let mut units: Vec<String> = ["Hz", &reading.scale.unit, "dB", "dB"].map(String::from).to_vec();
+    let mut columns = vec![Align::Right; 6];
+    let mut names = ["frequency", "U", "level", "level", "U", "agreement"].map(String::from).to_vec();
+    let mut units = ["Hz", "Hz", &unit_of_levels(reading), "dB", "dB", "dB"].map(String::from).to_vec();
     for pane in &reading.panes {
         columns.extend([Align::Right, Align::Left]);
         // The window's name stands over both of the pane's columns.
@@ -62,19 +71,26 @@ fn table(reading: &Reading) -> String {
     let mut table = Table::new(columns);
     table.head(names);
     table.head(units);
-    let decimals = frequency_decimals(reading);
-    for tone in &reading.tones {
-        table.row(row(tone, decimals, tagged));
+    let decimals: Vec<_> = reading.tones.iter().map(|tone| frequency_decimals(reading, tone)).collect();
+    let most = decimals.iter().copied().max().unwrap_or(0);
+    for (tone, decimals) in reading.tones.iter().zip(decimals) {
+        table.row(row(tone, (decimals, most), tagged));
     }
     table.text()
 }
 
-fn row(tone: &Tone, decimals: usize, tagged: bool) -> Vec<String> {
+/// `decimals` of the frequency are shown; room is left for as many as any row has, so that the points stand in a line.
+fn row(tone: &Tone, (decimals, most): (usize, usize), tagged: bool) -> Vec<String> {
+    let room = most - decimals + usize::from(decimals == 0 && most > 0);
+    let fixed = |hz: f64| format!("{hz:.decimals$}{}", " ".repeat(room));
+    let none = || "-".to_owned();
     let mut cells = vec![
-        format!("{:.decimals$}", tone.frequency_hz),
-        digits(tone.amplitude, 5),
+        fixed(tone.frequency_hz),
+        tone.frequency_u95_hz.map_or_else(none, fixed),
+        digits(tone.level, 5),
         format!("{:.3}", tone.level_db),
-        tone.agreement_db.map_or_else(|| "-".to_owned(), |db| format!("{db:.3}")),
+        tone.level_u95_db.map_or_else(none, thousandths),
+        tone.agreement_db.map_or_else(none, thousandths),
     ];
     cells.extend(tone.readings.iter().flat_map(cell));
     if tagged {
@@ -88,10 +104,19 @@ fn cell(reading: &PaneReading) -> [String; 2] {
     [format!("{:.3}", reading.level_db), reading.state.word().to_owned()]
 }
 
-/// Decimals that show a hundredth of a line.
-fn frequency_decimals(reading: &Reading) -> usize {
+/// Decibels to a thousandth; what is less but not nothing is said to be less.
+fn thousandths(db: f64) -> String {
+    if db > 0.0 && db < 0.000_5 { "<0.001".to_owned() } else { format!("{db:.3}") }
+}
+
+/// Decimals that show two digits of a tone's uncertainty; a hundredth of a line where none is stated.
+fn frequency_decimals(reading: &Reading, tone: &Tone) -> usize {
     let hundredth_hz = reading.panes.first().map_or(0.01, |p| p.line_spacing_hz / 100.0);
-    (-hundredth_hz.log10()).ceil().clamp(0.0, 9.0) as usize
+    let decimals = match tone.frequency_u95_hz.filter(|u| *u > 0.0) {
+        Some(u95_hz) => 1.0 - u95_hz.log10().floor(),
+        None => (-hundredth_hz.log10()).ceil(),
+    };
+    decimals.clamp(0.0, MOST_DECIMALS) as usize
 }
 
 /// A number in `n` significant digits.
@@ -129,7 +154,7 @@ pub fn figure_text(figure: &Figure) -> String {
 }
 
 /// Text from outside on one line of a terminal: control characters are shown, not obeyed.
-pub(super) fn plain(text: &str) -> String {
+pub(crate) fn plain(text: &str) -> String {
     text.chars().map(|c| if c.is_control() { '\u{fffd}' } else { c }).collect()
 }
 
@@ -166,15 +191,41 @@ mod tests {
     #[test]
     fn a_tone_is_a_line_with_a_level_and_a_word_for_each_pane() {
         let text = tone_table(&reading());
-        let row = text.lines().find(|line| line.contains("24.9600")).unwrap();
+        let row = text.lines().find(|line| line.contains("24.96000")).unwrap();
         assert_eq!(
             row.split_whitespace().collect::<Vec<_>>(),
-            ["24.9600", "1.4142", "120.000", "0.010", "120.010", "under-skirt", "120.000", "clear"]
+            [
+                "24.96000",
+                "0.00031",
+                "1.0000",
+                "120.000",
+                "<0.001",
+                "0.010",
+                "120.010",
+                "under-skirt",
+                "120.000",
+                "clear"
+            ]
         );
-        assert!(text.contains("Acceleration: amplitude in m/s² peak, levels in dB re 1 µm/s² (r.m.s.)"));
+        assert!(text.contains("Acceleration: levels in m/s² r.m.s. and in dB re 1 µm/s² (r.m.s.)"));
         assert!(text.contains("Segment 9.000 s to 33.000 s: 196608 samples, 24 s; lines 0.0416667 Hz apart"));
         assert!(text.contains("Note (assumed-segment): "));
         assert!(text.trim_end().ends_with(CAUTION));
+    }
+
+    #[test]
+    fn the_points_of_frequencies_stand_in_a_line_each_with_the_digits_it_has() {
+        let mut reading = reading();
+        let first = reading.tones[0].clone();
+        for (frequency_hz, frequency_u95_hz) in [(124.47, Some(0.012)), (200.0, None), (2000.0, Some(31.0))] {
+            reading.tones.push(Tone { frequency_hz, frequency_u95_hz, level_u95_db: None, ..first.clone() });
+        }
+        let text = tone_table(&reading);
+        let row = |start: &str| text.lines().find(|line| line.trim_start().starts_with(start)).unwrap();
+        let at = |start: &str| row(start).find('.').unwrap();
+        assert!(row("124.470 ").contains(" 0.012 ") && row("200.0000 ").contains(" - "), "{text}");
+        assert_eq!((at("24.96000"), at("124.470 ")), (at("200.0000 "), at("200.0000 ")));
+        assert_eq!(row("2000 ").find("2000").unwrap() + "2000".len(), at("24.96000"), "{text}");
     }
 
     #[test]

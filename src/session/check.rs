@@ -2,6 +2,7 @@
 
 use super::command::{MAX_PANES, MAX_SEGMENTS, MAX_TONES, axes_are_usable, scale_is_finite};
 use super::{DocumentError, Session};
+use crate::signal::RATES_HZ;
 
 impl Session {
     /// Checks that the document is one the program could have made.
@@ -57,11 +58,14 @@ impl Session {
         let positive = |what, value: f64| {
             if value > 0.0 && value.is_finite() { Ok(()) } else { Err(DocumentError::Number { what, value }) }
         };
+        let rate = |what, value: f64| {
+            if RATES_HZ.contains(&value) { Ok(()) } else { Err(DocumentError::Number { what, value }) }
+        };
         let frequency = |what, value: f64| {
             if value >= 0.0 && value.is_finite() { Ok(()) } else { Err(DocumentError::Number { what, value }) }
         };
-        positive("the capture's sample rate", self.capture.sample_rate_hz)?;
-        positive("the sample rate", self.sample_rate_hz())?;
+        rate("the capture's sample rate", self.capture.sample_rate_hz)?;
+        rate("the sample rate", self.sample_rate_hz())?;
         positive("the chance of a false alarm", self.tuning.false_alarm)?;
         positive("one less the chance of a false alarm", 1.0 - self.tuning.false_alarm)?;
         self.hand_tones.iter().try_for_each(|t| positive("the frequency of a tone named by hand", t.frequency_hz))?;

@@ -1,7 +1,7 @@
 //! Every change of the document, named, applied in one place.
 
 use super::{HandTone, NamedSegment, Note, Pane, PaneId, SegmentId, Session, Tuning, ViewAxes};
-use crate::signal::{Removal, Span};
+use crate::signal::{RATES_HZ, Removal, Span};
 use crate::units::{Factor, Scale};
 use crate::window::Window;
 
@@ -97,7 +97,7 @@ impl Command {
             Self::SetScale(channel, scale) => {
                 scale_is_finite(&scale) && session.scales.get_mut(channel).is_some_and(|place| put(place, scale))
             }
-            Self::SetRate(rate) => rate.is_none_or(|r| r > 0.0 && r.is_finite()) && put(&mut session.rate_hz, rate),
+            Self::SetRate(rate) => rate.is_none_or(|r| RATES_HZ.contains(&r)) && put(&mut session.rate_hz, rate),
             Self::SetRemoval(removal) => put(&mut session.removal, removal),
             Self::MoveSegment(id, span) => {
                 let span = inside(span, session.capture.frames);

@@ -2,12 +2,15 @@
 
 use std::path::PathBuf;
 
+use crate::capture::plainly;
+use crate::units::brief;
+
 /// Something in a document that cannot be.
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]
 #[non_exhaustive]
 pub enum DocumentError {
     /// A number is not finite or out of its range.
-    #[error("{what} is {value}, which cannot be")]
+    #[error("{what} is {}, which cannot be", brief(*.value))]
     Number {
         /// Which number.
         what: &'static str,
@@ -67,12 +70,26 @@ pub enum DocumentError {
 #[non_exhaustive]
 pub enum SessionError {
     /// The system refused.
-    #[error("{}: {reason}", .path.display())]
+    #[error("{}: {}", .path.display(), plainly(.reason))]
     Io {
         /// The file or folder.
         path: PathBuf,
         /// What the system said.
         reason: std::io::Error,
+    },
+    /// Nothing can be written in the folder the file was to stand in.
+    #[error("{}: nothing can be saved in this folder: {}", .folder.display(), plainly(.reason))]
+    Folder {
+        /// The folder.
+        folder: PathBuf,
+        /// What the system said.
+        reason: std::io::Error,
+    },
+    /// The path leads to a folder or a device.
+    #[error("{}: is not an ordinary file: choose a .session.ron file", .path.display())]
+    NotAFile {
+        /// The path.
+        path: PathBuf,
     },
     /// The file is longer than any session.
     #[error("{}: {bytes} bytes is too long for a session ({most} at most): choose a .session.ron file", .path.display())]

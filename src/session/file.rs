@@ -163,7 +163,7 @@ pub(super) fn read_text(path: &Path) -> Result<String, SessionError> {
     let io = |reason| io_error(path, reason);
     let facts = fs::metadata(path).map_err(io)?;
     if !facts.is_file() {
-        return Err(io(std::io::Error::other("is not a file")));
+        return Err(SessionError::NotAFile { path: path.to_owned() });
     }
     let bytes = facts.len();
     let too_long = |bytes| SessionError::TooLong { path: path.to_owned(), bytes, most: MOST_BYTES };
@@ -187,7 +187,9 @@ pub(super) fn write_whole(path: &Path, bytes: &[u8]) -> Result<(), SessionError>
         return Err(SessionError::ReadOnly { path: path.to_owned() });
     }
     let folder = folder_of(path);
-    let mut file = new_file_in(&folder).map_err(io)?;
+    // The new file's own name means nothing to the user: what the system says is said of the folder.
+    let refused = |error: std::io::Error| SessionError::Folder { folder: folder.clone(), reason: error.kind().into() };
+    let mut file = new_file_in(&folder).map_err(refused)?;
     file.write_all(bytes).map_err(io)?;
     if let Some(standing) = standing {
         file.as_file().set_permissions(standing.permissions()).map_err(io)?;

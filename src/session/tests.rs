@@ -103,6 +103,7 @@ fn numbers_that_cannot_be_change_nothing() {
         Command::SetScale(5, Scale::default()),
         Command::SetRate(Some(nan)),
         Command::SetRate(Some(0.0)),
+        Command::SetRate(Some(1e300)),
         Command::Pick(Some(nan)),
         Command::AddHandTone(HandTone { frequency_hz: nan, held: false }),
         Command::AddHandTone(HandTone { frequency_hz: 500.0, held: false }),

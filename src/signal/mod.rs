@@ -10,5 +10,5 @@ mod watch;
 
 pub use pyramid::{Extent, Pyramid};
 pub use removal::{Removal, Removed, remove};
-pub use source::{SignalError, Source, Span, Stored, read_channel};
+pub use source::{RATES_HZ, SignalError, Source, Span, Stored, read_channel};
 pub use watch::{Cancelled, Watch};

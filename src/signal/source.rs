@@ -1,9 +1,12 @@
 //! The trait through which all samples are read, and a source held in memory.
 
 use std::fmt::Debug;
-use std::ops::Range;
+use std::ops::{Range, RangeInclusive};
 
 use super::{Cancelled, Watch};
+
+/// The sample rates that can be meant: from a sample in eleven days to a thousand times the fastest converter.
+pub const RATES_HZ: RangeInclusive<f64> = 1e-6..=1e12;
 
 /// Why samples could not be had.
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]

@@ -1,6 +1,6 @@
 //! The scale: what a normalised sample means, and how a level is stated.
 
-use super::{Quantity, Unit, UnitError, db};
+use super::{Quantity, Unit, UnitError, brief, db};
 
 /// What a level states of a tone of peak amplitude A.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Hash, serde::Serialize, serde::Deserialize)]
@@ -77,8 +77,16 @@ pub enum ScaleError {
     #[error(transparent)]
     Unit(#[from] UnitError),
     /// A number that has to be above 0 is not.
-    #[error("{what} is {value}: give a number above 0")]
+    #[error("{what} is {}: give a number above 0", brief(*.value))]
     NotPositive {
+        /// Which number.
+        what: &'static str,
+        /// What it is.
+        value: f64,
+    },
+    /// A number is so small or large that it can only be a slip, and that levels would lose their meaning.
+    #[error("{what} is {}: give one from {:e} to {:e}", brief(*.value), Scale::LEAST, Scale::MOST)]
+    OutOfRange {
         /// Which number.
         what: &'static str,
         /// What it is.
@@ -124,28 +132,32 @@ impl Default for Scale {
 }
 
 impl Scale {
+    /// The least factor, sensitivity, voltage or reference.
+    pub const LEAST: f64 = 1e-12;
+
+    /// The greatest factor, sensitivity, voltage or reference.
+    pub const MOST: f64 = 1e12;
+
     /// Checks that the unit is one of the quantity and that every number can be used.
     ///
     /// # Errors
     /// [`ScaleError`] naming what is wrong.
     pub fn check(&self) -> Result<(), ScaleError> {
         let unit = self.parsed_unit()?;
-        let positive = |what, value: f64| {
-            if value > 0.0 && value.is_finite() { Ok(()) } else { Err(ScaleError::NotPositive { what, value }) }
-        };
         match self.factor {
             Factor::NotStated if !unit.is_full_scale() => {
                 return Err(ScaleError::NoFactor { unit: self.unit.clone() });
             }
             Factor::NotStated => {}
             _ if unit.is_full_scale() => return Err(ScaleError::NoUnit),
-            Factor::UnitsPerFullScale(factor) => positive("the factor", factor)?,
+            Factor::UnitsPerFullScale(factor) => usable("the factor", factor)?,
             Factor::Sensitivity { volts_per_unit, full_scale_volts } => {
-                positive("the sensitivity", volts_per_unit)?;
-                positive("the voltage at full scale", full_scale_volts)?;
+                usable("the sensitivity", volts_per_unit)?;
+                usable("the voltage at full scale", full_scale_volts)?;
+                usable("the voltage at full scale over the sensitivity", self.units_per_full_scale())?;
             }
         }
-        self.reference.map_or(Ok(()), |reference| positive("the reference", reference))
+        self.reference.map_or(Ok(()), |reference| usable("the reference", reference))
     }
 
     /// The unit.
@@ -209,6 +221,17 @@ impl Scale {
             None => format!("{} {}", short(reference), self.unit),
         };
         format!("dB re {text} ({})", self.detector.title())
+    }
+}
+
+/// Whether a number of a scale can be used.
+fn usable(what: &'static str, value: f64) -> Result<(), ScaleError> {
+    if (Scale::LEAST..=Scale::MOST).contains(&value) {
+        Ok(())
+    } else if value > 0.0 {
+        Err(ScaleError::OutOfRange { what, value })
+    } else {
+        Err(ScaleError::NotPositive { what, value })
     }
 }
 
@@ -278,5 +301,26 @@ mod tests {
         assert_eq!(no_unit.check(), Err(ScaleError::NoUnit));
         let reference = Scale { reference: Some(f64::NAN), ..acceleration("m/s²") };
         assert!(reference.check().is_err());
+    }
+
+    #[test]
+    fn a_number_too_small_or_too_large_to_be_meant_is_refused_in_few_digits() {
+        let factor = |factor| Scale { factor: Factor::UnitsPerFullScale(factor), ..acceleration("m/s²") }.check();
+        assert_eq!((factor(1e-12), factor(1e12)), (Ok(()), Ok(())));
+        for silly in [1e-300, 9.9e-13, 1.1e12, 1e308, f64::INFINITY] {
+            let said = factor(silly).unwrap_err().to_string();
+            assert!(said.ends_with(": give one from 1e-12 to 1e12") && said.len() < 80, "{said}");
+        }
+        assert!(factor(-1e300).unwrap_err().to_string().len() < 80);
+        let of = |volts_per_unit, full_scale_volts| {
+            Scale { factor: Factor::Sensitivity { volts_per_unit, full_scale_volts }, ..acceleration("m/s²") }.check()
+        };
+        assert_eq!(of(0.01, 1.0), Ok(()));
+        assert!(matches!(of(1e-20, 1.0), Err(ScaleError::OutOfRange { .. })));
+        assert!(matches!(of(0.01, 1e13), Err(ScaleError::OutOfRange { .. })));
+        // Either may be meant, but not both together.
+        assert!(matches!(of(1e-9, 1e9), Err(ScaleError::OutOfRange { .. })));
+        let reference = Scale { reference: Some(1e-13), ..acceleration("m/s²") };
+        assert!(matches!(reference.check(), Err(ScaleError::OutOfRange { .. })));
     }
 }
