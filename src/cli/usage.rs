@@ -6,7 +6,7 @@ use std::path::Path;
 use clap::error::{ContextKind, ContextValue, ErrorKind};
 
 /// The commands.
-const COMMANDS: [&str; 3] = ["read", "recheck", "windows"];
+const COMMANDS: [&str; 4] = ["read", "recheck", "windows", "help"];
 
 /// A name is suggested from this likeness on; 1 is the same name.
 const ALIKE: f64 = 0.8;
@@ -41,12 +41,17 @@ pub(super) fn told(error: &clap::Error, arguments: &[OsString]) -> String {
             return format!("a command comes first, as in 'panewise {command} {first}'");
         }
     }
+    if let Some(near) = error.get(ContextKind::SuggestedArg)
+        && let Some(given) = error.get(ContextKind::InvalidArg)
+    {
+        return format!("there is no option '{given}': did you mean '{near}'?");
+    }
     let said = sentence(error);
     // What is wrong with a value says itself what would be right.
     if error.kind() == ErrorKind::ValueValidation {
         return said;
     }
-    let page = command.map(|command| format!("{command} "));
+    let page = command.filter(|command| *command != "help").map(|command| format!("{command} "));
     format!("{said}: see 'panewise {}--help'", page.unwrap_or_default())
 }
 
@@ -75,10 +80,10 @@ fn sentence(error: &clap::Error) -> String {
     if error.kind() == ErrorKind::UnknownArgument
         && let Some(ContextValue::String(given)) = error.get(ContextKind::InvalidArg)
     {
-        return match error.get(ContextKind::SuggestedArg) {
-            Some(ContextValue::String(near)) => format!("there is no option '{given}', did you mean '{near}'?"),
-            _ if given.starts_with('-') => format!("there is no option '{given}'"),
-            _ => format!("'{given}' is one argument too many"),
+        return if given.starts_with('-') {
+            format!("there is no option '{given}'")
+        } else {
+            format!("'{given}' is one argument too many")
         };
     }
     let text = error.render().to_string();

@@ -119,9 +119,13 @@ pub struct PaneFacts {
 impl PaneFacts {
     /// The pane's window as it is written: `kaiser=8.6`.
     pub fn written(&self) -> String {
-        let parameters: Vec<_> = self.parameter.iter().map(f64::to_string).collect();
-        if parameters.is_empty() { self.window.clone() } else { format!("{}={}", self.window, parameters.join(",")) }
+        written(&self.window, &self.parameter)
     }
+}
+
+fn written(window: &str, parameters: &[f64]) -> String {
+    let parameters: Vec<_> = parameters.iter().map(f64::to_string).collect();
+    if parameters.is_empty() { window.to_owned() } else { format!("{window}={}", parameters.join(",")) }
 }
 
 /// No parameter is `null`, one is a number, more are a list.
@@ -145,6 +149,13 @@ pub struct AdviceLine {
     pub expected_worst_error_db: Option<f64>,
     /// What decides.
     pub why: String,
+}
+
+impl AdviceLine {
+    /// The window as it is written: `kaiser=8.6`.
+    pub fn written(&self) -> String {
+        written(&self.window, &self.parameter)
+    }
 }
 
 /// What a tone is.

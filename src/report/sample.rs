@@ -1,7 +1,8 @@
 //! A Reading made by hand, for tests.
 
 use crate::reading::{
-    CaptureFacts, LedgerStep, PaneFacts, PaneReading, Reading, ReadingState, ScaleFacts, SegmentFacts, Tone, Warning,
+    AdviceLine, CaptureFacts, LedgerStep, PaneFacts, PaneReading, Reading, ReadingState, ScaleFacts, SegmentFacts,
+    Tone, Warning,
 };
 use crate::signal::{Removal, Removed};
 use crate::units::Detector;
@@ -37,7 +38,12 @@ pub(super) fn reading() -> Reading {
             factor: 100.0,
         },
         panes: vec![pane("rectangular", &[], Some(f64::NEG_INFINITY)), pane("kaiser", &[8.6], None)],
-        advice: Vec::new(),
+        advice: vec![AdviceLine {
+            window: "kaiser".to_owned(),
+            parameter: vec![8.6],
+            expected_worst_error_db: Some(0.45),
+            why: "the noise at 24.96 Hz decides".to_owned(),
+        }],
         tones: vec![tone()],
         skirts: Vec::new(),
         warnings: vec![Warning { code: "assumed-segment", text: "the longest steady stretch was read".to_owned() }],

@@ -18,6 +18,7 @@ pub fn tone_table(reading: &Reading) -> String {
     } else {
         text.push_str(&table(reading));
     }
+    text.push_str(&advised(reading));
     if !reading.warnings.is_empty() {
         text.push('\n');
     }
@@ -26,14 +27,25 @@ pub fn tone_table(reading: &Reading) -> String {
     text + "\n" + CAUTION + "\n"
 }
 
+/// The window that reads this segment's tones with the least error, where one reads them all.
+fn advised(reading: &Reading) -> String {
+    let Some(best) = reading.advice.first() else { return String::new() };
+    let said = |worst_db: f64| {
+        let window = &best.written();
+        let worst = thousandths(worst_db);
+        format!("\nWindow advised: {window}, worst error to expect {worst} dB ({})\n", best.why)
+    };
+    best.expected_worst_error_db.map(said).unwrap_or_default()
+}
+
 fn head(reading: &Reading) -> String {
     let (capture, segment, scale) = (&reading.capture, &reading.segment, &reading.scale);
     let channel = format!("channel {} of {}", segment.channel, capture.channels);
+    let stated = reading.tones.iter().any(|tone| tone.level_u95_db.is_some());
     let end_s = segment.start_s + segment.duration_s;
     let spacing = reading.panes.first().map(|p| format!("; lines {} apart", short(p.line_spacing_hz, "Hz")));
     format!(
-        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: levels in {} and in {}\n\
-         U: expanded uncertainty (k = 2) by noise and neighbours alone\n",
+        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: levels in {} and in {}\n{}",
         plain(&capture.path),
         capture.format,
         short(capture.sample_rate_hz, "Hz"),
@@ -44,6 +56,7 @@ fn head(reading: &Reading) -> String {
         capital(scale.quantity),
         unit_of_levels(reading),
         scale.reference_label,
+        if stated { "U: expanded uncertainty (k = 2) by noise and neighbours alone\n" } else { "" },
     )
 }
 
@@ -210,6 +223,10 @@ mod tests {
         assert!(text.contains("Acceleration: levels in m/s² r.m.s. and in dB re 1 µm/s² (r.m.s.)"));
         assert!(text.contains("Segment 9.000 s to 33.000 s: 196608 samples, 24 s; lines 0.0416667 Hz apart"));
         assert!(text.contains("Note (assumed-segment): "));
+        assert!(text.contains("U: expanded uncertainty (k = 2) by noise and neighbours alone\n"));
+        assert!(text.contains(
+            "\nWindow advised: kaiser=8.6, worst error to expect 0.450 dB (the noise at 24.96 Hz decides)\n"
+        ));
         assert!(text.trim_end().ends_with(CAUTION));
     }
 
@@ -230,6 +247,7 @@ mod tests {
 
     #[test]
     fn no_tones_are_said() {
-        assert!(tone_table(&without_tones()).contains("No tone stands over the floor."));
+        let text = tone_table(&without_tones());
+        assert!(text.contains("No tone stands over the floor.") && !text.contains("U: "), "{text}");
     }
 }

@@ -49,7 +49,7 @@ fn a_figure_that_was_altered_is_listed_with_what_it_was_and_is() {
     assert!((moved[0]["was"].as_f64().unwrap() - moved[0]["is"].as_f64().unwrap() - 0.001).abs() < 1e-9);
     let ran = shop.run(&["recheck", "pump.session.ron"]);
     assert_eq!((ran.status, ran.err.as_str()), (1, ""));
-    assert!(ran.out.contains("1 figures moved") && ran.out.contains(": was "), "{}", ran.out);
+    assert!(ran.out.contains("1 figure moved") && ran.out.contains(": was "), "{}", ran.out);
 }
 
 #[test]
@@ -70,6 +70,8 @@ fn a_capture_moved_beside_the_session_is_found() {
     fs::rename(shop.path("site/pump.wav"), shop.path("pump.wav")).unwrap();
     let (status, found) = recheck(&shop, "pump.session.ron");
     assert_eq!((status, &found["capture"], &found["same"]), (0, &"moved".into(), &Value::Bool(true)));
+    let text = shop.run(&["recheck", "pump.session.ron"]).done();
+    assert!(text.contains("capture: moved, read from pump.wav"), "{text}");
     let reading = shop.run(&["read", "pump.session.ron", "--json"]).json();
     assert!(reading["warnings"].as_array().unwrap().iter().any(|w| w["code"] == "moved-capture"));
 }
@@ -82,8 +84,25 @@ fn a_changed_capture_is_said_to_be_changed_and_never_silently_used() {
     assert_eq!((status, &found["capture"], &found["same"]), (1, &"changed".into(), &Value::Bool(false)));
     let moved = found["figures"].as_array().unwrap();
     assert!(moved.iter().any(|m| m["what"].as_str().unwrap().starts_with("tone 124.8")), "{moved:?}");
+    let text = shop.run(&["recheck", "pump.session.ron"]).out;
+    assert!(text.contains("\npump.wav is not what it was when the session was saved: put that"), "{text}");
     let said = shop.run(&["read", "pump.session.ron"]).refused();
     assert!(said.contains("has changed since"), "{said}");
+}
+
+#[test]
+fn another_recording_in_the_captures_place_is_said_to_be_another() {
+    let shop = saved();
+    let spec =
+        hound::WavSpec { channels: 1, sample_rate: 8000, bits_per_sample: 16, sample_format: hound::SampleFormat::Int };
+    let mut writer = hound::WavWriter::create(shop.path("pump.wav"), spec).unwrap();
+    (0..500_i16).for_each(|i| writer.write_sample(i).unwrap());
+    writer.finalize().unwrap();
+    let ran = shop.run(&["recheck", "pump.session.ron"]);
+    assert_eq!((ran.status, ran.err.as_str()), (1, ""));
+    let said = "pump.wav is another recording (1 channel, 500 frames, 8000 Hz) than the session was made of \
+                (2 channels, 32768 frames, 4096 Hz): put that one back; capture: changed";
+    assert!(ran.out.contains(said), "{}", ran.out);
 }
 
 #[test]
@@ -108,6 +127,7 @@ fn a_missing_capture_is_said_to_be_missing() {
     assert!(said.contains("pump.wav"), "{said}");
     let ran: Ran = shop.run(&["recheck", "pump.session.ron"]);
     assert_eq!(ran.status, 1);
+    assert!(ran.out.contains("pump.wav is not there, nor in the session's folder: put it back"), "{}", ran.out);
     assert!(ran.out.contains("capture: missing"), "{}", ran.out);
 }
 

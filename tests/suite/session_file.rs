@@ -184,7 +184,7 @@ fn what_is_no_session_at_all_is_refused() {
     fs::write(&path, "[".repeat(100_000)).unwrap();
     assert!(matches!(load(&path), Err(SessionError::Damaged { .. })));
     assert!(matches!(load(&shop.path("missing.session.ron")), Err(SessionError::Io { .. })));
-    assert!(matches!(load(&shop.path("")), Err(SessionError::Io { .. })));
+    assert!(matches!(load(&shop.path("")), Err(SessionError::NotAFile { .. })));
 }
 
 #[test]

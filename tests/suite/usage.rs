@@ -32,6 +32,7 @@ fn help_tells_the_commands_with_examples_and_the_exit_statuses() {
         "--json",
         "--csv",
         "--save",
+        "--replace",
     ] {
         assert!(help.contains(option), "{option} in:\n{help}");
     }
@@ -51,9 +52,14 @@ fn bad_usage_is_told_in_one_line() {
         (&["read", "pump.wav", "--json", "--csv"], "--csv"),
         (&["read", "pump.wav", "--segment", "9"], "START..END"),
         (&["read", "pump.wav", "--segment", "3..2"], "END after START"),
+        (&["read", "pump.wav", "--segment", "-1..5"], "START and END must not be negative"),
+        (&["read", "pump.wav", "--segment", "1...5"], "three dots"),
+        (&["read", "pump.wav", "--segment", "9n..5"], "both with 'n' or both without"),
         (&["read", "pump.wav", "--segment", "0..9"], "8 s or 32768n"),
         (&["read", "pump.wav", "--segment", "0n..4n"], "mark at least 8"),
-        (&["read", "pump.wav", "--channel", "0"], "give 1 to 2"),
+        (&["read", "pump.wav", "--channel", "0"], "from 1 on"),
+        (&["read", "pump.wav", "--channel", "-1"], "'-1' for '--channel <K>': give a whole number from 1 on"),
+        (&["read", "pump.wav", "--channel", "a"], "'a' for '--channel <K>': give a whole number from 1 on"),
         (&["read", "pump.wav", "--channel", "3"], "give 1 to 2"),
         (&["read", "pump.wav", "--channel", "x"], "--channel"),
         (&["read", "pump.wav", "--windows", "hann,nosuch"], "nosuch"),
@@ -67,7 +73,25 @@ fn bad_usage_is_told_in_one_line() {
         (&["read", "pump.wav", "--unit", "g", "--factor", "NaN"], "above 0"),
         (&["read", "pump.wav", "--sensitivity", "0.01"], "--full-scale-volts"),
         (&["read", "pump.wav", "--detector", "loud"], "peak-to-peak"),
+        (&["read", "pump.wav", "--unit", "g", "--factor", "1e308"], "from 1e-12 to 1e12"),
+        (&["read", "pump.wav", "--unit", "g", "--factor", "1e-300"], "from 1e-12 to 1e12"),
+        (&["read", "pump.wav", "--unit", "g", "--factor", "1", "--reference", "1e-13"], "from 1e-12 to 1e12"),
+        (
+            &["read", "pump.wav", "--unit", "g", "--sensitivity", "1e-9", "--full-scale-volts", "1e9"],
+            "the voltage at full scale over the sensitivity is 1e18",
+        ),
         (&["read", "pump.wav", "--rate", "0"], "above 0"),
+        (&["read", "pump.wav", "--rate", "1e300"], "from 1e-6 to 1e12 Hz"),
+        (&["read", "pump.wav", "--tone", "1e300"], "--tone 1e300 Hz is not below half the sample rate"),
+        (&["read", "pump.wav", "--false-alarm", "1e300"], "--false-alarm is 1e300"),
+        (&["windows", "--kernel", "hann", "--duration", "1e300"], "from 1e-6 to 1e9 s"),
+        (&["windows", "--kernel", "hann", "--duration", "-1"], "above 0"),
+        (&["read", "pump.wav", "--max-tones", "-2"], "from 1 on"),
+        (&["raed", "pump.wav"], "no command is called 'raed': did you mean 'read'?"),
+        (&["raed"], "no command is called 'raed': did you mean 'read'?"),
+        (&["analyse", "pump.wav", "--json"], "no command is called 'analyse': see 'panewise --help'"),
+        (&["pump.wav", "read"], "a command comes first, as in 'panewise read pump.wav'"),
+        (&["read", "pump.wav", "--windows", "flattop"], "did you mean 'flat-top'?"),
         (&["read", "pump.wav", "--remove", "all"], "none, mean, line"),
         (&["read", "pump.wav", "--tone", "5000"], "below half the sample rate"),
         (&["read", "pump.wav", "--tone", "50,kept"], "HZ,held"),
@@ -78,7 +102,66 @@ fn bad_usage_is_told_in_one_line() {
     ] {
         let said = shop.run(arguments).refused();
         assert!(said.contains(part), "{arguments:?}: {said}");
+        assert!(said.matches("--help'").count() <= 1 && said.len() < 300, "{arguments:?}: {said}");
     }
+}
+
+#[test]
+fn what_is_misspelt_leads_to_the_one_help_page_that_lists_it() {
+    let shop = Shop::new();
+    for (arguments, said) in [
+        (&["read", "x.wav", "--no-such"][..], "there is no option '--no-such': see 'panewise read --help'"),
+        (&["read", "x.wav", "--segmnt", "1..2"], "there is no option '--segmnt': did you mean '--segment'?\n"),
+        (&["recheck", "a", "b"], "'b' is one argument too many: see 'panewise recheck --help'"),
+        (&["windows", "--zzz"], "see 'panewise windows --help'"),
+        (&["--no-such"], "there is no option '--no-such': see 'panewise --help'"),
+        (&["read"], "see 'panewise read --help'"),
+        (&["help", "raed"], "see 'panewise --help'"),
+    ] {
+        let line = shop.run(arguments).refused();
+        assert!(line.contains(said), "{arguments:?}: {line}");
+    }
+}
+
+#[test]
+fn what_the_system_refuses_is_told_with_what_to_do() {
+    let shop = Shop::new();
+    shop.pump("pump.wav");
+    fs::create_dir(shop.path("folder.session.ron")).unwrap();
+    for (arguments, said) in [
+        (&["read", "gone.wav"][..], "gone.wav: there is no such file or folder: check the path"),
+        (&["read", "gone.session.ron"], "gone.session.ron: there is no such file or folder: check the path"),
+        (&["recheck", "folder.session.ron"], "is not an ordinary file: choose a .session.ron file"),
+        (
+            &["read", "pump.wav", "--save", "nowhere/a.session.ron"],
+            "nowhere: nothing can be saved in this folder: there is no such file or folder: check the path",
+        ),
+    ] {
+        let line = shop.run(arguments).refused();
+        assert!(line.contains(said), "{arguments:?}: {line}");
+        assert!(!line.contains("os error") && !line.contains(".panewise-"), "{line}");
+    }
+}
+
+#[test]
+fn a_saved_session_is_not_replaced_unless_that_was_asked_for() {
+    let shop = Shop::new();
+    shop.pump("pump.wav");
+    let save = |more: &[&str]| {
+        shop.run(&[&["read", "pump.wav", "--segment", "1..3", "--save", "a.session.ron"], more].concat())
+    };
+    save(&[]).done();
+    let first = fs::read(shop.path("a.session.ron")).unwrap();
+    let said = save(&["--channel", "2"]).refused();
+    assert!(said.contains("a.session.ron: is there already") && said.contains("--replace"), "{said}");
+    assert_eq!(fs::read(shop.path("a.session.ron")).unwrap(), first);
+    // Reading a session and keeping it under its own name replaces it just as much.
+    let said = shop.run(&["read", "a.session.ron", "--save", "a.session.ron"]).refused();
+    assert!(said.contains("--replace"), "{said}");
+    save(&["--channel", "2", "--replace"]).done();
+    assert_ne!(fs::read(shop.path("a.session.ron")).unwrap(), first);
+    let said = shop.run(&["read", "pump.wav", "--replace"]).refused();
+    assert!(said.contains("--save"), "{said}");
 }
 
 #[test]
