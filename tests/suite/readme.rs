@@ -27,9 +27,9 @@ fn run<'a>(arguments: impl Iterator<Item = &'a str>) -> String {
 fn the_kernels_are_drawn_as_the_readme_has_it() {
     let (_, shown) = shown();
     let command = shown.iter().find_map(|line| line.strip_prefix("panewise windows --kernel ")).expect("the command");
-    let (wish, file) = command.split_once(" > ").unwrap();
+    let (wish, _) = command.split_once(" > ").expect("where the figure goes");
     let svg = run(["windows", "--kernel"].into_iter().chain(wish.split_whitespace()));
-    assert!(file.ends_with(".svg") && svg.starts_with("<svg") && svg.ends_with("</svg>\n"), "{svg}");
+    assert!(svg.starts_with("<svg") && svg.ends_with("</svg>\n"), "{svg}");
 }
 
 #[test]
