@@ -6,7 +6,7 @@ use crate::reading::{PaneReading, Reading, Tone};
 use crate::session::Figure;
 
 /// Decimals of a frequency at most: lines of the slowest rate that can be meant are still told apart.
-const MOST_DECIMALS: f64 = 12.0;
+const MOST_DECIMALS: f64 = 18.0;
 
 /// The tone table as text: what was read and how levels are stated, a line a tone with a column a pane, then what a
 /// reader of the figures should know.
