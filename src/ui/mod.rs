@@ -40,6 +40,7 @@ mod table;
 #[cfg(test)]
 mod tests;
 mod theme;
+mod typed;
 mod upkeep;
 mod view;
 mod widget;

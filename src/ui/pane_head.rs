@@ -7,6 +7,7 @@ use eframe::egui::{self, Align, Button, Layout, Rect, RichText, Ui, UiBuilder, v
 use super::desk::Desk;
 use super::pane::figures_pass;
 use super::panes::Shared;
+use super::typed;
 use super::view::{Intent, Intents, View};
 use super::{figure, pane_menu, parameters, theme, widget};
 use crate::session::{Command, Pane};
@@ -42,11 +43,14 @@ pub(super) fn show(
         ui.new_child(UiBuilder::new().max_rect(rest).layout(Layout::left_to_right(Align::Center)).id_salt("name"));
     first.set_clip_rect(rest.expand(2.0).intersect(ui.clip_rect()));
     name(&mut first, index, pane, view, intents);
-    parameters(&mut first, index, pane, view, intents);
+    let complaint = parameters(&mut first, index, pane, view, intents);
     let below = Rect::from_min_max(egui::pos2(line.left(), line.bottom()), rect.max);
     let mut second =
         ui.new_child(UiBuilder::new().max_rect(below).layout(Layout::left_to_right(Align::Center)).id_salt("second"));
-    merits(&mut second, pane, desk, view, shared);
+    match complaint {
+        Some(complaint) => typed::complain(&mut second, &complaint),
+        None => merits(&mut second, pane, desk, view, shared),
+    }
 }
 
 fn name(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut Intents) {
@@ -60,8 +64,9 @@ fn name(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut I
     }
 }
 
-/// The fields of the window's parameters; while one is at hand, the kernel it makes is drawn over the curve.
-fn parameters(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut Intents) {
+/// The fields of the window's parameters; while one is at hand, the kernel it makes is drawn over the curve. Gives what
+/// is to be said of a number that was not taken as it was typed.
+fn parameters(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut Intents) -> Option<String> {
     let key = egui::Id::unique(("parameters", pane.id));
     let edited = parameters::edit(ui, key, &format!("Pane {}", index + 1), &pane.window);
     if edited.busy && view.choosing.is_none() {
@@ -73,6 +78,7 @@ fn parameters(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: 
     if edited.ended {
         intents.push(Intent::CloseStep);
     }
+    edited.complaint
 }
 
 /// Writes the reading at the right end and gives the left end of what it took.

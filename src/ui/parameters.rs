@@ -1,7 +1,8 @@
 //! Editing a window's parameters: a named spin box for each, or a text for a list of coefficients.
 
-use eframe::egui::{self, Id, Ui};
+use eframe::egui::{Id, Ui};
 
+use super::typed::{Bounds, watched};
 use super::{figure, theme, widget};
 use crate::window::Window;
 
@@ -17,6 +18,8 @@ pub(super) struct Edited {
     pub(super) ended: bool,
     /// A field is being dragged, typed in or hovered: what it does to the kernel should be seen.
     pub(super) busy: bool,
+    /// What is to be said of a number that was not taken as it was typed.
+    pub(super) complaint: Option<String>,
 }
 
 /// Shows the fields of `window`, whose names for assistive technology begin with `name`.
@@ -29,13 +32,12 @@ pub(super) fn edit(ui: &mut Ui, key: Id, name: &str, window: &Window) -> Edited 
     for (i, (value, spec)) in window.parameters().iter().zip(specs).enumerate() {
         let mut v = *value;
         let decimals = if spec.whole { 0 } else { figure::decimals(spec.step * 10.0, 4).max(2) };
-        let field = egui::DragValue::new(&mut v)
-            .range(spec.min..=spec.max)
-            .speed(spec.step * 0.2)
-            .max_decimals(decimals)
-            .prefix(format!("{} ", spec.symbol))
-            .update_while_editing(false);
-        let response = ui.add(field).accessible_name(format!("{name}: {}", spec.symbol));
+        let bounds = Bounds::within(spec.min..=spec.max);
+        let (response, complaint) = watched(ui, &mut v, &bounds, |field| {
+            field.speed(spec.step * 0.2).max_decimals(decimals).prefix(format!("{} ", spec.symbol))
+        });
+        let response = response.accessible_name(format!("{name}: {}", spec.symbol));
+        edited.complaint = edited.complaint.or(complaint);
         if response.changed() {
             let mut all = window.parameters().to_vec();
             if let Some(place) = all.get_mut(i) {
@@ -56,7 +58,12 @@ fn coefficients(ui: &mut Ui, key: Id, name: &str, window: &Window) -> Edited {
         widget::text_when_left(ui, key, &list.join(", "), |f| f.desired_width(110.0).font(theme::quiet()));
     let response = response.accessible_name(format!("{name}: coefficients"));
     let taken = typed.as_deref().and_then(numbers).and_then(|n| Window::from_parts(window.name(), &n).ok());
-    Edited { window: taken.filter(|w| w != window), ended: typed.is_some(), busy: response.has_focus() }
+    Edited {
+        window: taken.filter(|w| w != window),
+        ended: typed.is_some(),
+        busy: response.has_focus(),
+        complaint: None,
+    }
 }
 
 /// Numbers parted by commas; none is no list.

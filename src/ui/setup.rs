@@ -4,8 +4,9 @@ use eframe::egui::{self, ComboBox, RichText, ScrollArea, TextEdit, Ui};
 
 use super::action::Action;
 use super::desk::Desk;
+use super::typed::{Bounds, number_row};
 use super::view::{Intent, Intents, View};
-use super::widget::{number, quiet, row, section};
+use super::widget::{quiet, row, section};
 use super::{figure, theme};
 use super::{setup_rate, setup_scale, setup_search};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, Note, ViewAxes};
@@ -41,31 +42,37 @@ fn segments(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
     let unit = if view.in_samples { 1.0 } else { 1.0 / rate };
     let span = segment.span;
     let mut moved: Option<Span> = None;
-    let fields = [("Start", span.start), ("End", span.end()), ("Length", span.samples)];
-    for (label, samples) in fields {
-        let most = if label == "Start" { span.end().saturating_sub(1) } else { frames };
-        let typed = row(ui, label, |ui, id| {
-            let typed = number(ui, id, samples as f64 * unit, |f| {
-                let suffix = if view.in_samples { "" } else { " s" };
-                let decimals = if view.in_samples { 0 } else { 4 };
-                let f = f.range(0.0..=most as f64 * unit).speed(frames as f64 * unit / 4000.0);
-                f.suffix(suffix).max_decimals(decimals).min_decimals(decimals.min(3))
-            });
-            if label == "Start" {
+    let fields = [
+        ("Start", span.start, 0..=frames.saturating_sub(1)),
+        ("End", span.end(), 1..=frames),
+        ("Length", span.samples, 1..=frames),
+    ];
+    for (label, samples, range) in fields {
+        let bounds = Bounds::within(*range.start() as f64 * unit..=*range.end() as f64 * unit);
+        let (suffix, decimals) = if view.in_samples { ("", 0) } else { (" s", 4) };
+        let typed = number_row(
+            ui,
+            label,
+            samples as f64 * unit,
+            &bounds,
+            |f| {
+                let f = f.speed(frames as f64 * unit / 4000.0).suffix(suffix);
+                f.max_decimals(decimals).min_decimals(decimals.min(3))
+            },
+            |ui| {
                 let text = if view.in_samples { "samples" } else { "seconds" };
-                let button = ui.button(text).on_hover_text("Type positions in seconds or in samples");
-                if button.clicked() {
+                let hint = "Type positions in seconds or in samples";
+                if label == "Start" && ui.button(text).on_hover_text(hint).clicked() {
                     view.in_samples = !view.in_samples;
                 }
-            }
-            typed
-        });
+            },
+        );
         if typed.changed {
-            let at = (typed.value / unit).round().clamp(0.0, frames as f64) as u64;
+            let at = (typed.value / unit).round().clamp(*range.start() as f64, *range.end() as f64) as u64;
             moved = Some(match label {
-                "Start" => Span::from_range(at.min(span.end().saturating_sub(1))..span.end()),
-                "End" => Span::from_range(span.start..at.max(span.start + 1)),
-                _ => Span { start: span.start, samples: at.max(1) },
+                "Start" => started_at(span, at, frames),
+                "End" => ended_at(span, at),
+                _ => Span { start: span.start, samples: at }.clipped_to(frames),
             });
         }
         if typed.ended {
@@ -78,13 +85,25 @@ fn segments(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
     }
     let spacing = desk.line_spacing_hz();
     let facts = format!(
-        "{} samples, {} s\nlines every {} Hz",
+        "{} {}, {} s\nlines every {} Hz",
         figure::count(span.samples),
+        if span.samples == 1 { "sample" } else { "samples" },
         figure::seconds(span.samples as f64 / rate, rate),
         figure::significant(spacing, 4)
     );
     quiet(ui, facts);
     removal(ui, desk, intents);
+}
+
+/// The segment with another start; past its end the whole of it moves, as far as the capture goes.
+fn started_at(span: Span, at: u64, frames: u64) -> Span {
+    if at < span.end() { Span::from_range(at..span.end()) } else { Span { start: at, ..span }.clipped_to(frames) }
+}
+
+/// The segment with another end; before its start the whole of it moves, as far as the capture goes.
+fn ended_at(span: Span, at: u64) -> Span {
+    let start = if at > span.start { span.start } else { at.saturating_sub(span.samples) };
+    Span::from_range(start..at)
 }
 
 fn chips(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
@@ -173,15 +192,13 @@ fn frequency(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     let (lo, hi) = axes.frequency_hz.unwrap_or((0.0, nyquist));
     let mut set = |frequency_hz| intents.push(Intent::Change(Command::SetAxes(ViewAxes { frequency_hz, ..axes })));
     let speed = (hi - lo) / 300.0;
-    let from = row(ui, "From", |ui, id| {
-        number(ui, id, lo, |f| f.range(0.0..=hi - 1e-3).suffix(" Hz").speed(speed).max_decimals(3))
-    });
+    let below = Bounds::within(0.0..=(hi - 1e-3).max(0.0));
+    let from = number_row(ui, "From", lo, &below, |f| f.suffix(" Hz").speed(speed).max_decimals(3), |_| {});
     if from.changed {
         set(Some((from.value, hi)));
     }
-    let to = row(ui, "To", |ui, id| {
-        number(ui, id, hi, |f| f.range(lo + 1e-3..=nyquist).suffix(" Hz").speed(speed).max_decimals(3))
-    });
+    let above = Bounds::within((lo + 1e-3).min(nyquist)..=nyquist);
+    let to = number_row(ui, "To", hi, &above, |f| f.suffix(" Hz").speed(speed).max_decimals(3), |_| {});
     if to.changed {
         set(Some((lo, to.value)));
     }
@@ -203,12 +220,12 @@ fn level(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     let Some((lo, hi)) = axes.level_db else { return };
     let mut set =
         |level_db| intents.push(Intent::Change(Command::SetAxes(ViewAxes { level_db: Some(level_db), ..axes })));
-    let top = row(ui, "Top", |ui, id| number(ui, id, hi, |f| f.range(lo + 5.0..=400.0).suffix(" dB").max_decimals(1)));
+    let top = number_row(ui, "Top", hi, &Bounds::within(lo + 5.0..=400.0), |f| f.suffix(" dB").max_decimals(1), |_| {});
     if top.changed {
         set((lo, top.value));
     }
-    let low =
-        row(ui, "Bottom", |ui, id| number(ui, id, lo, |f| f.range(-400.0..=hi - 5.0).suffix(" dB").max_decimals(1)));
+    let bottom = Bounds::within(-400.0..=hi - 5.0);
+    let low = number_row(ui, "Bottom", lo, &bottom, |f| f.suffix(" dB").max_decimals(1), |_| {});
     if low.changed {
         set((low.value, hi));
     }
@@ -226,5 +243,22 @@ fn notes(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     }
     if response.lost_focus() {
         intents.push(Intent::CloseStep);
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_start_past_the_end_and_an_end_before_the_start_move_the_whole() {
+        let span = Span::from_range(90..330);
+        assert_eq!(started_at(span, 100, 1000), Span::from_range(100..330));
+        assert_eq!(started_at(span, 350, 1000), Span::from_range(350..590));
+        assert_eq!(started_at(span, 330, 1000), Span::from_range(330..570));
+        assert_eq!(started_at(span, 900, 1000), Span::from_range(900..1000));
+        assert_eq!(ended_at(span, 100), Span::from_range(90..100));
+        assert_eq!(ended_at(Span::from_range(500..600), 300), Span::from_range(200..300));
+        assert_eq!(ended_at(span, 50), Span::from_range(0..50));
     }
 }

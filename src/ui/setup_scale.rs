@@ -3,8 +3,9 @@
 use eframe::egui::{self, ComboBox, TextEdit, Ui};
 
 use super::desk::Desk;
+use super::typed::{Bounds, complain, number_row, watched};
 use super::view::{Intent, Intents};
-use super::widget::{number, quiet, row, section};
+use super::widget::{quiet, row, section};
 use super::{figure, theme};
 use crate::session::Command;
 use crate::units::{Detector, Factor, Quantity, Scale};
@@ -96,9 +97,16 @@ fn factor(ui: &mut Ui, scale: &mut Scale) -> bool {
     let unit = scale.unit.clone();
     match &mut scale.factor {
         Factor::NotStated => {
-            let typed = row(ui, "1 FS is", |ui, id| {
-                number(ui, id, 0.0, |f| f.range(0.0..=1e12).speed(0.1).suffix(format!(" {unit}")).max_decimals(9))
-            });
+            // Nothing is stated yet: 0 stands for that, and may be left standing.
+            let bounds = Bounds::above_zero(0.0..=1e12);
+            let typed = number_row(
+                ui,
+                "1 FS is",
+                0.0,
+                &bounds,
+                |f| f.speed(0.1).suffix(format!(" {unit}")).max_decimals(9),
+                |_| {},
+            );
             if typed.changed && typed.value > 0.0 {
                 scale.factor = Factor::UnitsPerFullScale(typed.value);
             }
@@ -119,9 +127,8 @@ fn factor(ui: &mut Ui, scale: &mut Scale) -> bool {
 /// A field for a number above 0; typed, not dragged into nonsense.
 fn positive(ui: &mut Ui, label: &str, value: &mut f64, suffix: &str) -> bool {
     let speed = (value.abs() * 0.005).max(1e-6);
-    let typed = row(ui, label, |ui, id| {
-        number(ui, id, *value, |f| f.range(1e-12..=1e12).speed(speed).suffix(suffix).max_decimals(9))
-    });
+    let bounds = Bounds::above_zero(1e-12..=1e12);
+    let typed = number_row(ui, label, *value, &bounds, |f| f.speed(speed).suffix(suffix).max_decimals(9), |_| {});
     if typed.changed {
         *value = typed.value;
     }
@@ -141,20 +148,22 @@ fn detector(ui: &mut Ui, scale: &mut Scale) {
 
 fn reference(ui: &mut Ui, scale: &mut Scale) -> bool {
     let mut own = scale.reference.is_some();
-    row(ui, "Reference", |ui, id| {
+    let (ended, complaint) = row(ui, "Reference", |ui, id| {
         if ui.checkbox(&mut own, "own").labelled_by(id).changed() {
             scale.reference = own.then_some(1.0);
         }
-        let Some(value) = scale.reference else { return false };
+        let Some(value) = scale.reference else { return (false, None) };
         let suffix = format!(" {}", scale.unit);
         let speed = (value.abs() * 0.005).max(1e-9);
-        let field = egui::DragValue::new(scale.reference.get_or_insert(value))
-            .range(1e-15..=1e9)
-            .speed(speed)
-            .suffix(suffix)
-            .max_decimals(12)
-            .update_while_editing(false);
-        let response = ui.add(field).accessible_name(format!("Reference in {}", figure::significant(value, 3)));
-        response.drag_stopped() || response.lost_focus()
-    })
+        let bounds = Bounds::above_zero(1e-15..=1e9);
+        let (response, complaint) = watched(ui, scale.reference.get_or_insert(value), &bounds, |f| {
+            f.speed(speed).suffix(suffix).max_decimals(12)
+        });
+        let response = response.accessible_name(format!("Reference in {}", figure::significant(value, 3)));
+        (response.drag_stopped() || response.lost_focus(), complaint)
+    });
+    if let Some(complaint) = complaint {
+        complain(ui, &complaint);
+    }
+    ended
 }

@@ -1,8 +1,6 @@
 //! Small parts used all over: texts, fields, drawn marks.
 
-use eframe::egui::{
-    self, Color32, DragValue, Id, Painter, Pos2, Rect, Response, RichText, Shape, Stroke, Ui, Vec2, pos2, vec2,
-};
+use eframe::egui::{self, Color32, Id, Painter, Pos2, Rect, Response, RichText, Shape, Stroke, Ui, Vec2, pos2, vec2};
 
 use super::theme;
 use crate::reading::{ReadingState, Verdict};
@@ -42,18 +40,6 @@ pub(super) struct Typed {
     pub(super) changed: bool,
     /// A drag or a text has ended.
     pub(super) ended: bool,
-}
-
-/// A number's field, named by `label`, that commits on Enter, on leaving, and while it is dragged.
-pub(super) fn number(
-    ui: &mut Ui,
-    label: Id,
-    mut value: f64,
-    shape: impl for<'a> FnOnce(DragValue<'a>) -> DragValue<'a>,
-) -> Typed {
-    let field = shape(DragValue::new(&mut value).update_while_editing(false));
-    let response = ui.add(field).labelled_by(label);
-    Typed { value, changed: response.changed(), ended: response.drag_stopped() || response.lost_focus() }
 }
 
 /// A text field that is taken when it is left, not while it is typed in: gives the text then. Esc leaves it as it was.
