@@ -10,6 +10,9 @@ use std::sync::Arc;
 use std::time::{Duration, Instant};
 
 use eframe::egui::{self, Context, Event, Modifiers, MouseWheelUnit, PointerButton, Pos2, RawInput, Rect, pos2, vec2};
+use panewise::reading::{Request, analyse_curves};
+use panewise::session::{CaptureRef, Session};
+use panewise::signal::{Span, Watch};
 use panewise::ui::{DesktopPicker, Services, Workbench};
 
 const RATE_HZ: u32 = 8192;
@@ -29,6 +32,7 @@ fn main() {
         let up = if (i / 20) % 2 == 0 { 1.0 } else { -1.0 };
         vec![Event::PointerMoved(over_pane), wheel(up)]
     });
+    following(&capture);
     // The end handle of a segment over the whole capture stands at the strip's right edge.
     let edge = pos2(1270.0, 110.0);
     screen.frame(vec![Event::PointerMoved(edge)]);
@@ -36,6 +40,24 @@ fn main() {
     screen.measure("dragging an edge of the segment", |i| {
         vec![Event::PointerMoved(edge - vec2(1.0 + (i % 50) as f32, 0.0))]
     });
+}
+
+/// What lies between an edge's move and new curves: the samples read from the file, their transform and six panes.
+fn following(path: &Path) {
+    let capture = panewise::capture::open(path).unwrap();
+    let mut request = Request::from_session(&Session::new(CaptureRef::of(&capture, String::new())));
+    let mut times: Vec<Duration> = (0..50)
+        .map(|i| {
+            request.span = Span { start: 1000, samples: (1 << 17) + i };
+            let start = Instant::now();
+            analyse_curves(&*capture.source, &request, &Watch::new()).unwrap();
+            start.elapsed()
+        })
+        .collect();
+    times.sort();
+    let ms = |t: Duration| t.as_secs_f64() * 1e3;
+    let (median, worst) = (ms(times[25]), ms(times[49]));
+    println!("{:36} median {median:6.2} ms, worst {worst:6.2} ms", "new curves of 2^17 samples and some");
 }
 
 fn wheel(up: f32) -> Event {
