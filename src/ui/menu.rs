@@ -7,7 +7,7 @@ use eframe::egui::{self, Align, Button, ComboBox, Layout, MenuBar, RichText, The
 use super::action::{Action, ENTRIES, Entry, Menu};
 use super::desk::{Desk, file_name};
 use super::view::{Intent, Intents, View};
-use super::{figure, theme};
+use super::{figure, list, theme};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, RecentFile};
 use crate::signal::Removal;
 
@@ -178,12 +178,15 @@ fn channel(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
         return;
     }
     let combo = ComboBox::from_id_salt("channel").selected_text(title(desk.session.channel)).width(90.0);
-    let shown = combo.show_ui(ui, |ui| {
+    let shown = list::show(ui, combo, |ui| {
+        let mut chosen = false;
         for c in 0..n {
-            if ui.selectable_label(desk.session.channel == c, title(c)).clicked() {
+            if list::item(ui, desk.session.channel == c, title(c)) {
                 intents.push(Intent::Change(Command::ChooseChannel(c)));
+                chosen = true;
             }
         }
+        chosen
     });
-    shown.response.accessible_name("Channel");
+    shown.accessible_name("Channel");
 }

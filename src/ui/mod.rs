@@ -17,6 +17,7 @@ mod figure;
 mod files;
 mod keep;
 mod lane;
+mod list;
 mod menu;
 mod merits;
 mod notice;

@@ -7,7 +7,7 @@ use super::desk::Desk;
 use super::typed::{Bounds, number_row};
 use super::view::{Intent, Intents, View};
 use super::widget::{quiet, row, section};
-use super::{figure, theme};
+use super::{figure, list, theme};
 use super::{setup_rate, setup_scale, setup_search};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, Note, ViewAxes};
 use crate::signal::{Removal, Span};
@@ -140,14 +140,17 @@ fn removal(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
     };
     row(ui, "Take out", |ui, id| {
         let combo = ComboBox::from_id_salt("removal").selected_text(title(desk.session.removal));
-        let shown = combo.show_ui(ui, |ui| {
+        let shown = list::show(ui, combo, |ui| {
+            let mut chosen = false;
             for choice in [Removal::None, Removal::Mean, Removal::Line] {
-                if ui.selectable_label(desk.session.removal == choice, title(choice)).clicked() {
+                if list::item(ui, desk.session.removal == choice, title(choice)) {
                     intents.push(Intent::Change(Command::SetRemoval(choice)));
+                    chosen = true;
                 }
             }
+            chosen
         });
-        shown.response.labelled_by(id);
+        shown.labelled_by(id);
     });
     if let Some(reading) = desk.reading().filter(|_| desk.session.removal != Removal::None) {
         let removed = reading.segment.removed;

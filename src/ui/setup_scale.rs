@@ -6,7 +6,7 @@ use super::desk::Desk;
 use super::typed::{Bounds, complain, number_row, watched};
 use super::view::{Intent, Intents};
 use super::widget::{quiet, row, section};
-use super::{figure, theme};
+use super::{figure, list, theme};
 use crate::session::Command;
 use crate::units::{Detector, Factor, Quantity, Scale};
 
@@ -49,11 +49,12 @@ fn quantity(ui: &mut Ui, scale: &mut Scale) -> bool {
     let title = |q: Quantity| if q == Quantity::Plain { "none stated" } else { q.title() };
     row(ui, "Quantity", |ui, id| {
         let combo = ComboBox::from_id_salt("quantity").selected_text(title(scale.quantity));
-        let shown = combo.show_ui(ui, |ui| {
+        let shown = list::show(ui, combo, |ui| {
+            let mut chosen = false;
             for quantity in Quantity::ALL {
-                if ui.selectable_label(scale.quantity == quantity, title(quantity)).clicked()
-                    && scale.quantity != quantity
-                {
+                let taken = list::item(ui, scale.quantity == quantity, title(quantity));
+                chosen |= taken;
+                if taken && scale.quantity != quantity {
                     scale.quantity = quantity;
                     usual_unit(quantity).clone_into(&mut scale.unit);
                     scale.reference = None;
@@ -61,8 +62,9 @@ fn quantity(ui: &mut Ui, scale: &mut Scale) -> bool {
                     scale.factor = Factor::NotStated;
                 }
             }
+            chosen
         });
-        shown.response.labelled_by(id);
+        shown.labelled_by(id);
         false
     })
 }
@@ -82,17 +84,21 @@ fn factor(ui: &mut Ui, scale: &mut Scale) -> bool {
     let by_sensitivity = matches!(scale.factor, Factor::Sensitivity { .. });
     row(ui, "Stated by", |ui, id| {
         let title = if by_sensitivity { "sensitivity" } else { "factor" };
-        let shown = ComboBox::from_id_salt("factor").selected_text(title).show_ui(ui, |ui| {
+        let combo = ComboBox::from_id_salt("factor").selected_text(title);
+        let shown = list::show(ui, combo, |ui| {
             let units = scale.units_per_full_scale();
-            if ui.selectable_label(!by_sensitivity, "factor").clicked() {
+            let factor = list::item(ui, !by_sensitivity, "factor");
+            if factor && by_sensitivity {
                 scale.factor = Factor::UnitsPerFullScale(units);
             }
-            if ui.selectable_label(by_sensitivity, "sensitivity").clicked() && !by_sensitivity {
+            let sensitivity = list::item(ui, by_sensitivity, "sensitivity");
+            if sensitivity && !by_sensitivity {
                 let full_scale_volts = 1.0;
                 scale.factor = Factor::Sensitivity { volts_per_unit: full_scale_volts / units, full_scale_volts };
             }
+            factor || sensitivity
         });
-        shown.response.labelled_by(id);
+        shown.labelled_by(id);
     });
     let unit = scale.unit.clone();
     match &mut scale.factor {
@@ -137,12 +143,18 @@ fn positive(ui: &mut Ui, label: &str, value: &mut f64, suffix: &str) -> bool {
 
 fn detector(ui: &mut Ui, scale: &mut Scale) {
     row(ui, "Detector", |ui, id| {
-        let shown = ComboBox::from_id_salt("detector").selected_text(scale.detector.title()).show_ui(ui, |ui| {
+        let combo = ComboBox::from_id_salt("detector").selected_text(scale.detector.title());
+        let shown = list::show(ui, combo, |ui| {
+            let mut chosen = false;
             for detector in Detector::ALL {
-                ui.selectable_value(&mut scale.detector, detector, detector.title());
+                if list::item(ui, scale.detector == detector, detector.title()) {
+                    scale.detector = detector;
+                    chosen = true;
+                }
             }
+            chosen
         });
-        shown.response.labelled_by(id);
+        shown.labelled_by(id);
     });
 }
 

@@ -298,7 +298,7 @@ fn verdict_word(verdict: Verdict) -> &'static str {
 
 /// Up and down move the pick while nothing else wants these keys.
 pub(super) fn keys(ui: &Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
-    let free = ui.memory(|m| m.focused().is_none());
+    let free = ui.memory(|m| m.focused().is_none()) && !egui::Popup::is_any_open(ui.ctx());
     if !free {
         return;
     }

@@ -5,7 +5,7 @@ use std::sync::Arc;
 use std::sync::mpsc::{Receiver, Sender, channel};
 use std::time::{Duration, Instant};
 
-use eframe::egui::{CentralPanel, Context, Frame, Margin, Panel, Ui, ViewportCommand};
+use eframe::egui::{CentralPanel, Context, Frame, Margin, Panel, Popup, Ui, ViewportCommand};
 
 use super::action;
 use super::desk::Desk;
@@ -195,7 +195,8 @@ impl Workbench {
     pub fn ui(&mut self, ui: &mut Ui) {
         let mut intents = Intents::new();
         if self.dialogs.is_empty() {
-            let typing = ui.ctx().text_edit_focused();
+            // Keys that type belong to an open list too.
+            let typing = ui.ctx().text_edit_focused() || Popup::is_any_open(ui.ctx());
             intents.extend(action::pressed(ui.ctx(), typing).into_iter().map(Intent::Do));
         }
         self.view.preview = None;

@@ -7,6 +7,7 @@ mod choosing;
 mod desk;
 mod journey;
 mod keeping;
+mod lists;
 mod opening;
 mod setup;
 mod typing;
