@@ -168,7 +168,7 @@ impl Workbench {
 
     /// Puts what was opened on the desk; what lay there is gone.
     pub(super) fn accept(&mut self, opened: Opened) {
-        let Opened { capture, session, file, as_saved, remark, recovered } = opened;
+        let Opened { capture, session, file, as_saved, remark, recovered, figures } = opened;
         self.n_opened += 1;
         let number = self.n_opened;
         let capture = Arc::new(capture);
@@ -183,6 +183,7 @@ impl Workbench {
         if let Some(threads) = &self.threads {
             desk.latest = Latest::after(threads.worker.newest());
         }
+        desk.recheck = figures.map(|figures| (desk.request(), figures));
         if !as_saved {
             desk.mark_unsaved();
         }

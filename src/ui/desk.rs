@@ -6,7 +6,7 @@ use std::sync::Arc;
 use super::worker::Latest;
 use crate::capture::{Capture, Overview};
 use crate::reading::{Reading, Request};
-use crate::session::{CaptureRef, History, NamedSegment, Session};
+use crate::session::{CaptureRef, Figures, History, NamedSegment, Session};
 use crate::signal::{Span, Watch};
 use crate::units::Scale;
 use crate::window::Window;
@@ -25,6 +25,8 @@ pub(super) struct Desk {
     pub(super) capture: Arc<Capture>,
     /// The whole of it, small; filled in the background.
     pub(super) overview: Overview,
+    /// The figures saved with the session that was opened and what they were asked for with, until they are compared.
+    pub(super) recheck: Option<(Request, Figures)>,
     /// Whether everything there is to find in the capture has been found.
     pub(super) surveyed: bool,
     /// The channel that was, or is being, read through.
@@ -99,6 +101,7 @@ impl Desk {
             history: History::new(),
             overview: Overview::new(&capture),
             capture,
+            recheck: None,
             surveyed: false,
             surveyed_channel: None,
             marked: true,
@@ -156,6 +159,30 @@ impl Desk {
         let mut request = Request::from_session(&self.session);
         request.capture.blake3.clear();
         request
+    }
+
+    /// What became of the figures saved with the session: whether all stand, and a sentence; once, as soon as those
+    /// asked for by the session as it was opened are there.
+    pub(super) fn take_verdict(&mut self) -> Option<(bool, String)> {
+        if self.recheck.is_none() || !self.latest.is_current() {
+            return None;
+        }
+        let now = crate::reading::figures_of(self.reading()?);
+        let asked = self.latest.asked.as_ref().map(|a| a.1.clone())?;
+        let (request, saved) = self.recheck.take()?;
+        // The document was changed meanwhile: its figures are no longer those to compare.
+        if asked != request {
+            return None;
+        }
+        let moved = saved.moved(&now);
+        let Some(first) = moved.first() else {
+            let n = saved.tones.len();
+            return Some((true, format!("Every figure saved with this session stands ({n} tones).")));
+        };
+        let (n, word) = (moved.len(), if moved.len() == 1 { "figure" } else { "figures" });
+        let (was, is) = (crate::report::figure_text(&first.was), crate::report::figure_text(&first.is));
+        let text = format!("{n} {word} moved since this session was saved: {} was {was}, is {is}", first.what);
+        Some((false, if n > 1 { format!("{text}, and more.") } else { format!("{text}.") }))
     }
 
     /// The segment read.

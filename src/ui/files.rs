@@ -113,7 +113,9 @@ impl Kept {
     fn opened(self, session: Session, capture: Capture, as_saved: bool, remark: Option<String>) -> Opened {
         let (file, recovered) = (self.file(), self.recovered);
         let as_saved = as_saved && recovered.is_none();
-        Opened { capture, session: Some(session), file, as_saved, remark, recovered }
+        // What was left unsaved may have moved on since its figures were kept.
+        let figures = self.loaded.figures.filter(|_| recovered.is_none());
+        Opened { capture, session: Some(session), file, as_saved, remark, recovered, figures }
     }
 }
 
@@ -130,6 +132,8 @@ pub(super) struct Opened {
     pub(super) remark: Option<String>,
     /// What an earlier run left of it: may go once the session is safe elsewhere.
     pub(super) recovered: Option<Recovered>,
+    /// The figures that were saved with the session.
+    pub(super) figures: Option<Figures>,
 }
 
 /// A session whose capture is not what it was.
@@ -150,7 +154,15 @@ pub(super) fn open(path: &Path, watch: &Watch) -> Outcome {
     }
     match capture::open(path) {
         Ok(capture) => {
-            let opened = Opened { capture, session: None, file: None, as_saved: true, remark: None, recovered: None };
+            let opened = Opened {
+                capture,
+                session: None,
+                file: None,
+                as_saved: true,
+                remark: None,
+                recovered: None,
+                figures: None,
+            };
             Outcome::Opened(Box::new(opened))
         }
         Err(error) => Outcome::Refused(error.to_string()),

@@ -51,10 +51,14 @@ pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Inten
             let text =
                 format!("{} over the floor  ·  levels in {}", reading.tones.len(), reading.scale.reference_label);
             widget::quiet(ui, text);
-            for warning in &reading.warnings {
-                let text = RichText::new(&warning.text).font(theme::quiet()).color(palette.alarm);
-                ui.add(Label::new(text).truncate());
-            }
         }
     });
+    if desk.latest.is_current()
+        && let Some(reading) = desk.reading()
+    {
+        // Lines of their own: what is doubtful about the figures is not to be cut short.
+        for warning in &reading.warnings {
+            ui.add(Label::new(RichText::new(&warning.text).color(palette.alarm)).wrap());
+        }
+    }
 }

@@ -46,6 +46,7 @@ fn opened(path: &str) -> Outcome {
         as_saved: true,
         remark: None,
         recovered: None,
+        figures: None,
     }))
 }
 

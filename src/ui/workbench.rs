@@ -291,6 +291,11 @@ impl Workbench {
                 // Also while an edge is held still in a drag: what waits is served by asking for answers.
                 ctx.request_repaint_after(Duration::from_millis(100));
             }
+            match desk.take_verdict() {
+                Some((true, text)) => self.notices.tell(&text),
+                Some((false, text)) => self.notices.refuse(&text),
+                None => {}
+            }
         }
     }
 

@@ -156,3 +156,20 @@ fn keys_walk_the_tones_and_move_the_hairline() {
     screen.key(Modifiers::NONE, Key::A);
     assert_eq!(screen.session().axes.frequency_hz, None);
 }
+
+#[test]
+fn what_is_doubtful_about_the_figures_stands_above_the_table_uncut() {
+    let desk = Desk::new();
+    // A blow that dies away.
+    super::desk::write_channels(&desk.path("tap.wav"), |t, x| [x * (-1.5 * t).exp(), 0.0]);
+    let mut screen = desk.open("tap.wav");
+    screen.menu("Segment", "Mark the whole capture");
+    screen.settle();
+    let warnings = screen.harness.state().reading().expect("a reading").0.warnings.clone();
+    assert!(warnings.iter().any(|w| w.code == "not-steady"), "{warnings:?}");
+    let head = screen.harness.get_by_label("frequency, Hz").rect();
+    for warning in warnings {
+        let line = screen.harness.get_by_label(&warning.text).rect();
+        assert!(line.bottom() <= head.top() && line.width() > 300.0, "{line:?}");
+    }
+}

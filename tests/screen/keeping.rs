@@ -209,3 +209,29 @@ fn where_there_are_no_desktop_dialogs_a_session_is_saved_by_path() {
     screen.click("Replace");
     screen.wait("it is not saved", |_| panewise::session::load(&desk.path("other.session.ron")).is_ok());
 }
+
+#[test]
+fn a_session_whose_figures_moved_says_so_when_it_is_opened() {
+    let desk = Desk::new();
+    let file = desk.path("pump.session.ron");
+    let mut screen = desk.open("pump.wav");
+    desk.picker.paths.lock().unwrap().push_back(file.clone());
+    screen.key(Modifiers::COMMAND, Key::S);
+    screen.wait("it is not saved", |_| file.is_file());
+    drop(screen);
+    let loaded = panewise::session::load(&file).unwrap();
+    let mut figures = loaded.figures.expect("figures");
+    let n = figures.tones.len();
+    let screen = desk.open("pump.session.ron");
+    assert!(screen.shows(&format!("Every figure saved with this session stands ({n} tones).")));
+    drop(screen);
+    figures.tones[0].level_db += 1.0;
+    panewise::session::save(&file, &loaded.session, Some(&figures)).unwrap();
+    let screen = desk.open("pump.session.ron");
+    assert!(screen.shows("1 figure moved since this session was saved"));
+    assert!(!screen.shows("Every figure saved"));
+    drop(screen);
+    panewise::session::save(&file, &loaded.session, None).unwrap();
+    let screen = desk.open("pump.session.ron");
+    assert!(!screen.shows("moved since") && !screen.shows("Every figure saved"));
+}
