@@ -78,6 +78,8 @@ pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &View, reading: &Readin
             let sum: f64 = cell.ledger.iter().map(|s| s.db).sum();
             let text = format!("level {} dB", figure::fixed(sum, 3));
             ui.label(RichText::new(text).font(theme::heavy(ui.ctx(), theme::BODY)));
+        });
+        ui.horizontal_wrapped(|ui| {
             facts(ui, cell, spacing);
             small(ui, cell);
         });

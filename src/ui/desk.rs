@@ -47,7 +47,8 @@ pub(super) struct Desk {
     pub(super) watch: Watch,
     /// Calls off the columns that the strip last wanted.
     pub(super) columns_watch: Watch,
-    /// Whether it is as it was opened from its capture: nobody has changed anything.
+    /// Whether nobody has changed anything since its channel was chosen, nor marked anything before: then the suggested
+    /// stretch may take its place.
     pub(super) untouched: bool,
 }
 

@@ -9,7 +9,7 @@ use eframe::egui::{
 
 use super::desk::Desk;
 use super::panes::Shared;
-use super::plot::{Axis, Trace, draw_trace, place};
+use super::plot::{Axis, Trace, Wish, draw_trace, place};
 use super::theme::{self, Palette};
 use super::view::{Intent, Intents, View, held_range};
 use super::{figure, overlay, pane_head, widget};
@@ -235,22 +235,32 @@ impl Plot<'_> {
             }
             widget::state_mark(painter, *at, reading.state, ink);
         }
-        marks.retain(|(tone, r, _)| r.state == ReadingState::Clear || self.is_picked(tone, desk));
+        let labelled = |tone: &Tone, r: &PaneReading| r.state == ReadingState::Clear || self.is_picked(tone, desk);
+        let bare = marks.iter().filter(|(tone, r, _)| !labelled(tone, r));
+        let taken: Vec<Rect> =
+            bare.map(|m| Rect::from_center_size(m.2, vec2(7.0, 7.0))).chain(taken.iter().copied()).collect();
+        marks.retain(|(tone, r, _)| labelled(tone, r));
         marks.sort_by(|a, b| {
             let first = |m: &(&Tone, _, _)| self.is_picked(m.0, desk);
             first(b).cmp(&first(a)).then(b.1.level_db.total_cmp(&a.1.level_db))
         });
         marks.truncate(40);
-        let texts: Vec<String> = marks.iter().map(|(tone, r, _)| label(tone, r)).collect();
-        let sized: Vec<_> =
-            marks.iter().zip(&texts).map(|(m, text)| (m.2, widget::text_size(painter, text, theme::quiet()))).collect();
-        for ((found, text), (tone, _, _)) in place(self.area, &sized, taken).into_iter().zip(&texts).zip(&marks) {
-            let Some(rect) = found else { continue };
+        let texts: Vec<[String; 2]> = marks.iter().map(|(tone, r, _)| labels(tone, r)).collect();
+        let size = |text: &String| widget::text_size(painter, text, theme::quiet());
+        let wish =
+            |(m, text): (&(_, _, egui::Pos2), &[String; 2])| Wish { mark: m.2, sizes: text.each_ref().map(size) };
+        let wishes: Vec<Wish> = marks.iter().zip(&texts).map(wish).collect();
+        for ((found, [full, brief]), (tone, _, _)) in
+            place(self.area, &wishes, &taken).into_iter().zip(&texts).zip(&marks)
+        {
+            let Some((rect, short)) = found else { continue };
+            let text = if short { brief } else { full };
             let ground = rect.expand2(vec2(3.0, 0.0));
             let mark = self.mark(tone).map_or(rect.center(), |m| m.1);
-            if mark.y - rect.bottom() > 8.0 {
-                let foot = pos2(mark.x.clamp(rect.left(), rect.right()), rect.bottom());
-                painter.line_segment([foot, mark - vec2(0.0, 4.0)], Stroke::new(1.0, self.palette.quiet));
+            // A label that stands off is tied to its mark.
+            let foot = pos2(mark.x.clamp(rect.left(), rect.right()), mark.y.clamp(rect.top(), rect.bottom()));
+            if mark.distance(foot) > 8.0 {
+                painter.line_segment([foot, mark], Stroke::new(1.0, self.palette.quiet));
             }
             painter.rect_filled(ground, 2.0, self.palette.card);
             // In a crowd a label may stand on other tones' marks: these still show, behind the letters.
@@ -363,7 +373,9 @@ fn kernel_title(window: &Window, hz: f64) -> String {
     format!("kernel of {window} at {} Hz", figure::fixed(hz, 2))
 }
 
-fn label(tone: &Tone, reading: &PaneReading) -> String {
+/// What stands beside a mark: frequency and level, or, in a crowd, the frequency alone.
+fn labels(tone: &Tone, reading: &PaneReading) -> [String; 2] {
     let hz = if reading.borrowed { tone.frequency_hz } else { reading.peak_hz };
-    format!("{} Hz  {} dB", figure::fixed(hz, 2), figure::fixed(reading.level_db, 1))
+    let hz = figure::fixed(hz, 2);
+    [format!("{hz} Hz  {} dB", figure::fixed(reading.level_db, 1)), hz]
 }

@@ -16,6 +16,8 @@ const GAP: f32 = 8.0;
 const LEAST_WIDTH: f32 = 300.0;
 /// A pane is at least so high; a grid that is higher scrolls.
 const LEAST_HEIGHT: f32 = 148.0;
+/// The level axis reaches at least so far over the highest line.
+const HEADROOM_DB: f64 = 15.0;
 /// At most so many columns.
 const MOST_COLUMNS: usize = 4;
 
@@ -96,7 +98,8 @@ fn fit_level(desk: &Desk, offset_db: f64) -> Option<(f64, f64)> {
     if !top.is_finite() || top <= -390.0 {
         return None;
     }
-    let top = ((top + offset_db + 8.0) / 10.0).ceil() * 10.0;
+    // Room for the labels of the highest marks.
+    let top = ((top + offset_db + HEADROOM_DB) / 10.0).ceil() * 10.0;
     let low = ((middle + offset_db - 25.0) / 10.0).floor() * 10.0;
     Some((low.clamp(top - 200.0, top - 60.0), top))
 }

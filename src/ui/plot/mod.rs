@@ -6,4 +6,4 @@ mod labels;
 
 pub(super) use axis::Axis;
 pub(super) use curve::{CurveCache, Trace, draw_trace};
-pub(super) use labels::place;
+pub(super) use labels::{Wish, place};
