@@ -52,6 +52,24 @@ pub(super) enum Action {
     About,
 }
 
+impl Action {
+    /// Whether doing it again goes on a step further.
+    fn is_a_step(self) -> bool {
+        matches!(
+            self,
+            Self::NextTone
+                | Self::PreviousTone
+                | Self::ZoomIn
+                | Self::ZoomOut
+                | Self::PanLeft
+                | Self::PanRight
+                | Self::Undo
+                | Self::Redo
+                | Self::NextSegment
+        )
+    }
+}
+
 /// A menu of the menu bar, in the order of the job.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) enum Menu {
@@ -173,12 +191,16 @@ pub(super) fn pressed(ctx: &egui::Context, typing: bool) -> Vec<Action> {
     let mut actions = Vec::new();
     ctx.input_mut(|input| {
         for (entry, key) in keyed {
-            let twin = (key.logical_key == Key::Plus).then(|| KeyboardShortcut::new(key.modifiers, Key::Equals));
-            let hit = !(typing && entry.types)
-                && (input.consume_shortcut(&key) || twin.is_some_and(|t| input.consume_shortcut(&t)));
-            if hit {
-                actions.push(entry.action);
+            if typing && entry.types {
+                continue;
             }
+            let mut n = input.count_and_consume_key(key.modifiers, key.logical_key);
+            if key.logical_key == Key::Plus {
+                n += input.count_and_consume_key(key.modifiers, Key::Equals);
+            }
+            // A key held down may come more than once in a frame: a step is then taken as often.
+            let n = if entry.action.is_a_step() { n } else { n.min(1) };
+            actions.extend(std::iter::repeat_n(entry.action, n));
         }
     });
     actions

@@ -235,18 +235,21 @@ fn catalogue_rows(ui: &mut Ui, desk: &Desk, view: &mut View, choosing: &mut Choo
 fn keys(ui: &Ui, list: Id, desk: &Desk, choosing: &mut Choosing) -> Option<End> {
     let filter = EventFilter { vertical_arrows: true, escape: true, ..EventFilter::default() };
     ui.memory_mut(|m| m.set_focus_lock_filter(list, filter));
-    let pressed = |key| ui.input_mut(|i| i.consume_key(Modifiers::NONE, key));
-    let (row, last) = (choosing.row(), catalogue().len().saturating_sub(1));
-    for (key, to) in [
-        (Key::ArrowDown, (row + 1).min(last)),
-        (Key::ArrowUp, row.saturating_sub(1)),
-        (Key::PageDown, (row + PAGE).min(last)),
-        (Key::PageUp, row.saturating_sub(PAGE)),
-        (Key::Home, 0),
-        (Key::End, last),
+    // A key held down may come more than once in a frame.
+    let times = |key| ui.input_mut(|i| i.count_and_consume_key(Modifiers::NONE, key));
+    let pressed = |key| times(key) > 0;
+    let last = catalogue().len().saturating_sub(1);
+    for (key, forward, back) in [
+        (Key::ArrowDown, 1, 0),
+        (Key::ArrowUp, 0, 1),
+        (Key::PageDown, PAGE, 0),
+        (Key::PageUp, 0, PAGE),
+        (Key::Home, 0, last),
+        (Key::End, last, 0),
     ] {
-        if pressed(key) {
-            choosing.mark(to, desk);
+        let n = times(key);
+        if n > 0 {
+            choosing.mark((choosing.row() + n * forward).min(last).saturating_sub(n * back), desk);
             choosing.reveal = true;
         }
     }

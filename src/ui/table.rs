@@ -7,6 +7,7 @@ use eframe::egui::{
 };
 use egui_extras::{Column, TableBuilder, TableRow};
 
+use super::action::Action;
 use super::desk::Desk;
 use super::pane::is_picked;
 use super::theme::{self, Palette};
@@ -297,16 +298,14 @@ fn verdict_word(verdict: Verdict) -> &'static str {
 }
 
 /// Up and down move the pick while nothing else wants these keys.
-pub(super) fn keys(ui: &Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
+pub(super) fn keys(ui: &Ui, intents: &mut Intents) {
     let free = ui.memory(|m| m.focused().is_none()) && !egui::Popup::is_any_open(ui.ctx());
     if !free {
         return;
     }
-    if ui.input_mut(|i| i.consume_key(Modifiers::NONE, Key::ArrowDown)) {
-        step(desk, view, intents, true);
-    }
-    if ui.input_mut(|i| i.consume_key(Modifiers::NONE, Key::ArrowUp)) {
-        step(desk, view, intents, false);
+    for (key, action) in [(Key::ArrowDown, Action::NextTone), (Key::ArrowUp, Action::PreviousTone)] {
+        let n = ui.input_mut(|i| i.count_and_consume_key(Modifiers::NONE, key));
+        intents.extend(std::iter::repeat_with(|| Intent::Do(action)).take(n));
     }
 }
 

@@ -374,5 +374,5 @@ fn bench(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents, paper
         ui.take_available_space();
     });
     CentralPanel::default().frame(paper(8, 4)).show(ui, |ui| panes::show(ui, desk, view, intents));
-    table::keys(ui, desk, view, intents);
+    table::keys(ui, intents);
 }
