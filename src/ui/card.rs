@@ -109,6 +109,10 @@ fn facts(ui: &mut Ui, cell: &PaneReading, spacing: f64) {
     let peak = figure::hertz(cell.peak_hz, spacing);
     let borrowed = if cell.borrowed { ", borrowed from a sharper pane" } else { "" };
     widget::quiet(ui, format!("peak at {peak} Hz{borrowed}"));
+    if let Some(leak) = cell.predicted_leak_db {
+        let leak = if leak.abs() < SMALL_DB { "less than 0.0005".to_owned() } else { figure::fixed(leak, 3) };
+        widget::quiet(ui, format!("other tones move it by {leak} dB; the row's level is free of that"));
+    }
     if let Some(u) = cell.u_db {
         widget::quiet(
             ui,

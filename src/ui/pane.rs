@@ -262,7 +262,8 @@ impl Plot<'_> {
             if mark.distance(foot) > 8.0 {
                 painter.line_segment([foot, mark], Stroke::new(1.0, self.palette.quiet));
             }
-            painter.rect_filled(ground, 2.0, self.palette.card);
+            // A curve under a label stays to be seen.
+            painter.rect_filled(ground, 2.0, self.palette.card.gamma_multiply(0.72));
             // In a crowd a label may stand on other tones' marks: these still show, behind the letters.
             for (reading, at) in reading.tones.iter().filter_map(|t| self.mark(t)).filter(|m| ground.contains(m.1)) {
                 widget::state_mark(&painter.with_clip_rect(ground), at, reading.state, ink.gamma_multiply(0.3));

@@ -6,7 +6,8 @@ use eframe::egui::{Label, ProgressBar, RichText, Ui};
 
 use super::desk::Desk;
 use super::view::{Intent, Intents, View};
-use super::{theme, widget};
+use super::{figure, theme, widget};
+use crate::reading::AdviceLine;
 use crate::signal::Watch;
 
 /// A capture that is being opened, and how to call that off.
@@ -51,6 +52,9 @@ pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Inten
             let text =
                 format!("{} over the floor  ·  levels in {}", reading.tones.len(), reading.scale.reference_label);
             widget::quiet(ui, text);
+            if let Some(best) = reading.advice.first() {
+                ui.add(Label::new(RichText::new(advised(best)).font(theme::quiet()).color(palette.quiet)).truncate());
+            }
         }
     });
     if desk.latest.is_current()
@@ -60,5 +64,39 @@ pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Inten
         for warning in &reading.warnings {
             ui.add(Label::new(RichText::new(&warning.text).color(palette.alarm)).wrap());
         }
+    }
+}
+
+/// The window advised, and how far it can be trusted.
+fn advised(best: &AdviceLine) -> String {
+    let window = best.written();
+    match best.expected_worst_error_db {
+        Some(error) => {
+            let error = figure::significant(error, 2);
+            format!("·  window advised: {window}, worst error to expect {error} dB ({})", best.why)
+        }
+        None => format!("·  no window reads all tones; {window} reads most ({})", best.why),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn advice_says_what_decides_and_when_no_window_does() {
+        let mut best = AdviceLine {
+            window: "kaiser".to_owned(),
+            parameter: vec![8.0],
+            expected_worst_error_db: Some(0.45),
+            why: "the noise at 124.470 Hz decides".to_owned(),
+        };
+        let text = advised(&best);
+        assert_eq!(
+            text,
+            "·  window advised: kaiser=8, worst error to expect 0.45 dB (the noise at 124.470 Hz decides)"
+        );
+        best.expected_worst_error_db = None;
+        assert!(advised(&best).starts_with("·  no window reads all tones; kaiser=8 reads most"));
     }
 }
