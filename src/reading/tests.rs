@@ -123,6 +123,25 @@ fn all_windows_agree_on_a_lone_tone_at_every_offset_and_phase_from_three_cycles(
 }
 
 #[test]
+fn every_window_of_the_catalogue_agrees_on_a_lone_tone_from_three_cycles() {
+    let n = 512;
+    let windows: Vec<_> =
+        crate::window::catalogue().iter().map(|e| crate::window::Window::parse(e.name).unwrap()).collect();
+    for nu in [3.0, 3.3, 4.5, 60.2] {
+        for phase in 0..3 {
+            let tone = Made { frequency_hz: nu * RATE_HZ / n as f64, peak: 0.4, phase: 2.1 * f64::from(phase) };
+            let source = capture(&[tone], 0.0, n);
+            let request = Request { windows: windows.clone(), ..request(n) };
+            let reading = analyse(&source, &request, None, &Watch::new()).unwrap().reading;
+            for pane in &nearest(&reading, nu * RATE_HZ / n as f64).readings {
+                let error = db(pane.amplitude / 0.4);
+                assert!(error.abs() < AGREEMENT_DB, "{nu} cycles, phase {phase}, {}: {error} dB", pane.window);
+            }
+        }
+    }
+}
+
+#[test]
 fn every_ledger_sums_to_its_level() {
     let n = 8192;
     let mut request = request(n);
