@@ -22,6 +22,7 @@ use clap::error::ErrorKind;
 use arguments::{Arguments, Task, WindowsWish};
 use error::CliError;
 use grammar::WindowList;
+pub(crate) use start::demonstration;
 
 /// Done.
 pub const DONE: u8 = 0;
@@ -63,7 +64,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<
     let status = match arguments.task {
         None => match arguments.start.as_deref().and_then(usage::no_start) {
             Some(said) => Err(CliError::Usage(said)),
-            None => return Outcome::OpenWindow(arguments.start.or_else(start::demonstration)),
+            None => return Outcome::OpenWindow(arguments.start.or_else(demonstration)),
         },
         Some(Task::Read(wish)) => read::read(&wish, streams.out).map(|()| DONE),
         Some(Task::Recheck(wish)) => recheck::recheck(&wish, streams.out),

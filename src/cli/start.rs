@@ -9,7 +9,7 @@ const DEMONSTRATION: &str = "sample-captures/saltmarsh-pump2-bearing.wav";
 const FLOORS_UP: usize = 5;
 
 /// The demonstration capture, looked for in the current folder and in those above the program.
-pub(super) fn demonstration() -> Option<PathBuf> {
+pub(crate) fn demonstration() -> Option<PathBuf> {
     let here = Path::new(DEMONSTRATION);
     if here.is_file() {
         return Some(here.to_owned());

@@ -58,9 +58,6 @@ pub struct Services {
     pub demonstration: Option<PathBuf>,
 }
 
-/// The demonstration capture's place below the project's folder.
-const DEMONSTRATION: &str = "sample-captures/saltmarsh-pump2-bearing.wav";
-
 impl Services {
     /// Those of a desktop.
     pub fn desktop() -> Self {
@@ -69,16 +66,7 @@ impl Services {
             recent: recent_file().ok(),
             recovery: recovery_dir().ok(),
             preferences: recent_file().ok().map(|file| file.with_file_name("preferences.ron")),
-            demonstration: demonstration(),
+            demonstration: crate::cli::demonstration(),
         }
     }
-}
-
-/// The demonstration capture, looked for below the working folder and below each folder above the program.
-fn demonstration() -> Option<PathBuf> {
-    let program = std::env::current_exe().ok();
-    let above = program.iter().flat_map(|p| p.ancestors().skip(1));
-    let here = std::env::current_dir().ok();
-    let places = here.iter().map(PathBuf::as_path).chain(above);
-    places.map(|folder| folder.join(DEMONSTRATION)).find(|path| path.is_file())
 }
