@@ -11,8 +11,8 @@ mod rows;
 pub use analysis::{Analysis, ReadingError, Segment, analyse, analyse_curves, with_windows};
 pub use figures::figures_of;
 pub use output::{
-    AdviceLine, BudgetItem, CaptureFacts, LedgerStep, Overruled, PaneFacts, PaneReading, Reading, ReadingState,
-    ScaleFacts, SegmentFacts, SkirtPeak, Tone, Verdict, Warning,
+    AdviceLine, BudgetItem, CaptureFacts, CourseFact, LedgerStep, Overruled, PaneFacts, PaneReading, Reading,
+    ReadingState, ScaleFacts, SegmentFacts, SkirtPeak, Tone, Verdict, Warning,
 };
 pub use request::Request;
 

@@ -236,6 +236,8 @@ pub struct Tone {
     pub drift_hz: Option<f64>,
     /// Needs the joint fit.
     pub drift_db: Option<f64>,
+    /// Frequency and level over the segment, where the tone was seen to move.
+    pub course: Option<Vec<CourseFact>>,
     /// `by-hand`, `held`; more with the joint fit.
     pub tags: Vec<String>,
     /// Against the pinned fundamental.
@@ -244,6 +246,17 @@ pub struct Tone {
     pub agreement_db: Option<f64>,
     /// One for each pane, in order.
     pub readings: Vec<PaneReading>,
+}
+
+/// A tone at one moment.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct CourseFact {
+    /// Seconds from the segment's start.
+    pub time_s: f64,
+    /// Frequency.
+    pub frequency_hz: f64,
+    /// Over the reference.
+    pub level_db: f64,
 }
 
 /// How far one pane's reading of a tone can be trusted.

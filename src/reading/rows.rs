@@ -88,6 +88,7 @@ fn row(spectra: &Spectra, request: &Request, found: &Search, i: usize) -> Tone {
         snr_db: None,
         drift_hz: None,
         drift_db: None,
+        course: None,
         tags,
         order: None,
         agreement_db: agreement(&readings),

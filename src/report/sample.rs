@@ -86,6 +86,7 @@ fn tone() -> Tone {
         snr_db: None,
         drift_hz: None,
         drift_db: None,
+        course: None,
         tags: Vec::new(),
         order: None,
         agreement_db: Some(0.01),

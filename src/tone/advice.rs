@@ -133,7 +133,7 @@ mod tests {
     use super::*;
 
     fn tone(nu: f64, peak: f64) -> FoundTone {
-        FoundTone { nu, amplitude: Complex64::new(peak, 0.0), snr: 0.0, by_hand: false, held: false }
+        FoundTone { nu, amplitude: Complex64::new(peak, 0.0), snr: 0.0, by_hand: false, held: false, faint: false }
     }
 
     fn rank(tones: &[FoundTone]) -> Vec<WindowAdvice> {

@@ -5,10 +5,14 @@
 //! leak into that window by more than their side lobes could. What was found is then fitted jointly, so that each tone
 //! is known free of the others' leakage.
 
+use std::sync::Arc;
+
 use realfft::num_complex::Complex64;
 
 use super::fit::{SteadyTone, UnitUncertainty, fit_jointly};
 use super::lone::PaneView;
+use super::motion::Motion;
+use super::synthesis::{take_out_background, take_out_tone};
 use super::threshold::detection_threshold;
 use crate::signal::{Cancelled, Removal, Watch};
 use crate::spectrum::{Floor, Spectra};
@@ -36,6 +40,8 @@ pub struct FoundTone {
     pub by_hand: bool,
     /// Whether its frequency is held.
     pub held: bool,
+    /// Whether it stands over the floor by no more than noise alone would in one search of ten: listed, not counted.
+    pub faint: bool,
 }
 
 /// What a search gives.
@@ -51,6 +57,10 @@ pub struct Search {
     pub noise: Option<Noise>,
     /// How many tones were left out, being the weakest over their floor.
     pub n_left_out: usize,
+    /// How each tone moves, where it was seen to; one for each of `tones`.
+    pub motions: Vec<Option<Motion>>,
+    /// The samples less the fitted tones and background.
+    pub residue: Arc<[f64]>,
 }
 
 /// The local noise of a segment.
@@ -151,12 +161,26 @@ pub fn search(spectra: &Spectra, quest: &Quest<'_>, watch: &Watch) -> Result<Sea
     let n_left_out = n_found - found.len();
     add_named(spectra, quest.named, &mut found);
     found.sort_by(|a, b| a.nu.total_cmp(&b.nu));
-    let unit_uncertainties = refine(spectra, quest.removal, &mut found, watch)?;
+    let refined = refine(spectra, quest.removal, &mut found, watch)?;
     for tone in &mut found {
         tone.snr = noise.as_ref().map_or(0.0, |noise| noise.snr(tone, spectra.n_samples() as f64));
     }
-    let settled = unit_uncertainties.is_some();
-    Ok(Search { tones: found, settled, unit_uncertainties: unit_uncertainties.unwrap_or_default(), noise, n_left_out })
+    let settled = refined.is_some();
+    let Refined { uncertainties: unit_uncertainties, background } = refined.unwrap_or_default();
+    let motions = vec![None; found.len()];
+    let residue = residue(spectra, &found, background);
+    Ok(Search { tones: found, settled, unit_uncertainties, noise, n_left_out, motions, residue })
+}
+
+/// What the tones and the background leave of the samples.
+fn residue(spectra: &Spectra, found: &[FoundTone], background: (f64, f64)) -> Arc<[f64]> {
+    let mut samples = spectra.samples().to_vec();
+    let line = std::f64::consts::TAU / samples.len() as f64;
+    take_out_background(&mut samples, background);
+    for tone in found {
+        take_out_tone(&mut samples, line * tone.nu, tone.amplitude);
+    }
+    samples.into()
 }
 
 /// Marks the tones named by hand among those found, and adds those that were not.
@@ -176,8 +200,15 @@ fn add_named(spectra: &Spectra, named: &[NamedTone], found: &mut Vec<FoundTone>)
             continue;
         }
         let amplitude = spectra.dense().at(name.nu) * (2.0 / n);
-        found.push(FoundTone { nu: name.nu, amplitude, snr: 0.0, by_hand: true, held: name.held });
+        found.push(FoundTone { nu: name.nu, amplitude, snr: 0.0, by_hand: true, held: name.held, faint: false });
     }
+}
+
+/// What a joint fit says beside the tones.
+#[derive(Debug, Default)]
+struct Refined {
+    uncertainties: Vec<UnitUncertainty>,
+    background: (f64, f64),
 }
 
 /// A joint fit that moves a tone further than this from where it was seen did not settle on it, bins.
@@ -192,7 +223,7 @@ fn refine(
     removal: Removal,
     found: &mut [FoundTone],
     watch: &Watch,
-) -> Result<Option<Vec<UnitUncertainty>>, Cancelled> {
+) -> Result<Option<Refined>, Cancelled> {
     let n = spectra.n_samples() as f64;
     let line = std::f64::consts::TAU / n;
     let middle = (n - 1.0) / 2.0;
@@ -216,7 +247,7 @@ fn refine(
         found.nu = if tone.held { found.nu } else { tone.omega / line };
         found.amplitude = tone.middle_amplitude * Complex64::cis(-tone.omega * middle);
     }
-    Ok(Some(uncertainties))
+    Ok(Some(Refined { uncertainties, background: fit.background }))
 }
 
 /// Adds to `found` what one window sees beyond it.
@@ -241,8 +272,14 @@ fn look(
         if !inside || found.iter().any(|f| (f.nu - reading.nu).abs() < SAME) {
             continue;
         }
-        let mut tone =
-            FoundTone { nu: reading.nu, amplitude: reading.amplitude, snr: 0.0, by_hand: false, held: false };
+        let mut tone = FoundTone {
+            nu: reading.nu,
+            amplitude: reading.amplitude,
+            snr: 0.0,
+            by_hand: false,
+            held: false,
+            faint: false,
+        };
         tone.snr = noise.snr(&tone, view.spectra.n_samples() as f64);
         found.push(tone);
     }
