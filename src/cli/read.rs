@@ -138,7 +138,7 @@ fn change(opened: &mut Opened, wish: &ReadWish) -> Result<(), CliError> {
         }
         session.panes = (session.last_pane_id + 1..)
             .zip(&windows.0)
-            .map(|(id, window)| Pane { id: PaneId(id), window: window.clone() })
+            .map(|(id, window)| Pane { id: PaneId(id), window: window.clone(), residue: false })
             .collect();
         session.last_pane_id += windows.0.len() as u32;
     }

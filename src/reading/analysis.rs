@@ -3,7 +3,7 @@
 use std::sync::Arc;
 
 use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
-use super::{Request, advice, rows};
+use super::{Request, advice, rows, skirts, smallest};
 use crate::capture::segment_doubts;
 use crate::signal::{Cancelled, RATES_HZ, Removed, SignalError, Source, Span, Stored, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
@@ -83,6 +83,8 @@ pub struct Analysis {
     pub segment: Segment,
     /// The figures.
     pub reading: Arc<Reading>,
+    /// What they were made from: the tones as they were fitted, the noise, the residue.
+    pub found: Arc<Search>,
 }
 
 /// Only the curves: quick enough to follow a dragged edge.
@@ -141,21 +143,22 @@ pub fn analyse(
     doubts.extend(unsteady(&segment, request, watch)?);
     watch.report(0.5);
     let tones = rows::tones(&segment.spectra, request, &found, watch)?;
+    let leaked = skirts::find(&segment.spectra, request, &found, watch)?;
     let advice = advice::ranked(&segment.spectra, &found, watch)?;
     doubts.extend(advice::no_window_reads_all(&advice));
     let reading = Reading {
         schema: Reading::SCHEMA,
         version: env!("CARGO_PKG_VERSION").to_owned(),
         capture: capture_facts(request),
-        segment: segment_facts(request, segment.removed),
+        segment: segment_facts(&segment, request, &found),
         scale: scale_facts(request),
-        panes: pane_facts(&segment.spectra, request, &found),
+        panes: pane_facts(&segment.spectra, request, &found, &leaked.n),
         advice,
         tones,
-        skirts: Vec::new(),
+        skirts: leaked.peaks,
         warnings: warnings(&segment, request, &found, doubts),
     };
-    Ok(Analysis { request: request.clone(), segment, reading: Arc::new(reading) })
+    Ok(Analysis { request: request.clone(), segment, reading: Arc::new(reading), found: Arc::new(found) })
 }
 
 fn samples_of(source: &dyn Source, request: &Request, watch: &Watch) -> Result<Vec<f64>, ReadingError> {
@@ -185,7 +188,8 @@ fn capture_facts(request: &Request) -> CaptureFacts {
     }
 }
 
-fn segment_facts(request: &Request, removed: Removed) -> SegmentFacts {
+fn segment_facts(segment: &Segment, request: &Request, found: &Search) -> SegmentFacts {
+    let removed = segment.removed;
     let factor = request.scale.units_per_full_scale();
     let Span { start, samples } = request.span;
     SegmentFacts {
@@ -195,6 +199,7 @@ fn segment_facts(request: &Request, removed: Removed) -> SegmentFacts {
         start_s: start as f64 / request.sample_rate_hz,
         duration_s: samples as f64 / request.sample_rate_hz,
         kind: None,
+        smallest_tone_db: smallest::typical_db(&segment.spectra, request, found),
         removed: Removed { offset: removed.offset * factor, slope_per_s: removed.slope_per_s * factor, ..removed },
     }
 }
@@ -211,7 +216,7 @@ fn scale_facts(request: &Request) -> ScaleFacts {
     }
 }
 
-fn pane_facts(spectra: &Spectra, request: &Request, found: &Search) -> Vec<PaneFacts> {
+fn pane_facts(spectra: &Spectra, request: &Request, found: &Search, n_skirts: &[Option<usize>]) -> Vec<PaneFacts> {
     let n = spectra.n_samples();
     let line_spacing_hz = spectra.line_spacing_hz();
     let facts = |(pane, window): (usize, &crate::window::Window)| {
@@ -227,7 +232,7 @@ fn pane_facts(spectra: &Spectra, request: &Request, found: &Search) -> Vec<PaneF
             line_spacing_hz,
             floor_db: floor.map(|peak| rows::level_db(&request.scale, peak * request.scale.units_per_full_scale())),
             expected_worst_error_db: advice::expected_worst_error_db(spectra, found, window),
-            n_skirts: None,
+            n_skirts: n_skirts.get(pane).copied().flatten(),
         }
     };
     spectra.windows().iter().enumerate().map(facts).collect()

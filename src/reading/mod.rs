@@ -5,8 +5,11 @@ mod analysis;
 mod budget;
 mod figures;
 mod output;
+mod parts;
 mod request;
 mod rows;
+mod skirts;
+mod smallest;
 
 pub use analysis::{Analysis, ReadingError, Segment, analyse, analyse_curves, with_windows};
 pub use figures::figures_of;
@@ -14,7 +17,9 @@ pub use output::{
     AdviceLine, BudgetItem, CaptureFacts, CourseFact, LedgerStep, Overruled, PaneFacts, PaneReading, Reading,
     ReadingState, ScaleFacts, SegmentFacts, SkirtPeak, Tone, Verdict, Warning,
 };
+pub use parts::{Skirts, residue_of, skirts_of};
 pub use request::Request;
+pub use smallest::SmallestTone;
 
 #[cfg(test)]
 mod tests;

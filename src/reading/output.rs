@@ -27,7 +27,7 @@ pub struct Reading {
     pub advice: Vec<AdviceLine>,
     /// Tones, by frequency.
     pub tones: Vec<Tone>,
-    /// Peaks that are leakage.
+    /// Peaks that are leakage: at most the strongest 50 a pane, by pane, strongest first.
     pub skirts: Vec<SkirtPeak>,
     /// What a reader of these figures should know.
     pub warnings: Vec<Warning>,
@@ -70,6 +70,9 @@ pub struct SegmentFacts {
     pub duration_s: f64,
     /// `tones`, `random` or `transient`; `None` until that is found.
     pub kind: Option<String>,
+    /// The level of the smallest tone that the search would see, by the median of the floor over the band, over the
+    /// reference; `None` for too short a segment.
+    pub smallest_tone_db: Option<f64>,
     /// What was taken out, in the scale's unit.
     pub removed: Removed,
 }
@@ -112,7 +115,9 @@ pub struct PaneFacts {
     /// The largest error to expect of a tone's level in this pane, leak and noise together; `None` where some tone
     /// cannot be read in it or the tones were not fitted jointly.
     pub expected_worst_error_db: Option<f64>,
-    /// Needs the joint fit.
+    /// How many of the pane's strongest peaks outside main lobes are leakage of the tones: [`Reading::skirts`] lists at
+    /// most 50 of them, and some hundred lines are looked at. `None` where the tones were not fitted jointly or there is
+    /// no floor.
     pub n_skirts: Option<usize>,
 }
 
@@ -326,7 +331,7 @@ pub struct SkirtPeak {
     pub frequency_hz: f64,
     /// Its level.
     pub level_db: f64,
-    /// The tones it comes from.
+    /// The tones that make most of it, the greatest part first; at most four.
     pub from_hz: Vec<f64>,
 }
 

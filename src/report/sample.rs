@@ -27,6 +27,7 @@ pub(super) fn reading() -> Reading {
             start_s: 9.0,
             duration_s: 24.0,
             kind: None,
+            smallest_tone_db: Some(41.5),
             removed: Removed { what: Removal::Mean, offset: 0.01, slope_per_s: 0.0 },
         },
         scale: ScaleFacts {

@@ -45,7 +45,7 @@ fn head(reading: &Reading) -> String {
     let end_s = segment.start_s + segment.duration_s;
     let spacing = reading.panes.first().map(|p| format!("; lines {} apart", short(p.line_spacing_hz, "Hz")));
     format!(
-        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: levels in {} and in {}\n{}",
+        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: levels in {} and in {}\n{}{}",
         plain(&capture.path),
         capture.format,
         short(capture.sample_rate_hz, "Hz"),
@@ -56,8 +56,13 @@ fn head(reading: &Reading) -> String {
         capital(scale.quantity),
         unit_of_levels(reading),
         scale.reference_label,
+        segment.smallest_tone_db.map_or_else(String::new, smallest),
         if stated { "U: expanded uncertainty (k = 2) by noise and neighbours alone\n" } else { "" },
     )
+}
+
+fn smallest(level_db: f64) -> String {
+    format!("Smallest tone that would be seen: {level_db:.1} dB (median over the band)\n")
 }
 
 /// What the levels that are no decibels are in: `m/s² r.m.s.`.
@@ -222,6 +227,7 @@ mod tests {
         );
         assert!(text.contains("Acceleration: levels in m/s² r.m.s. and in dB re 1 µm/s² (r.m.s.)"));
         assert!(text.contains("Segment 9.000 s to 33.000 s: 196608 samples, 24 s; lines 0.0416667 Hz apart"));
+        assert!(text.contains("(r.m.s.)\nSmallest tone that would be seen: 41.5 dB (median over the band)\nU: "));
         assert!(text.contains("Note (assumed-segment): "));
         assert!(text.contains("U: expanded uncertainty (k = 2) by noise and neighbours alone\n"));
         assert!(text.contains(

@@ -43,6 +43,8 @@ pub enum Command {
     AddPane(Window),
     /// Put another window, or another parameter, in a pane.
     SetWindow(PaneId, Window),
+    /// Show the residue in a pane, or the segment again.
+    ShowResidue(PaneId, bool),
     /// Take a pane away.
     RemovePane(PaneId),
     /// Move a pane to a place in the order.
@@ -76,6 +78,8 @@ impl Command {
             Self::ChooseSegment(_) => "choose segment",
             Self::AddPane(_) => "add pane",
             Self::SetWindow(..) => "change window",
+            Self::ShowResidue(_, true) => "show residue",
+            Self::ShowResidue(_, false) => "show segment",
             Self::RemovePane(_) => "remove pane",
             Self::MovePane(..) => "move pane",
             Self::Pick(_) => "pick tone",
@@ -112,6 +116,7 @@ impl Command {
             Self::ChooseSegment(id) => segment(session, id).is_some() && put(&mut session.current, id),
             Self::AddPane(window) => add_pane(session, window),
             Self::SetWindow(id, window) => pane(session, id).is_some_and(|p| put(&mut p.window, window)),
+            Self::ShowResidue(id, residue) => pane(session, id).is_some_and(|p| put(&mut p.residue, residue)),
             Self::RemovePane(id) => remove_pane(session, id),
             Self::MovePane(id, to) => move_pane(session, id, to),
             Self::Pick(frequency) => is_frequency(frequency) && put(&mut session.picked_hz, frequency),
@@ -209,7 +214,7 @@ fn add_pane(session: &mut Session, window: Window) -> bool {
         return false;
     }
     session.last_pane_id = id;
-    session.panes.push(Pane { id: PaneId(id), window });
+    session.panes.push(Pane { id: PaneId(id), window, residue: false });
     true
 }
 

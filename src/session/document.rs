@@ -70,6 +70,10 @@ pub struct Pane {
     pub id: PaneId,
     /// Its window.
     pub window: Window,
+    /// Whether it shows the residue in the place of the segment. Left out of a saved session where it does not, so that
+    /// older programs open that.
+    #[serde(default, skip_serializing_if = "std::ops::Not::not")]
+    pub residue: bool,
 }
 
 /// A tone named by hand.
@@ -173,7 +177,8 @@ impl Session {
         let span = Span { start: 0, samples: capture.frames };
         let whole = NamedSegment { id: SegmentId(1), name: "segment 1".to_owned(), span };
         let windows = DEFAULT_WINDOWS.iter().filter_map(|name| Window::parse(name).ok());
-        let panes: Vec<_> = (1..).zip(windows).map(|(id, window)| Pane { id: PaneId(id), window }).collect();
+        let panes: Vec<_> =
+            (1..).zip(windows).map(|(id, window)| Pane { id: PaneId(id), window, residue: false }).collect();
         Self {
             scales: vec![Scale::default(); capture.channels],
             capture,

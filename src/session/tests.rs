@@ -266,3 +266,19 @@ fn a_session_opened_through_a_link_finds_its_capture_beside_the_file_itself() {
     assert_eq!(std::fs::canonicalize(&found.path).unwrap(), std::fs::canonicalize(&wav).unwrap());
     assert!(!found.moved);
 }
+
+#[test]
+fn a_pane_shows_the_residue_by_a_step_of_its_own_and_older_sessions_show_the_segment() {
+    let mut session = pump();
+    let mut history = History::new();
+    let pane = session.panes[1].id;
+    assert!(history.apply(&mut session, Command::ShowResidue(pane, true)));
+    assert_eq!(history.undo_name(), Some("show residue"));
+    assert!(!history.apply(&mut session, Command::ShowResidue(pane, true)));
+    assert!(!history.apply(&mut session, Command::ShowResidue(PaneId(999), true)));
+    let text = ron::to_string(&session).unwrap();
+    assert_eq!(ron::from_str::<Session>(&text).unwrap(), session);
+    assert_eq!(text.matches("residue").count(), 1);
+    assert!(history.undo(&mut session) && !session.panes[1].residue);
+    assert!(!ron::to_string(&session).unwrap().contains("residue"));
+}

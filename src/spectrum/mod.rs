@@ -5,12 +5,14 @@
 mod buffers;
 mod dense;
 mod floor;
+mod outside;
 mod panes;
 mod spectra;
 mod transform;
 
 pub use dense::{Dense, MOMENTS};
 pub use floor::Floor;
+pub use outside::{Stretch, joined};
 pub use panes::{cosine_pane_powers, sampled_pane_power};
 pub use spectra::{Curve, LEAST_DB, Spectra};
 pub use transform::{Transform, transform, transform_padded};

@@ -23,12 +23,12 @@ pub struct Spectra {
     transform: Arc<Transform>,
     dense: Arc<OnceLock<Dense>>,
     windows: Vec<Window>,
-    panes: Vec<PaneLines>,
+    pub(super) panes: Vec<PaneLines>,
 }
 
 /// One pane: what its window makes of the segment.
 #[derive(Debug)]
-struct PaneLines {
+pub(super) struct PaneLines {
     window: Window,
     sums: Sums,
     power: Vec<f64>,
@@ -175,7 +175,7 @@ impl Spectra {
     }
 
     /// One column; `last` carries the power at the edge shared with the column before.
-    fn column(&self, lines: &PaneLines, from: f64, to: f64, last: &mut Option<(f64, f64)>) -> Extent {
+    pub(super) fn column(&self, lines: &PaneLines, from: f64, to: f64, last: &mut Option<(f64, f64)>) -> Extent {
         let top = self.n_samples() as f64 / 2.0;
         if !(from < to && to >= 0.0 && from <= top) {
             return Extent::EMPTY;

@@ -211,6 +211,8 @@ pub(super) struct Latest {
     pub(super) curves: Option<(u64, Request, Segment)>,
     /// The newest Reading, with its request.
     pub(super) reading: Option<(u64, Request, Arc<Reading>)>,
+    /// The newest Reading with what it was made from.
+    pub(super) analysed: Option<(u64, Arc<Analysis>)>,
     /// Why there is none for the request last submitted.
     pub(super) failure: Option<String>,
     /// Whether the user called the work off.
@@ -240,9 +242,10 @@ impl Latest {
                 }
             }
             Answer::Reading(generation, analysis) if generation == newest && generation > self.since => {
-                let Analysis { request, segment, reading } = *analysis;
-                self.curves = Some((generation, request.clone(), segment));
-                self.reading = Some((generation, request, reading));
+                let Analysis { request, segment, reading, .. } = &*analysis;
+                self.curves = Some((generation, request.clone(), segment.clone()));
+                self.reading = Some((generation, request.clone(), Arc::clone(reading)));
+                self.analysed = Some((generation, Arc::from(analysis)));
                 self.failure = None;
             }
             Answer::Failed(generation, text) if generation == newest => self.failure = Some(text),
