@@ -3,6 +3,7 @@
 use eframe::egui::Context;
 
 use super::action::Action;
+use super::advice::{advised, whole_periods};
 use super::chooser::Choosing;
 use super::desk::Desk;
 use super::dialog::Dialog;
@@ -39,6 +40,8 @@ impl Workbench {
             Action::Quit => self.want_quit(ctx),
             Action::Keys => self.dialogs.put(Dialog::Keys),
             Action::About => self.dialogs.put(Dialog::About),
+            Action::ToggleSkirts => self.view.skirts = !self.view.skirts,
+            Action::ToggleSmallest => self.view.smallest = !self.view.smallest,
             Action::ToggleSetup => self.view.setup_open = !self.view.setup_open,
             Action::Larger => scale(ctx, ctx.zoom_factor() + SCALE_STEP),
             Action::Smaller => scale(ctx, ctx.zoom_factor() - SCALE_STEP),
@@ -91,6 +94,10 @@ impl Workbench {
         for intent in intents {
             if let super::view::Intent::Change(command) = intent {
                 self.change(command);
+                // What a menu does is a step of its own, also where a drag or a spin would go on.
+                if let Some(desk) = &mut self.desk {
+                    desk.history.close_step();
+                }
             }
         }
     }
@@ -112,6 +119,10 @@ fn on_segment(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
             view.refit_level = true;
             let span = Span { start: 0, samples: session.capture.frames };
             Some(Command::MoveSegment(session.current, span))
+        }
+        Action::WholePeriods => {
+            view.refit_level = true;
+            Some(Command::MoveSegment(session.current, whole_periods(desk)?))
         }
         Action::AddSegment => {
             let (lo, hi) = view.strip.unwrap_or((frames / 4.0, frames * 3.0 / 4.0));
@@ -174,7 +185,7 @@ fn on_axes(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
 }
 
 /// The pane the pane commands act on: the one last touched, else the first.
-fn current_pane(desk: &Desk, view: &View) -> Option<(usize, PaneId)> {
+pub(super) fn current_pane(desk: &Desk, view: &View) -> Option<(usize, PaneId)> {
     let panes = &desk.session.panes;
     let at = view.pane.and_then(|id| panes.iter().position(|p| p.id == id)).unwrap_or(0);
     panes.get(at).map(|p| (at, p.id))
@@ -195,6 +206,12 @@ fn on_panes(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
             view.enlarged = if view.enlarged.is_some() { None } else { Some(id) };
             None
         }
+        Action::ShowResidue => {
+            let residue = desk.session.panes.get(at).is_some_and(|p| p.residue);
+            Some(Command::ShowResidue(id, !residue))
+        }
+        Action::UseAdvised => Some(Command::SetWindow(id, advised(desk)?)),
+        Action::AddAdvised => Some(Command::AddPane(advised(desk)?)),
         Action::PaneLeft => at.checked_sub(1).map(|to| Command::MovePane(id, to)),
         Action::PaneRight => Some(Command::MovePane(id, (at + 1).min(MAX_PANES - 1))),
         Action::RemovePane => Some(Command::RemovePane(id)),

@@ -5,7 +5,7 @@ use eframe::egui::{self, Align, Layout, RichText, ScrollArea, Ui};
 use super::desk::Desk;
 use super::table::picked_row;
 use super::view::View;
-use super::{figure, theme, widget};
+use super::{card_tone, figure, theme, widget};
 use crate::reading::{PaneReading, Reading, ReadingState, Tone};
 
 /// Width of the card.
@@ -32,7 +32,7 @@ pub(super) fn chosen<'a>(reading: &'a Reading, desk: &Desk, view: &View) -> Opti
 }
 
 /// Shows the card.
-pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &View, reading: &Reading) {
+pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Reading) {
     let Some((tone, pane)) = chosen(reading, desk, view) else { return };
     let Some(cell) = tone.readings.get(pane) else { return };
     if !desk.latest.is_current() {
@@ -45,15 +45,17 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &View, reading: &Reading) {
         ui.spacing_mut().interact_size.y = 16.0;
         let title = format!("{} Hz in {}", figure::hertz(tone.frequency_hz, spacing), cell.window);
         ui.label(RichText::new(title).font(head));
+        card_tone::verdict(ui, tone);
         state(ui, cell);
         ledger(ui, cell, &reading.scale.reference_label);
         ui.add_space(4.0);
         facts(ui, cell, spacing);
+        card_tone::facts(ui, tone, reading, desk, view);
     });
 }
 
 /// Shows the card low and wide, for screens without room beside the table.
-pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &View, reading: &Reading) {
+pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Reading) {
     let Some((tone, pane)) = chosen(reading, desk, view) else { return };
     let Some(cell) = tone.readings.get(pane) else { return };
     if !desk.latest.is_current() {
@@ -69,6 +71,7 @@ pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &View, reading: &Readin
             ui.label(RichText::new(title).font(head));
             state(ui, cell);
         });
+        card_tone::verdict(ui, tone);
         ui.horizontal_wrapped(|ui| {
             let palette = theme::palette(ui.ctx());
             for step in cell.ledger.iter().filter(|s| s.db.abs() >= SMALL_DB) {
@@ -83,6 +86,7 @@ pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &View, reading: &Readin
             facts(ui, cell, spacing);
             small(ui, cell);
         });
+        card_tone::facts(ui, tone, reading, desk, view);
     });
 }
 

@@ -27,6 +27,15 @@ impl Workbench {
                     desk.history.close_step();
                 }
             }
+            Intent::Put(window) => {
+                let pane = self.desk.as_ref().and_then(|d| super::act::current_pane(d, &self.view));
+                if let Some((_, id)) = pane {
+                    self.change(Command::SetWindow(id, window));
+                }
+                if let Some(desk) = &mut self.desk {
+                    desk.history.close_step();
+                }
+            }
             Intent::Do(action) => self.act(ctx, action),
             Intent::Open(path) => self.want_open(&path),
             Intent::CallOff => {
@@ -118,6 +127,11 @@ impl Workbench {
             Event::Surveyed(about) => self.take_surveyed(about),
             Event::Suggested(about, span) => self.take_suggestion(about, span),
             Event::Figures(key, figures) => self.view.merits.take(key, figures),
+            Event::Part(number, generation, made) => {
+                if let Some(desk) = self.desk_of(number) {
+                    desk.parts.take(generation, made);
+                }
+            }
             Event::Hashed(number, blake3) => {
                 if let Some(desk) = self.desk_of(number) {
                     desk.session.capture.blake3 = blake3;

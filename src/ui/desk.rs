@@ -3,6 +3,7 @@
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
+use super::parts::Parts;
 use super::worker::Latest;
 use crate::capture::{Capture, Overview};
 use crate::reading::{Reading, Request};
@@ -43,6 +44,8 @@ pub(super) struct Desk {
     saved: Session,
     /// The figures.
     pub(super) latest: Latest,
+    /// What the tones make of the panes, and what they leave.
+    pub(super) parts: Parts,
     /// Calls off what is still being made of this capture.
     pub(super) watch: Watch,
     /// Calls off the columns that the strip last wanted.
@@ -110,6 +113,7 @@ impl Desk {
             suggestion: None,
             file,
             latest: Latest::default(),
+            parts: Parts::default(),
             watch: Watch::new(),
             columns_watch: Watch::new(),
             untouched: false,
@@ -211,6 +215,7 @@ impl Desk {
 impl Drop for Desk {
     fn drop(&mut self) {
         self.watch.cancel();
+        self.parts.call_off();
         self.columns_watch.cancel();
     }
 }
@@ -245,7 +250,7 @@ pub(super) fn adopt(session: &mut Session, capture: &Capture, blake3: String) {
 }
 
 /// The place of what `is_it`: `index` itself if that is one, else the first.
-fn place_of<T>(list: &[T], index: usize, is_it: impl Fn(&T) -> bool) -> Option<usize> {
+pub(super) fn place_of<T>(list: &[T], index: usize, is_it: impl Fn(&T) -> bool) -> Option<usize> {
     if list.get(index).is_some_and(&is_it) { Some(index) } else { list.iter().position(is_it) }
 }
 

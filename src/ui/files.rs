@@ -44,6 +44,8 @@ pub(super) enum Event {
     NotSaved(String),
     /// Figures of a window that were wanted.
     Figures(super::merits::Key, super::merits::Figures),
+    /// What was wanted of an analysis; behind the opening's number stands the generation of its Reading.
+    Part(u64, u64, super::parts::Made),
     /// What earlier runs left unsaved.
     Recoveries(Vec<Recovered>),
     /// The list of recent files.

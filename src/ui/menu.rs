@@ -4,7 +4,9 @@ use std::path::PathBuf;
 
 use eframe::egui::{self, Align, Button, ComboBox, Layout, MenuBar, RichText, ThemePreference, Ui};
 
+use super::act::current_pane;
 use super::action::{Action, ENTRIES, Entry, Menu};
+use super::advice::advised;
 use super::desk::{Desk, file_name};
 use super::view::{Intent, Intents, View};
 use super::{figure, list, theme};
@@ -66,6 +68,9 @@ impl Menus<'_> {
         let (name, enabled) = self.state(entry, view);
         let on = match entry.action {
             Action::ToggleSetup => view.setup_open,
+            Action::ToggleSkirts => view.skirts,
+            Action::ToggleSmallest => view.smallest,
+            Action::ShowResidue => self.desk.is_some_and(|d| shows_residue(d, view)),
             Action::ToggleLog => self.desk.is_some_and(|d| d.session.axes.frequency_axis == FrequencyAxis::Logarithmic),
             _ => false,
         };
@@ -91,11 +96,13 @@ impl Menus<'_> {
             Action::OpenDemonstration => self.demonstration.is_some(),
             Action::UseSuggestion => desk.suggestion.is_some(),
             Action::RemoveSegment | Action::NextSegment => desk.session.segments.len() > 1,
+            Action::UseAdvised => advised(desk).is_some(),
+            Action::AddAdvised => advised(desk).is_some() && desk.session.panes.len() < MAX_PANES,
             Action::AddPane => desk.session.panes.len() < MAX_PANES,
             Action::TakeBackTone => super::act::hand_tone(desk, view).is_some(),
             Action::NameTone => view.hairline_hz.is_some(),
             Action::RemovePane | Action::PaneLeft | Action::PaneRight => desk.session.panes.len() > 1,
-            Action::FitTone | Action::HairlineToTone | Action::Unpick | Action::NoteTone => {
+            Action::WholePeriods | Action::FitTone | Action::HairlineToTone | Action::Unpick | Action::NoteTone => {
                 desk.session.picked_hz.is_some()
             }
             _ => true,
@@ -134,6 +141,11 @@ impl Menus<'_> {
             }
         }
     }
+}
+
+/// Whether the pane that commands act on shows the residue.
+fn shows_residue(desk: &Desk, view: &View) -> bool {
+    current_pane(desk, view).and_then(|(at, _)| desk.session.panes.get(at)).is_some_and(|p| p.residue)
 }
 
 fn themes(ui: &mut Ui) {

@@ -4,8 +4,10 @@
 
 mod act;
 mod action;
+mod advice;
 mod app;
 mod card;
+mod card_tone;
 mod carry;
 mod chooser;
 mod chooser_table;
@@ -24,9 +26,12 @@ mod notice;
 mod overlay;
 mod pane;
 mod pane_head;
+mod pane_layers;
+mod pane_marks;
 mod pane_menu;
 mod panes;
 mod parameters;
+mod parts;
 mod plot;
 mod preferences;
 mod services;

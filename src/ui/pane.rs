@@ -3,17 +3,17 @@
 use std::sync::Arc;
 
 use eframe::egui::{
-    self, Align2, EventFilter, Key, Modifiers, Painter, PointerButton, Rect, Response, Role, Sense, Shape, Stroke, Ui,
+    self, Align2, EventFilter, Key, Modifiers, Painter, PointerButton, Rect, Response, Role, Sense, Stroke, Ui,
     UiBuilder, WidgetInfo, pos2, vec2,
 };
 
 use super::desk::Desk;
 use super::panes::Shared;
-use super::plot::{Axis, Trace, Wish, draw_trace, place};
+use super::plot::{Axis, Trace, draw_trace};
 use super::theme::{self, Palette};
 use super::view::{Intent, Intents, View, held_range};
 use super::{figure, overlay, pane_head, widget};
-use crate::reading::{PaneReading, Reading, ReadingState, Tone};
+use crate::reading::{PaneReading, ReadingState, Tone};
 use crate::session::{Command, Pane, ViewAxes};
 use crate::spectrum::Spectra;
 use crate::window::Window;
@@ -51,7 +51,7 @@ pub(super) fn show(
         pos2(inner.left() + LEFT, head.bottom() + above),
         pos2(inner.right() - 2.0, inner.bottom() - BOTTOM),
     );
-    let curve = desk.curve_of(index, &pane.window).zip(desk.latest.spectra());
+    let curve = desk.curve_shown(index, &pane.window, pane.residue);
     let mut head_ui = ui.new_child(UiBuilder::new().max_rect(head).id_salt(("pane head", pane.id)));
     pane_head::show(&mut head_ui, index, pane, desk, view, shared, intents);
     let plot = Plot {
@@ -76,25 +76,29 @@ pub(super) fn show(
 }
 
 /// How much of its ink a curve keeps that is not of what was asked for.
-const STALE: f32 = 0.4;
+pub(super) const STALE: f32 = 0.4;
 
-/// Whether the curves at hand may pass for those asked for: they are, or they follow an edge being dragged.
-pub(super) fn figures_pass(desk: &Desk, view: &View) -> bool {
+/// Whether the curve that a pane shows may pass for the one asked for: it is, or it follows an edge being dragged. A
+/// residue does not follow: it comes with the Reading.
+pub(super) fn figures_pass(desk: &Desk, view: &View, pane: &Pane) -> bool {
+    if pane.residue {
+        return desk.part_is_current(desk.parts.residue.as_ref().map(|r| r.0));
+    }
     desk.latest.curves_are_current() || view.marking
 }
 
 /// One pane's plot in a frame.
-struct Plot<'a> {
-    index: usize,
+pub(super) struct Plot<'a> {
+    pub(super) index: usize,
     /// Its place in the Reading at hand, if it has one there.
-    read: Option<usize>,
-    pane: &'a Pane,
-    area: Rect,
-    frequency: Axis,
-    level: Axis,
-    shared: &'a Shared,
-    palette: &'static Palette,
-    names_reference: bool,
+    pub(super) read: Option<usize>,
+    pub(super) pane: &'a Pane,
+    pub(super) area: Rect,
+    pub(super) frequency: Axis,
+    pub(super) level: Axis,
+    pub(super) shared: &'a Shared,
+    pub(super) palette: &'static Palette,
+    pub(super) names_reference: bool,
 }
 
 impl Plot<'_> {
@@ -111,8 +115,10 @@ impl Plot<'_> {
         let kernel = kernel.map_or(String::new(), |((_, window), tone)| {
             format!(", {} drawn over it", kernel_title(window, tone.frequency_hz))
         });
+        let residue = if self.pane.residue { ", residue" } else { "" };
+        let skirts = self.skirts_in_words(desk, view);
         let text = format!(
-            "Spectrum {}, {}: {} to {} Hz, {} tones clear{hairline}{kernel}",
+            "Spectrum {}, {}{residue}: {} to {} Hz, {} tones clear{hairline}{kernel}{skirts}",
             self.index + 1,
             self.pane.window,
             figure::hertz(lo, spacing),
@@ -122,7 +128,12 @@ impl Plot<'_> {
         response.widget_info(|| WidgetInfo::labeled(Role::Figure, true, &text));
     }
 
-    fn reading_of<'t>(&self, tone: &'t Tone) -> Option<&'t PaneReading> {
+    /// Columns a pixel wide.
+    fn n_columns(&self, ui: &Ui) -> usize {
+        ((self.area.width() * ui.ctx().pixels_per_point()).round().max(1.0) as usize).min(4096)
+    }
+
+    pub(super) fn reading_of<'t>(&self, tone: &'t Tone) -> Option<&'t PaneReading> {
         tone.readings.get(self.read?)
     }
 
@@ -131,21 +142,31 @@ impl Plot<'_> {
         self.draw_grid(&whole, desk);
         let painter = whole.with_clip_rect(self.area.intersect(whole.clip_rect()));
         let (hue, dashed) = theme::pane_hue(self.palette, self.pane.id);
+        let n_columns = self.n_columns(ui);
+        if view.skirts && !self.pane.residue {
+            self.draw_skirts(&painter, n_columns, desk, view);
+        }
         if let Some(reading) = desk.reading() {
             self.draw_floor(&painter, reading);
         }
+        if view.smallest {
+            self.draw_smallest(&painter, desk);
+        }
         if let Some((place, spectra)) = curve {
-            let ppp = ui.ctx().pixels_per_point();
-            let n = ((self.area.width() * ppp).round().max(1.0) as usize).min(4096);
+            let n = n_columns;
             let columns = view.curves.columns(spectra, place, &self.frequency, n);
-            let hue = if figures_pass(desk, view) { hue } else { hue.gamma_multiply(STALE) };
+            let hue = if figures_pass(desk, view, self.pane) { hue } else { hue.gamma_multiply(STALE) };
             let trace = Trace { colour: hue, dashed, width: 1.25, offset: self.shared.offset_db };
             draw_trace(&painter, &columns, (self.area.left(), self.area.width() / n as f32), &self.level, trace);
         }
         let title = self.draw_kernel(ui, &painter, desk, view);
         self.draw_hairline(&painter, curve, desk, view);
         if let Some(reading) = desk.reading() {
-            let taken: Vec<Rect> = title.iter().map(|t| t.0).collect();
+            let mut taken: Vec<Rect> = title.iter().map(|t| t.0).collect();
+            if view.skirts && !self.pane.residue {
+                self.draw_skirt_peaks(&painter, reading, desk);
+                taken.extend(self.name_skirt(&painter, reading, desk, view));
+            }
             self.draw_marks(&painter, reading, desk, &taken);
         }
         if let Some((rect, text)) = title {
@@ -188,19 +209,12 @@ impl Plot<'_> {
         }
     }
 
-    fn draw_floor(&self, painter: &Painter, reading: &Reading) {
-        let Some(floor) = self.read.and_then(|i| reading.panes.get(i)).and_then(|p| p.floor_db) else { return };
-        let y = painter.round_to_pixel_center(self.level.at(floor));
-        let points = [pos2(self.area.left(), y), pos2(self.area.right(), y)];
-        painter.extend(Shape::dashed_line(&points, Stroke::new(1.0, self.palette.quiet), 2.0, 3.0));
-    }
-
     /// The kernel of the window being chosen for this pane, over the tone picked; gives its title, to be written
     /// over the marks, and the title's place.
     fn draw_kernel(&self, ui: &Ui, painter: &Painter, desk: &Desk, view: &mut View) -> Option<(Rect, String)> {
         let (_, window) = view.preview.as_ref().filter(|(id, _)| *id == self.pane.id)?;
         let (tone, segment) = (overlay::centre(desk)?, desk.segment()?);
-        let n = ((self.area.width() * ui.ctx().pixels_per_point()).round().max(1.0) as usize).min(4096);
+        let n = self.n_columns(ui);
         let place = (tone.frequency_hz, self.shared.spacing_hz);
         let columns = view.kernels.columns(window, segment.span.samples, place, &self.frequency, n);
         let trace = Trace { colour: self.palette.ink, dashed: false, width: 1.5, offset: tone.level_db };
@@ -217,72 +231,10 @@ impl Plot<'_> {
         };
         let x = painter.round_to_pixel_center(self.frequency.at(hz));
         painter.vline(x, self.area.y_range(), Stroke::new(1.0, self.palette.accent));
-        if let Some((place, spectra)) = curve.filter(|_| figures_pass(desk, view)) {
+        if let Some((place, spectra)) = curve.filter(|_| figures_pass(desk, view, self.pane)) {
             let y = self.level.at(spectra.value_db(place, hz) + self.shared.offset_db);
             painter.hline(x - 4.0..=x + 4.0, y, Stroke::new(2.0, self.palette.ink));
         }
-    }
-
-    /// Marks of tones, the strongest labelled first; what has no room is left out.
-    fn draw_marks(&self, painter: &Painter, reading: &Reading, desk: &Desk, taken: &[Rect]) {
-        let stale = !desk.latest.is_current();
-        let ink = if stale { self.palette.quiet.gamma_multiply(0.6) } else { self.palette.ink };
-        let mut marks: Vec<(&Tone, &PaneReading, egui::Pos2)> =
-            reading.tones.iter().filter_map(|t| self.mark(t).map(|(r, at)| (t, r, at))).collect();
-        for (tone, reading, at) in &marks {
-            if self.is_picked(tone, desk) {
-                painter.circle_stroke(*at, 7.0, Stroke::new(1.5, self.palette.accent));
-            }
-            widget::state_mark(painter, *at, reading.state, ink);
-        }
-        let labelled = |tone: &Tone, r: &PaneReading| r.state == ReadingState::Clear || self.is_picked(tone, desk);
-        let bare = marks.iter().filter(|(tone, r, _)| !labelled(tone, r));
-        let taken: Vec<Rect> =
-            bare.map(|m| Rect::from_center_size(m.2, vec2(7.0, 7.0))).chain(taken.iter().copied()).collect();
-        marks.retain(|(tone, r, _)| labelled(tone, r));
-        marks.sort_by(|a, b| {
-            let first = |m: &(&Tone, _, _)| self.is_picked(m.0, desk);
-            first(b).cmp(&first(a)).then(b.1.level_db.total_cmp(&a.1.level_db))
-        });
-        marks.truncate(40);
-        let texts: Vec<[String; 2]> = marks.iter().map(|(tone, r, _)| labels(tone, r)).collect();
-        let size = |text: &String| widget::text_size(painter, text, theme::quiet());
-        let wish =
-            |(m, text): (&(_, _, egui::Pos2), &[String; 2])| Wish { mark: m.2, sizes: text.each_ref().map(size) };
-        let wishes: Vec<Wish> = marks.iter().zip(&texts).map(wish).collect();
-        for ((found, [full, brief]), (tone, _, _)) in
-            place(self.area, &wishes, &taken).into_iter().zip(&texts).zip(&marks)
-        {
-            let Some((rect, short)) = found else { continue };
-            let text = if short { brief } else { full };
-            let ground = rect.expand2(vec2(3.0, 0.0));
-            let mark = self.mark(tone).map_or(rect.center(), |m| m.1);
-            // A label that stands off is tied to its mark.
-            let foot = pos2(mark.x.clamp(rect.left(), rect.right()), mark.y.clamp(rect.top(), rect.bottom()));
-            if mark.distance(foot) > 8.0 {
-                painter.line_segment([foot, mark], Stroke::new(1.0, self.palette.quiet));
-            }
-            // A curve under a label stays to be seen.
-            painter.rect_filled(ground, 2.0, self.palette.card.gamma_multiply(0.72));
-            // In a crowd a label may stand on other tones' marks: these still show, behind the letters.
-            for (reading, at) in reading.tones.iter().filter_map(|t| self.mark(t)).filter(|m| ground.contains(m.1)) {
-                widget::state_mark(&painter.with_clip_rect(ground), at, reading.state, ink.gamma_multiply(0.3));
-            }
-            let colour = if self.is_picked(tone, desk) { self.palette.accent } else { ink };
-            widget::write(painter, rect.min, Align2::LEFT_TOP, text, theme::quiet(), colour);
-        }
-    }
-
-    fn is_picked(&self, tone: &Tone, desk: &Desk) -> bool {
-        is_picked(tone.frequency_hz, desk.session.picked_hz, self.shared.spacing_hz)
-    }
-
-    /// Where a tone's mark stands in this pane, if it is in sight.
-    fn mark<'t>(&self, tone: &'t Tone) -> Option<(&'t PaneReading, egui::Pos2)> {
-        let reading = self.reading_of(tone)?;
-        let shown = (self.frequency.lo..=self.frequency.hi).contains(&reading.peak_hz);
-        let at = pos2(self.frequency.at(reading.peak_hz), self.level.at(reading.level_db));
-        (shown && reading.state != ReadingState::BelowFloor && self.area.contains(at)).then_some((reading, at))
     }
 
     /// Pointer and keys.
@@ -372,11 +324,4 @@ pub(super) fn is_picked(tone_hz: f64, picked_hz: Option<f64>, spacing_hz: f64) -
 
 fn kernel_title(window: &Window, hz: f64) -> String {
     format!("kernel of {window} at {} Hz", figure::fixed(hz, 2))
-}
-
-/// What stands beside a mark: frequency and level, or, in a crowd, the frequency alone.
-fn labels(tone: &Tone, reading: &PaneReading) -> [String; 2] {
-    let hz = if reading.borrowed { tone.frequency_hz } else { reading.peak_hz };
-    let hz = figure::fixed(hz, 2);
-    [format!("{hz} Hz  {} dB", figure::fixed(reading.level_db, 1)), hz]
 }

@@ -36,7 +36,7 @@ pub(super) fn show(
     let line = Rect::from_min_max(rect.min + vec2(38.0, 0.0), egui::pos2(rect.right(), rect.top() + 26.0));
     let mut first =
         ui.new_child(UiBuilder::new().max_rect(line).layout(Layout::left_to_right(Align::Center)).id_salt("first"));
-    let right = reading_at_hairline(&mut first, (index, &pane.window), desk, view, shared);
+    let right = reading_at_hairline(&mut first, (index, pane), desk, view, shared);
     first.spacing_mut().item_spacing.x = 4.0;
     let rest = Rect::from_min_max(line.min, egui::pos2(right - 4.0, line.bottom()));
     let mut first =
@@ -58,7 +58,8 @@ fn name(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: &mut I
     let button = Button::new(RichText::new(pane.window.name()).font(font)).frame_when_inactive(false);
     ui.spacing_mut().button_padding.x = 4.0;
     let (response, _) = MenuButton::from_button(button).ui(ui, |ui| pane_menu::show(ui, pane, intents));
-    let response = response.accessible_name(format!("Pane {}: {}", index + 1, pane.window));
+    let residue = if pane.residue { ", residue" } else { "" };
+    let response = response.accessible_name(format!("Pane {}: {}{residue}", index + 1, pane.window));
     if response.clicked() || response.has_focus() {
         view.pane = Some(pane.id);
     }
@@ -82,16 +83,10 @@ fn parameters(ui: &mut Ui, index: usize, pane: &Pane, view: &mut View, intents: 
 }
 
 /// Writes the reading at the right end and gives the left end of what it took.
-fn reading_at_hairline(
-    ui: &mut Ui,
-    (index, window): (usize, &Window),
-    desk: &Desk,
-    view: &View,
-    shared: &Shared,
-) -> f32 {
+fn reading_at_hairline(ui: &mut Ui, (index, pane): (usize, &Pane), desk: &Desk, view: &View, shared: &Shared) -> f32 {
     let right = ui.max_rect().right();
-    let (Some(hz), Some(spectra)) = (view.hairline_hz, desk.latest.spectra()) else { return right };
-    let Some(place) = desk.curve_of(index, window).filter(|_| figures_pass(desk, view)) else { return right };
+    let Some(hz) = view.hairline_hz.filter(|_| figures_pass(desk, view, pane)) else { return right };
+    let Some((place, spectra)) = desk.curve_shown(index, &pane.window, pane.residue) else { return right };
     let level = spectra.value_db(place, hz) + shared.offset_db;
     let text = format!("{} Hz  {} dB", figure::hertz(hz, shared.spacing_hz * 10.0), figure::fixed(level, 1));
     let mut left = right;
@@ -108,6 +103,10 @@ fn merits(ui: &mut Ui, pane: &Pane, desk: &Desk, view: &mut View, shared: &Share
     let known = view.merits.of(&pane.window, samples);
     if let Some(figures) = known {
         ui.data_mut(|d| d.insert_temp(key, figures));
+    }
+    if pane.residue {
+        let text = RichText::new("residue").font(theme::quiet()).color(theme::palette(ui.ctx()).accent);
+        ui.label(text).on_hover_text("What is left of the segment when the fitted tones are taken out");
     }
     let Some(figures) = known.or_else(|| ui.data(|d| d.get_temp(key))) else { return };
     if known.is_none() {

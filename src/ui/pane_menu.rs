@@ -9,10 +9,18 @@ use crate::session::Pane;
 
 /// What can be done with one pane.
 pub(super) fn show(ui: &mut Ui, pane: &Pane, intents: &mut Intents) {
-    for action in [Action::ChooseWindow, Action::EnlargePane, Action::PaneLeft, Action::PaneRight, Action::RemovePane] {
+    for action in [
+        Action::ChooseWindow,
+        Action::ShowResidue,
+        Action::EnlargePane,
+        Action::PaneLeft,
+        Action::PaneRight,
+        Action::RemovePane,
+    ] {
         let Some(entry) = entry_of(action) else { continue };
         let key = entry.key.map(|k| ui.ctx().format_shortcut(&k)).unwrap_or_default();
-        if ui.add(Button::new(entry.name).shortcut_text(key)).clicked() {
+        let on = action == Action::ShowResidue && pane.residue;
+        if ui.add(Button::new(entry.name).shortcut_text(key).selected(on)).clicked() {
             intents.push(Intent::Do(action));
             ui.close();
         }

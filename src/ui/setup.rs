@@ -7,7 +7,7 @@ use super::desk::Desk;
 use super::typed::{Bounds, number_row};
 use super::view::{Intent, Intents, View};
 use super::widget::{quiet, row, section};
-use super::{figure, list, theme};
+use super::{advice, figure, list, theme};
 use super::{setup_rate, setup_scale, setup_search};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, Note, ViewAxes};
 use crate::signal::{Removal, Span};
@@ -24,6 +24,7 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
         setup_rate::show(ui, desk, intents);
         segments(ui, desk, view, intents);
         panes(ui, desk, intents);
+        advice::show(ui, desk, intents);
         setup_search::show(ui, desk, intents);
         notes(ui, desk, intents);
         ui.add_space(12.0);

@@ -7,7 +7,7 @@ use eframe::egui::{Label, ProgressBar, RichText, Ui};
 use super::desk::Desk;
 use super::view::{Intent, Intents, View};
 use super::{figure, theme, widget};
-use crate::reading::AdviceLine;
+use crate::reading::{AdviceLine, Reading};
 use crate::signal::Watch;
 
 /// A capture that is being opened, and how to call that off.
@@ -49,8 +49,12 @@ pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Inten
             }
             ui.ctx().request_repaint_after(Duration::from_millis(100));
         } else if let Some(reading) = desk.reading() {
-            let text =
-                format!("{} over the floor  ·  levels in {}", reading.tones.len(), reading.scale.reference_label);
+            let text = format!(
+                "{} over the floor{}  ·  levels in {}",
+                reading.tones.len(),
+                smallest(reading),
+                reading.scale.reference_label
+            );
             widget::quiet(ui, text);
             if let Some(best) = reading.advice.first() {
                 ui.add(Label::new(RichText::new(advised(best)).font(theme::quiet()).color(palette.quiet)).truncate());
@@ -65,6 +69,12 @@ pub(super) fn figures(ui: &mut Ui, desk: &Desk, view: &View, intents: &mut Inten
             ui.add(Label::new(RichText::new(&warning.text).color(palette.alarm)).wrap());
         }
     }
+}
+
+/// The level from which on a tone would be seen.
+fn smallest(reading: &Reading) -> String {
+    let level = reading.segment.smallest_tone_db.map(|db| figure::fixed(db, 1));
+    level.map_or_else(String::new, |db| format!("  ·  smallest that would be seen {db} dB"))
 }
 
 /// The window advised, and how far it can be trusted.

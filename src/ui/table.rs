@@ -10,6 +10,7 @@ use egui_extras::{Column, TableBuilder, TableRow};
 use super::action::Action;
 use super::desk::Desk;
 use super::pane::is_picked;
+use super::pane_marks::verdict_shown;
 use super::theme::{self, Palette};
 use super::view::{Cell, Intent, Intents, View};
 use super::{figure, widget};
@@ -86,7 +87,7 @@ impl Table<'_> {
         ui.spacing_mut().item_spacing = vec2(4.0, 0.0);
         // Chosen figures stay in ink.
         ui.visuals_mut().selection.stroke.color = self.palette.ink;
-        let has_verdicts = self.reading.tones.iter().any(|t| t.verdict.is_some());
+        let has_verdicts = self.reading.tones.iter().any(|t| verdict_shown(t).is_some());
         let has_spread = !self.narrow && self.reading.tones.iter().any(|t| t.amplitude_u95.is_some());
         let n_panes = self.reading.panes.len();
         let heads = self.heads(has_verdicts);
@@ -221,10 +222,11 @@ impl Table<'_> {
     }
 
     fn verdict(&self, ui: &mut Ui, tone: &Tone) {
-        let Some(verdict) = tone.verdict else { return };
+        let Some(verdict) = verdict_shown(tone) else { return };
         let rect = ui.available_rect_before_wrap();
         let word = verdict_word(verdict);
-        widget::verdict_mark(ui.painter(), pos2(rect.left() + 14.0, rect.center().y), verdict, self.palette.ink);
+        let hue = theme::verdict_hue(self.palette, verdict);
+        widget::verdict_mark(ui.painter(), pos2(rect.left() + 14.0, rect.center().y), verdict, hue);
         ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
             ui.add_space(24.0);
             let response = ui.add(egui::Label::new(word).selectable(false));
@@ -286,7 +288,7 @@ impl Table<'_> {
     }
 }
 
-fn verdict_word(verdict: Verdict) -> &'static str {
+pub(super) fn verdict_word(verdict: Verdict) -> &'static str {
     match verdict {
         Verdict::Holds => "holds",
         Verdict::Crowded => "crowded",

@@ -5,6 +5,8 @@ use eframe::egui::{
     Visuals, vec2,
 };
 
+use crate::reading::Verdict;
+
 /// The colours of one theme.
 #[derive(Debug)]
 pub(super) struct Palette {
@@ -26,6 +28,8 @@ pub(super) struct Palette {
     pub(super) alarm: Color32,
     /// A hue a pane, from Okabe and Ito's set (Color Universal Design, 2008), shifted in lightness.
     pub(super) hues: [Color32; 7],
+    /// A hue a verdict, in the order of [`verdict_hue`], from the same set.
+    pub(super) verdicts: [Color32; 6],
 }
 
 const fn rgb(value: u32) -> Color32 {
@@ -34,6 +38,10 @@ const fn rgb(value: u32) -> Color32 {
 
 const fn hues(values: [u32; 7]) -> [Color32; 7] {
     [rgb(values[0]), rgb(values[1]), rgb(values[2]), rgb(values[3]), rgb(values[4]), rgb(values[5]), rgb(values[6])]
+}
+
+const fn verdicts(values: [u32; 6]) -> [Color32; 6] {
+    [rgb(values[0]), rgb(values[1]), rgb(values[2]), rgb(values[3]), rgb(values[4]), rgb(values[5])]
 }
 
 /// By daylight.
@@ -47,6 +55,7 @@ pub(super) static LIGHT: Palette = Palette {
     selection: rgb(0x00e4_efec),
     alarm: rgb(0x009c_3d00),
     hues: hues([0x0000_72b2, 0x00d5_5e00, 0x0000_9e73, 0x00c8_6fa0, 0x00bb_8100, 0x001c_93d6, 0x0097_8e0c]),
+    verdicts: verdicts([0x0000_8060, 0x00a0_6a00, 0x0000_72b2, 0x00c4_4e00, 0x005a_666f, 0x00b0_5085]),
 };
 
 /// By night.
@@ -60,6 +69,7 @@ pub(super) static DARK: Palette = Palette {
     selection: rgb(0x002f_4145),
     alarm: rgb(0x00ff_9d5c),
     hues: hues([0x0000_82ca, 0x00d5_5e00, 0x0000_9e73, 0x00cc_79a7, 0x00e6_9f00, 0x0056_b4e9, 0x00f0_e442]),
+    verdicts: verdicts([0x002f_c79c, 0x00e6_9f00, 0x0056_b4e9, 0x00ff_8340, 0x00a6_b2b9, 0x00e0_94bf]),
 };
 
 /// The colours of the theme in force.
@@ -173,6 +183,20 @@ pub(super) fn pane_hue(palette: &Palette, id: crate::session::PaneId) -> (Color3
     (palette.hues[place % palette.hues.len()], place >= palette.hues.len())
 }
 
+/// The hue of a verdict's mark: green holds, amber is crowded, blue wanders, vermilion is disputed, grey is a skirt,
+/// purple is faint. Shapes differ too.
+pub(super) fn verdict_hue(palette: &Palette, verdict: Verdict) -> Color32 {
+    let [holds, crowded, wanders, disputed, skirt, faint] = palette.verdicts;
+    match verdict {
+        Verdict::Holds => holds,
+        Verdict::Crowded => crowded,
+        Verdict::Wanders => wanders,
+        Verdict::Disputed => disputed,
+        Verdict::Skirt => skirt,
+        Verdict::Faint => faint,
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -203,6 +227,11 @@ mod tests {
                 assert!(contrast(p.accent, ground) >= 4.5, "accent on {ground:?}: {}", contrast(p.accent, ground));
             }
             assert!(contrast(p.accent, p.selection) >= 3.0);
+            for (i, hue) in p.verdicts.into_iter().enumerate() {
+                for ground in [p.paper, p.card, p.selection] {
+                    assert!(contrast(hue, ground) >= 3.0, "verdict {i} on {ground:?}: {}", contrast(hue, ground));
+                }
+            }
             for hue in p.hues {
                 assert!(contrast(hue, p.card) >= 3.0, "{hue:?}: {}", contrast(hue, p.card));
             }

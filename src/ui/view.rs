@@ -16,6 +16,8 @@ use crate::window::Window;
 pub(super) enum Intent {
     /// Change the document.
     Change(Command),
+    /// Put a window in the pane that pane commands act on.
+    Put(Window),
     /// A drag, a spin or a text has ended: what comes next is a step of its own.
     CloseStep,
     /// Do what a menu entry does.
@@ -78,6 +80,12 @@ pub(super) struct View {
     pub(super) kernels: KernelCache,
     /// Columns of curves.
     pub(super) curves: CurveCache,
+    /// Columns of skirts.
+    pub(super) tints: CurveCache,
+    /// Whether what is leakage is tinted, and its peaks marked.
+    pub(super) skirts: bool,
+    /// Whether the smallest tone that would be seen is drawn.
+    pub(super) smallest: bool,
     /// Columns of the strip.
     pub(super) strip_cache: StripCache,
     /// What is typed in the empty state's path field.
@@ -105,6 +113,9 @@ impl Default for View {
             merits: Merits::default(),
             kernels: KernelCache::default(),
             curves: CurveCache::default(),
+            tints: CurveCache::default(),
+            skirts: true,
+            smallest: true,
             strip_cache: StripCache::default(),
             typed_path: String::new(),
         }
@@ -117,6 +128,8 @@ impl View {
         let old = std::mem::take(self);
         self.setup_open = old.setup_open;
         self.in_samples = old.in_samples;
+        self.skirts = old.skirts;
+        self.smallest = old.smallest;
         self.merits = old.merits;
     }
 }

@@ -39,6 +39,8 @@ pub(super) struct Threads {
     pub(super) survey: Lane<Event>,
     /// Figures of windows.
     pub(super) figures: Lane<Event>,
+    /// Skirts and residues.
+    pub(super) parts: Lane<Event>,
     /// The desktop's dialogs.
     pub(super) dialogs: Lane<Event>,
 }
@@ -149,7 +151,7 @@ impl Workbench {
 
     /// Whether nothing is being opened, saved or computed.
     pub fn is_settled(&self) -> bool {
-        let busy = self.desk.as_ref().is_some_and(|d| d.latest.is_busy() || !d.surveyed);
+        let busy = self.desk.as_ref().is_some_and(|d| d.latest.is_busy() || !d.surveyed || d.parts.is_busy());
         self.opening.is_none() && self.waiting.is_none() && !self.saving.is_busy() && !busy
     }
 
@@ -208,6 +210,7 @@ impl Workbench {
         self.survey();
         self.read_columns();
         self.read_figures();
+        self.make_parts();
         if let Some(shown) = self.dialogs.take_if(|_| true) {
             match dialog::show(ui.ctx(), shown) {
                 Ok(open) => self.dialogs.interrupt(open),
@@ -260,7 +263,8 @@ impl Workbench {
         let started = Worker::start(wake()).and_then(|worker| {
             let (opening, files, strip) = (lane("opening")?, lane("files")?, lane("strip")?);
             let (survey, figures, dialogs) = (lane("survey")?, lane("figures")?, lane("dialogs")?);
-            Ok(Threads { worker, opening, files, strip, survey, figures, dialogs })
+            let parts = lane("parts")?;
+            Ok(Threads { worker, opening, files, strip, survey, figures, parts, dialogs })
         });
         match started {
             Ok(threads) => {

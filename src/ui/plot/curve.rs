@@ -2,11 +2,11 @@
 
 use std::sync::Arc;
 
-use eframe::egui::{Color32, Painter, Pos2, Shape, Stroke, pos2};
+use eframe::egui::{Color32, Mesh, Painter, Pos2, Rect, Shape, Stroke, pos2};
 
 use super::Axis;
 use crate::signal::Extent;
-use crate::spectrum::Spectra;
+use crate::spectrum::{Spectra, Stretch};
 
 /// A pane's columns, in decibels over full scale, and what they were made from.
 #[derive(Debug)]
@@ -36,6 +36,29 @@ impl CurveCache {
         axis: &Axis,
         n_columns: usize,
     ) -> Arc<Vec<Extent>> {
+        self.kept_or(spectra, pane, axis, n_columns, |edges| spectra.curve_db(pane, edges))
+    }
+
+    /// The columns of pane `pane` outside of `left_out`, which goes with the spectra; see
+    /// [`Spectra::curve_outside_db`].
+    pub(crate) fn columns_outside(
+        &mut self,
+        spectra: &Arc<Spectra>,
+        (pane, left_out): (usize, &[Stretch]),
+        axis: &Axis,
+        n_columns: usize,
+    ) -> Arc<Vec<Extent>> {
+        self.kept_or(spectra, pane, axis, n_columns, |edges| spectra.curve_outside_db(pane, edges, left_out))
+    }
+
+    fn kept_or(
+        &mut self,
+        spectra: &Arc<Spectra>,
+        pane: usize,
+        axis: &Axis,
+        n_columns: usize,
+        make: impl FnOnce(&[f64]) -> Vec<Extent>,
+    ) -> Arc<Vec<Extent>> {
         if self.kept.len() <= pane {
             self.kept.resize_with(pane + 1, || None);
         }
@@ -48,7 +71,7 @@ impl CurveCache {
         {
             return Arc::clone(&kept.columns);
         }
-        let columns = Arc::new(spectra.curve_db(pane, &axis.edges(n_columns)));
+        let columns = Arc::new(make(&axis.edges(n_columns)));
         let spectra = Arc::clone(spectra);
         let kept = Kept { spectra, pane, lo: axis.lo, hi: axis.hi, log: axis.log, fine, columns: Arc::clone(&columns) };
         if let Some(place) = self.kept.get_mut(pane) {
@@ -79,6 +102,32 @@ pub(crate) fn draw_trace(painter: &Painter, columns: &[Extent], (left, width): (
         } else {
             painter.add(Shape::line(points, stroke));
         }
+    }
+}
+
+/// Fills what lies under the greatest of each column, inside `area`; a column's width follows from their number.
+pub(crate) fn draw_tint(painter: &Painter, columns: &[Extent], area: Rect, level: &Axis, colour: Color32, offset: f64) {
+    let width = area.width() / columns.len().max(1) as f32;
+    let mut mesh = Mesh::default();
+    let mut add = |from: usize, to: usize, top: f32| {
+        if top < area.bottom() {
+            let x = |i: usize| area.left() + i as f32 * width;
+            let fill = Rect::from_min_max(pos2(x(from), top.max(area.top())), pos2(x(to), area.bottom()));
+            mesh.add_colored_rect(fill, colour);
+        }
+    };
+    // Neighbours of one height are one piece.
+    let (mut from, mut top) = (0, f32::INFINITY);
+    for (i, column) in columns.iter().enumerate() {
+        let here = if column.is_empty() { f32::INFINITY } else { level.at(f64::from(column.max) + offset) };
+        if here != top {
+            add(from, i, top);
+            (from, top) = (i, here);
+        }
+    }
+    add(from, columns.len(), top);
+    if !mesh.is_empty() {
+        painter.add(mesh);
     }
 }
 

@@ -5,5 +5,5 @@ mod curve;
 mod labels;
 
 pub(super) use axis::Axis;
-pub(super) use curve::{CurveCache, Trace, draw_trace};
+pub(super) use curve::{CurveCache, Trace, draw_tint, draw_trace};
 pub(super) use labels::{Wish, place};
