@@ -9,5 +9,6 @@ mod journey;
 mod keeping;
 mod lists;
 mod opening;
+mod parting;
 mod setup;
 mod typing;
