@@ -5,6 +5,7 @@
 
 mod computed;
 mod exceptions;
+mod open_data;
 mod practice;
 mod published;
 mod samples;
