@@ -11,9 +11,9 @@ pub(crate) const SCALE_NOTE: &str = "98.1 m/s\u{b2} at full scale: 10.0 mV/(m/s\
 const FRAMES: u64 = 40 * RATE_HZ as u64;
 /// Switched on: a soft starter ramps the speed in a straight line.
 const ON_S: f64 = 0.5;
-const STEADY_FROM_S: f64 = 8.25;
+const STEADY_FROM_S: f64 = 8.75;
 /// Switched off: the speed falls in a straight line that would reach standstill 8 s later.
-const OFF_S: f64 = 33.75;
+const OFF_S: f64 = 33.25;
 const COAST_S: f64 = 8.0;
 /// The magnetic tones come and go with the current.
 const CURRENT_RAMP_S: f64 = 0.25;
@@ -128,7 +128,7 @@ pub(crate) fn make() -> Outcome<Made> {
     let sample = |seconds: f64| (seconds * rate_hz) as u64;
     let truth = Truth {
         file: "saltmarsh-pump2-bearing.wav",
-        what: "Pump 2, bearing housing: run-up from 0.5 s, steady from 8.25 s to 33.75 s, run-down",
+        what: "Pump 2, bearing housing: run-up from 0.5 s, steady from 8.75 s to 33.25 s, run-down",
         format: "WAV, 24-bit integer",
         sample_rate_hz: rate_hz,
         channels: 2,
