@@ -85,6 +85,8 @@ pub struct Analysis {
     pub reading: Arc<Reading>,
     /// What they were made from: the tones as they were fitted, the noise, the residue.
     pub found: Arc<Search>,
+    /// How far a line's power must stand over the floor to count (z).
+    pub threshold: f64,
 }
 
 /// Only the curves: quick enough to follow a dragged edge.
@@ -143,14 +145,15 @@ pub fn analyse(
     doubts.extend(unsteady(&segment, request, watch)?);
     watch.report(0.5);
     let tones = rows::tones(&segment.spectra, request, &found, watch)?;
-    let leaked = skirts::find(&segment.spectra, request, &found, watch)?;
+    let threshold = smallest::threshold(&segment.spectra, request);
+    let leaked = skirts::find(&segment.spectra, request, &found, threshold, watch)?;
     let advice = advice::ranked(&segment.spectra, &found, watch)?;
     doubts.extend(advice::no_window_reads_all(&advice));
     let reading = Reading {
         schema: Reading::SCHEMA,
         version: env!("CARGO_PKG_VERSION").to_owned(),
         capture: capture_facts(request),
-        segment: segment_facts(&segment, request, &found),
+        segment: segment_facts(&segment, request, &found, threshold),
         scale: scale_facts(request),
         panes: pane_facts(&segment.spectra, request, &found, &leaked.n),
         advice,
@@ -158,7 +161,7 @@ pub fn analyse(
         skirts: leaked.peaks,
         warnings: warnings(&segment, request, &found, doubts),
     };
-    Ok(Analysis { request: request.clone(), segment, reading: Arc::new(reading), found: Arc::new(found) })
+    Ok(Analysis { request: request.clone(), segment, reading: Arc::new(reading), found: Arc::new(found), threshold })
 }
 
 fn samples_of(source: &dyn Source, request: &Request, watch: &Watch) -> Result<Vec<f64>, ReadingError> {
@@ -188,7 +191,7 @@ fn capture_facts(request: &Request) -> CaptureFacts {
     }
 }
 
-fn segment_facts(segment: &Segment, request: &Request, found: &Search) -> SegmentFacts {
+fn segment_facts(segment: &Segment, request: &Request, found: &Search, threshold: f64) -> SegmentFacts {
     let removed = segment.removed;
     let factor = request.scale.units_per_full_scale();
     let Span { start, samples } = request.span;
@@ -199,7 +202,7 @@ fn segment_facts(segment: &Segment, request: &Request, found: &Search) -> Segmen
         start_s: start as f64 / request.sample_rate_hz,
         duration_s: samples as f64 / request.sample_rate_hz,
         kind: None,
-        smallest_tone_db: smallest::typical_db(&segment.spectra, request, found),
+        smallest_tone_db: smallest::typical_db(&segment.spectra, request, found, threshold),
         removed: Removed { offset: removed.offset * factor, slope_per_s: removed.slope_per_s * factor, ..removed },
     }
 }

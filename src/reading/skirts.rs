@@ -1,7 +1,7 @@
 //! Peaks of a pane that are leakage: what the window makes of tones, and no tones themselves.
 
 use super::output::SkirtPeak;
-use super::{Request, parts, rows, smallest};
+use super::{Request, parts, rows};
 use crate::signal::{Cancelled, Watch};
 use crate::spectrum::{Dense, Spectra, Stretch};
 use crate::tone::{Noise, Search};
@@ -49,10 +49,16 @@ const NAMED: usize = 4;
 /// Finds the skirt peaks: local maxima of |Y(ν)| outside every main lobe that stand over the pane's floor as a tone would
 /// have to, and that the fitted tones account for: what these leave there, R, does not count as a peak itself.
 ///
-/// With P the pane's mean noise power a line and z the threshold of the search, a local maximum is one where
+/// With P the pane's mean noise power a line and `z` the threshold of the search, a local maximum is one where
 /// |Y|² > z·P, |R|² < max(z·P, 1e-4·|Y|²) and |Y - R|² > 4·|R|². Y - R is exactly what the tones make of the pane, for
 /// tones that move too. `None` for every pane where the tones were not fitted or there is no floor.
-pub(super) fn find(spectra: &Spectra, request: &Request, found: &Search, watch: &Watch) -> Result<Found, Cancelled> {
+pub(super) fn find(
+    spectra: &Spectra,
+    request: &Request,
+    found: &Search,
+    z: f64,
+    watch: &Watch,
+) -> Result<Found, Cancelled> {
     let n_panes = spectra.windows().len();
     let Some(noise) = found.noise.as_ref().filter(|_| found.settled) else {
         return Ok(Found { peaks: Vec::new(), n: vec![None; n_panes] });
@@ -61,7 +67,6 @@ pub(super) fn find(spectra: &Spectra, request: &Request, found: &Search, watch: 
         return Ok(Found { peaks: Vec::new(), n: vec![Some(0); n_panes] });
     }
     let residue = Dense::of(&found.residue);
-    let z = smallest::threshold(spectra, request);
     let mut all = Found::default();
     for pane in 0..n_panes {
         watch.check()?;

@@ -19,9 +19,9 @@ fn amplitude(z: f64, line_power: f64, n: f64) -> f64 {
 }
 
 /// Over the reference, by the median of the floor over the band; `None` without a floor.
-pub(super) fn typical_db(spectra: &Spectra, request: &Request, found: &Search) -> Option<f64> {
+pub(super) fn typical_db(spectra: &Spectra, request: &Request, found: &Search, z: f64) -> Option<f64> {
     let n = spectra.n_samples() as f64;
-    let least = amplitude(threshold(spectra, request), found.noise.as_ref()?.typical_line_power(n), n);
+    let least = amplitude(z, found.noise.as_ref()?.typical_line_power(n), n);
     Some(rows::level_db(&request.scale, least * request.scale.units_per_full_scale()))
 }
 
@@ -40,7 +40,7 @@ impl<'a> SmallestTone<'a> {
         let spectra = &analysis.segment.spectra;
         Some(Self {
             noise: analysis.found.noise.as_ref()?,
-            z: threshold(spectra, &analysis.request),
+            z: analysis.threshold,
             n: spectra.n_samples() as f64,
             spacing_hz: spectra.line_spacing_hz(),
         })

@@ -224,6 +224,8 @@ fn on_tones(desk: &Desk, view: &mut View, action: Action, intents: &mut Intents)
         Action::NextTone => table::step(desk, view, intents, true),
         Action::PreviousTone => table::step(desk, view, intents, false),
         Action::HairlineToTone => view.hairline_hz = desk.session.picked_hz.or(view.hairline_hz),
+        Action::CardDown => view.card_scroll += 1,
+        Action::CardUp => view.card_scroll -= 1,
         Action::Unpick => return Some(Command::Pick(None)),
         Action::TakeBackTone => return hand_tone(desk, view).map(Command::RemoveHandTone),
         Action::NameTone => {

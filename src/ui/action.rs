@@ -47,6 +47,8 @@ pub(super) enum Action {
     NameTone,
     TakeBackTone,
     NoteTone,
+    CardDown,
+    CardUp,
     CopyTable,
     ToggleSetup,
     ToggleSkirts,
@@ -72,6 +74,8 @@ impl Action {
                 | Self::Undo
                 | Self::Redo
                 | Self::NextSegment
+                | Self::CardDown
+                | Self::CardUp
         )
     }
 }
@@ -178,6 +182,8 @@ pub(super) static ENTRIES: &[Entry] = &[
     entry(Action::NameTone, Menu::Tones, "Name a tone at the hairline", Some((CTRL, Key::T))),
     entry(Action::TakeBackTone, Menu::Tones, "Take back the named tone", Some((PLAIN, Key::Backspace))),
     entry(Action::NoteTone, Menu::Tones, "Note on the picked tone…", Some((CTRL, Key::N))),
+    entry(Action::CardDown, Menu::Tones, "Scroll the picked tone's card on", Some((PLAIN, Key::PageDown))),
+    entry(Action::CardUp, Menu::Tones, "Scroll the picked tone's card back", Some((PLAIN, Key::PageUp))),
     entry(Action::CopyTable, Menu::Tones, "Copy the table as text", Some((CTRL_SHIFT, Key::T))),
     always(Action::ToggleSetup, Menu::View, "Setup column", Some((PLAIN, Key::F9))),
     entry(Action::ToggleSkirts, Menu::View, "Skirts", Some((PLAIN, Key::S))),

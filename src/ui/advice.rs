@@ -1,6 +1,6 @@
 //! Which windows suit this segment, and which length of it would part a crowded tone.
 
-use eframe::egui::{Align, Button, Label, Layout, RichText, Ui};
+use eframe::egui::{Align, Button, Label, Layout, RichText, Ui, vec2};
 
 use super::action::{Action, entry_of};
 use super::desk::Desk;
@@ -15,6 +15,9 @@ use crate::window::Window;
 
 /// So many of the windows ranked are shown.
 const SHOWN: usize = 5;
+
+/// Width of the column that says where a window is in use, or puts it to use.
+const USE: f32 = 72.0;
 
 /// A neighbour with less than this part of a tone's amplitude does not crowd it.
 const CROWDING_PART: f64 = 1.15e-3;
@@ -58,7 +61,7 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, intents: &mut Intents) {
         if reading.advice.first().is_some_and(|best| best.expected_worst_error_db.is_none()) {
             quiet(ui, "No window reads all tones; the first reads most.");
         }
-        quiet(ui, "window and worst error to expect");
+        quiet(ui, "window and worst error to expect, dB");
         for (rank, line) in reading.advice.iter().take(SHOWN).enumerate() {
             ranked(ui, (rank, line), desk, current, intents);
         }
@@ -75,16 +78,16 @@ fn ranked(ui: &mut Ui, (rank, line): (usize, &AdviceLine), desk: &Desk, current:
         ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
             ui.spacing_mut().item_spacing.x = 4.0;
             ui.spacing_mut().button_padding.x = 5.0;
-            match panes {
+            use_of(ui, |ui| match panes {
                 Some(pane) => {
                     quiet(ui, format!("pane {}", pane + 1));
                 }
                 None => buttons(ui, &written, desk, current, intents),
-            }
+            });
             ui.label(RichText::new(&error).font(theme::quiet()));
             ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
-                let text = Label::new(&written).selectable(false).truncate();
-                let name = format!("{written}: {error}, {}", line.why);
+                let text = Label::new(RichText::new(&written).font(theme::quiet())).selectable(false).truncate();
+                let name = format!("{written}: worst error {error} dB, {}", line.why);
                 ui.add(text).on_hover_text(&name);
             });
         });
@@ -92,6 +95,15 @@ fn ranked(ui: &mut Ui, (rank, line): (usize, &AdviceLine), desk: &Desk, current:
     if rank == 0 {
         quiet(ui, &line.why);
     }
+}
+
+/// What stands behind a window's expected error, in a column of its own.
+fn use_of(ui: &mut Ui, contents: impl FnOnce(&mut Ui)) {
+    let size = vec2(USE, ui.spacing().interact_size.y);
+    ui.allocate_ui_with_layout(size, Layout::right_to_left(Align::Center), |ui| {
+        ui.set_min_width(USE);
+        contents(ui);
+    });
 }
 
 fn buttons(ui: &mut Ui, written: &str, desk: &Desk, current: bool, intents: &mut Intents) {
@@ -123,10 +135,11 @@ fn own(ui: &mut Ui, reading: &Reading) {
         ui.horizontal(|ui| {
             ui.spacing_mut().interact_size.y = 16.0;
             ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
-                quiet(ui, format!("pane {}", i + 1));
+                use_of(ui, |ui| drop(quiet(ui, format!("pane {}", i + 1))));
                 ui.label(RichText::new(error(pane.expected_worst_error_db)).font(theme::quiet()));
                 ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
-                    ui.add(Label::new(pane.written()).selectable(false).truncate());
+                    let text = RichText::new(pane.written()).font(theme::quiet());
+                    ui.add(Label::new(text).selectable(false).truncate());
                 });
             });
         });
@@ -134,7 +147,7 @@ fn own(ui: &mut Ui, reading: &Reading) {
 }
 
 fn error(expected_db: Option<f64>) -> String {
-    expected_db.map_or_else(|| "misses some".to_owned(), |db| format!("{} dB", figure::significant(db, 2)))
+    expected_db.map_or_else(|| "misses some".to_owned(), |db| figure::significant(db, 2))
 }
 
 /// For a crowded tone: from which length of segment on each pane that cannot part it from its neighbour would.
@@ -182,7 +195,7 @@ mod tests {
 
     #[test]
     fn errors_are_stated_or_said_to_be_none() {
-        assert_eq!(error(Some(0.4512)), "0.45 dB");
+        assert_eq!(error(Some(0.4512)), "0.45");
         assert_eq!(error(None), "misses some");
     }
 }

@@ -4,7 +4,7 @@ use eframe::egui::{self, Align, Layout, RichText, ScrollArea, Ui};
 
 use super::desk::Desk;
 use super::table::picked_row;
-use super::view::View;
+use super::view::{Intents, View};
 use super::{card_tone, figure, theme, widget};
 use crate::reading::{PaneReading, Reading, ReadingState, Tone};
 
@@ -32,13 +32,14 @@ pub(super) fn chosen<'a>(reading: &'a Reading, desk: &Desk, view: &View) -> Opti
 }
 
 /// Shows the card.
-pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Reading) {
+pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Reading, intents: &mut Intents) {
     let Some((tone, pane)) = chosen(reading, desk, view) else { return };
     let Some(cell) = tone.readings.get(pane) else { return };
     if !desk.latest.is_current() {
         ui.multiply_opacity(0.55);
     }
     ScrollArea::vertical().id_salt("card").auto_shrink(false).show(ui, |ui| {
+        turn_pages(ui, view);
         let spacing = desk.line_spacing_hz();
         let head = theme::heavy(ui.ctx(), theme::BODY);
         ui.spacing_mut().item_spacing.y = 1.0;
@@ -50,12 +51,12 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Reading)
         ledger(ui, cell, &reading.scale.reference_label);
         ui.add_space(4.0);
         facts(ui, cell, spacing);
-        card_tone::facts(ui, tone, reading, desk, view);
+        card_tone::facts(ui, tone, reading, desk, view, intents);
     });
 }
 
 /// Shows the card low and wide, for screens without room beside the table.
-pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Reading) {
+pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Reading, intents: &mut Intents) {
     let Some((tone, pane)) = chosen(reading, desk, view) else { return };
     let Some(cell) = tone.readings.get(pane) else { return };
     if !desk.latest.is_current() {
@@ -65,6 +66,7 @@ pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Re
     ui.spacing_mut().item_spacing = egui::vec2(10.0, 1.0);
     ui.spacing_mut().interact_size.y = 16.0;
     ScrollArea::vertical().id_salt("card below").auto_shrink(false).show(ui, |ui| {
+        turn_pages(ui, view);
         ui.horizontal(|ui| {
             let head = theme::heavy(ui.ctx(), theme::BODY);
             let title = format!("{} Hz in {}", figure::hertz(tone.frequency_hz, spacing), cell.window);
@@ -86,8 +88,16 @@ pub(super) fn show_below(ui: &mut Ui, desk: &Desk, view: &mut View, reading: &Re
             facts(ui, cell, spacing);
             small(ui, cell);
         });
-        card_tone::facts(ui, tone, reading, desk, view);
+        card_tone::facts(ui, tone, reading, desk, view, intents);
     });
+}
+
+/// Scrolls by the pages that keys asked for, each somewhat less than what is in sight.
+fn turn_pages(ui: &Ui, view: &mut View) {
+    let pages = std::mem::take(&mut view.card_scroll);
+    if pages != 0 {
+        ui.scroll_with_delta(egui::vec2(0.0, -0.85 * ui.clip_rect().height() * pages as f32));
+    }
 }
 
 /// The steps too small to be written out.

@@ -2,10 +2,11 @@
 
 use eframe::egui::{self, Align, Align2, Layout, RichText, Role, Sense, Shape, Stroke, Ui, WidgetInfo, pos2, vec2};
 
+use super::action::Action;
 use super::desk::Desk;
 use super::pane_marks::verdict_shown;
 use super::table::verdict_word;
-use super::view::View;
+use super::view::{Intent, Intents, View};
 use super::{advice, figure, theme, widget};
 use crate::reading::{BudgetItem, CourseFact, Reading, Tone};
 
@@ -33,15 +34,30 @@ pub(super) fn verdict(ui: &mut Ui, tone: &Tone) {
 }
 
 /// Uncertainty, noise, drift, tags, order; how the tone moves; what length would part it.
-pub(super) fn facts(ui: &mut Ui, tone: &Tone, reading: &Reading, desk: &Desk, view: &mut View) {
+pub(super) fn facts(ui: &mut Ui, tone: &Tone, reading: &Reading, desk: &Desk, view: &mut View, intents: &mut Intents) {
     for line in advice::lengths(tone, reading, desk, view) {
         widget::quiet(ui, line);
     }
+    periods(ui, tone, desk, intents);
     course(ui, tone, &reading.scale.reference_label);
     uncertainty(ui, tone, &reading.scale.unit);
     for line in lines(tone, reading) {
         widget::quiet(ui, line);
     }
+}
+
+/// How many periods the segment holds, and a way to make them whole.
+fn periods(ui: &mut Ui, tone: &Tone, desk: &Desk, intents: &mut Intents) {
+    let Some(segment) = desk.segment() else { return };
+    let n = segment.span.samples as f64 / desk.session.sample_rate_hz() * tone.frequency_hz;
+    ui.horizontal(|ui| {
+        widget::quiet(ui, format!("{} periods in the segment", figure::fixed(n, 3)));
+        let button = ui.add(egui::Button::new("make whole").small());
+        let button = button.on_hover_text("Set the segment to the nearest length of whole periods");
+        if button.accessible_name("Set the segment to whole periods of the picked tone").clicked() {
+            intents.push(Intent::Do(Action::WholePeriods));
+        }
+    });
 }
 
 /// What is known in one line each.
@@ -180,6 +196,94 @@ mod tests {
         let item = |stated, u| BudgetItem { item: "clock".to_owned(), u_amplitude: u, u_frequency_hz: None, stated };
         assert_eq!(cells(&item(false, None), "g"), ["clock", "not stated", "not stated"]);
         assert_eq!(cells(&item(true, Some(0.001_23)), "g"), ["clock", "0.0012 g", "–"]);
+    }
+
+    /// A desk with a pair of tones read, whose first has a verdict, a budget and a course.
+    fn desk() -> Desk {
+        use crate::reading::{Overruled, Verdict, analyse};
+        use crate::signal::{Stored, Watch};
+        use std::sync::Arc;
+        let turn = std::f64::consts::TAU / 1000.0;
+        let sample = |i: u32| {
+            let i = f64::from(i);
+            (100.2 * turn * i).cos() + 0.5 * (101.4 * turn * i).cos() + 1e-4 * (i * i * 0.7).sin()
+        };
+        let capture = crate::capture::Capture {
+            path: "pump.wav".into(),
+            format: "test".to_owned(),
+            bits_per_sample: None,
+            truncated: false,
+            source: Arc::new(Stored::new(1000.0, 1, (0..4096).map(sample).collect())),
+            doubts: Vec::new(),
+            stamp: crate::capture::Stamp::default(),
+        };
+        let mut desk = Desk::fresh(1, Arc::new(capture), |_| {});
+        let request = desk.request();
+        let mut analysis = analyse(&*desk.capture.source, &request, None, &Watch::new()).unwrap();
+        let mut reading = Reading::clone(&analysis.reading);
+        let at = |i: u32| CourseFact {
+            time_s: 4.096 * f64::from(i) / 20.0,
+            frequency_hz: 100.0 + 0.02 * f64::from(i),
+            level_db: -3.0 + 0.1 * f64::from(i),
+        };
+        let tone = &mut reading.tones[0];
+        tone.verdict = Some(Verdict::Disputed);
+        tone.why = Some("the clear readings lie 0.4 dB apart".to_owned());
+        tone.overruled = Some(Overruled {
+            by: "A. Mason".to_owned(),
+            reason: "the run was cut short".to_owned(),
+            verdict: Verdict::Wanders,
+        });
+        tone.course = Some((0..=20).map(at).collect());
+        tone.order = Some(4.01);
+        analysis.reading = Arc::new(reading);
+        desk.latest.asked = Some((1, request));
+        desk.latest.take(super::super::worker::Answer::Reading(1, Box::new(analysis)));
+        desk.session.picked_hz = Some(100.2);
+        desk
+    }
+
+    #[test]
+    fn the_card_says_verdict_reason_budget_course_and_what_would_part_it() {
+        use eframe::egui::Context;
+        use egui_kittest::Harness;
+        use egui_kittest::kittest::Queryable as _;
+        let (desk, mut view, mut intents) = (desk(), View::default(), Intents::new());
+        let reading = desk.reading().unwrap().clone();
+        let dress = |ctx: &Context| super::super::workbench::Workbench::dress(ctx);
+        for _ in 0..2 {
+            let mut harness = Harness::builder()
+                .with_size([300.0, 1200.0])
+                .with_context_setup(dress)
+                .build_ui(|ui| super::super::card::show(ui, &desk, &mut view, &reading, &mut intents));
+            harness.step();
+            for text in [
+                "wanders",
+                "set by A. Mason: the run was cut short (found: disputed)",
+                "the clear readings lie 0.4 dB apart",
+                "not stated",
+                "order 4.0100",
+                "Frequency over the segment: 100.00 to 100.40 Hz, from 0.00 s to 4.10 s",
+                "Level over the segment: ",
+                "periods in the segment",
+            ] {
+                assert!(harness.query_all_by_label_contains(text).next().is_some(), "{text}");
+            }
+            harness.get_by_label("Set the segment to whole periods of the picked tone").click();
+            harness.step();
+            drop(harness);
+            // Widths of main lobes are computed in the background.
+            for wanted in view.merits.wanted() {
+                let (key, figures) = wanted.compute();
+                view.merits.take(key, figures);
+            }
+        }
+        assert!(intents.iter().any(|i| matches!(i, Intent::Do(Action::WholePeriods))));
+        // 1.2 Hz apart: the half main lobe of five terms is five bins.
+        let tone = &reading.tones[0];
+        let lengths = advice::lengths(tone, &reading, &desk, &mut view);
+        let flat_top = lengths.iter().find(|l| l.starts_with("flat-top")).unwrap();
+        assert!(flat_top.contains("parts it from 101.40 Hz in a segment of 4.17 s or more"), "{flat_top}");
     }
 
     #[test]

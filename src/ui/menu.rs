@@ -102,9 +102,13 @@ impl Menus<'_> {
             Action::TakeBackTone => super::act::hand_tone(desk, view).is_some(),
             Action::NameTone => view.hairline_hz.is_some(),
             Action::RemovePane | Action::PaneLeft | Action::PaneRight => desk.session.panes.len() > 1,
-            Action::WholePeriods | Action::FitTone | Action::HairlineToTone | Action::Unpick | Action::NoteTone => {
-                desk.session.picked_hz.is_some()
-            }
+            Action::WholePeriods
+            | Action::CardDown
+            | Action::CardUp
+            | Action::FitTone
+            | Action::HairlineToTone
+            | Action::Unpick
+            | Action::NoteTone => desk.session.picked_hz.is_some(),
             _ => true,
         };
         (entry.name.to_owned(), enabled)

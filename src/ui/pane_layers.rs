@@ -21,6 +21,9 @@ const NEAR: (f64, f32) = (0.6, 3.0);
 /// A tone within so many points of the hairline goes before a skirt peak.
 const TONE_FIRST: f32 = 7.0;
 
+/// In a plot so high lines are named.
+const ROOMY: f32 = 150.0;
+
 /// Points from place to place of the line of the smallest tone.
 const STEP: f32 = 4.0;
 
@@ -40,6 +43,7 @@ impl Plot<'_> {
         let Some(floor) = self.read.and_then(|i| reading.panes.get(i)).and_then(|p| p.floor_db) else { return };
         let y = painter.round_to_pixel_center(self.level.at(floor));
         let points = [pos2(self.area.left(), y), pos2(self.area.right(), y)];
+        self.name_line(painter, y, "floor");
         painter.extend(Shape::dashed_line(&points, Stroke::new(1.0, self.palette.quiet), 2.0, 3.0));
     }
 
@@ -52,7 +56,16 @@ impl Plot<'_> {
         let y = |x: f32| self.level.at(smallest.at_db(self.frequency.value(x)) + self.shared.offset_db);
         let points: Vec<_> = (0..=n).map(x).map(|x| pos2(x, y(x))).collect();
         let ink = if desk.latest.is_current() { self.palette.quiet } else { self.palette.quiet.gamma_multiply(STALE) };
+        self.name_line(painter, y(self.area.left()), "smallest tone that would be seen");
         painter.extend(Shape::dashed_line(&points, Stroke::new(1.0, ink), 9.0, 3.0));
+    }
+
+    /// Says what a line across the plot is, where there is room for words.
+    fn name_line(&self, painter: &Painter, y: f32, text: &str) {
+        if self.area.height() >= ROOMY {
+            let at = pos2(self.area.left() + 4.0, y - 1.0);
+            widget::write(painter, at, Align2::LEFT_BOTTOM, text, theme::quiet(), self.palette.quiet);
+        }
     }
 
     fn skirt_peaks<'r>(&self, reading: &'r Reading) -> impl Iterator<Item = &'r SkirtPeak> {

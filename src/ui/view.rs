@@ -66,6 +66,8 @@ pub(super) struct View {
     pub(super) enlarged: Option<PaneId>,
     /// The pane whose column the ledger card shows; `None`: the sharpest clear one.
     pub(super) card_pane: Option<usize>,
+    /// Pages the card is to be scrolled on by.
+    pub(super) card_scroll: i32,
     /// Whether the picked tone's row has to be brought into sight.
     pub(super) reveal_pick: bool,
     /// The window being chosen.
@@ -106,6 +108,7 @@ impl Default for View {
             pane: None,
             enlarged: None,
             card_pane: None,
+            card_scroll: 0,
             reveal_pick: false,
             choosing: None,
             preview: None,

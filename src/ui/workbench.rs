@@ -349,7 +349,7 @@ fn bench(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents, paper
     });
     let height = ui.available_height();
     let beside = ui.available_width() >= card::BESIDE;
-    let table_height = (height * if beside { 0.3 } else { 0.38 }).clamp(118.0, 260.0);
+    let table_height = (height * if beside { 0.3 } else { 0.38 }).clamp(118.0, 340.0);
     if view.choosing.is_some() {
         let height = (height * 0.46).clamp(210.0, 440.0);
         let bottom = Panel::bottom("choosing").resizable(true).default_size(height).size_range(150.0..=600.0);
@@ -368,10 +368,10 @@ fn bench(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents, paper
         {
             if beside {
                 let card = Panel::right("card").resizable(false).exact_size(card::WIDTH).frame(paper(8, 0));
-                card.show(ui, |ui| card::show(ui, desk, view, &reading));
+                card.show(ui, |ui| card::show(ui, desk, view, &reading, intents));
             } else {
                 let card = Panel::bottom("card below").resizable(false).exact_size(card::HEIGHT).frame(paper(0, 6));
-                card.show(ui, |ui| card::show_below(ui, desk, view, &reading));
+                card.show(ui, |ui| card::show_below(ui, desk, view, &reading, intents));
             }
         }
         CentralPanel::no_frame().show(ui, |ui| table::show(ui, desk, view, intents));

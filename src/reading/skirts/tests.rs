@@ -140,7 +140,7 @@ fn a_tone_that_the_fit_does_not_know_of_is_none() {
     let back = |i: usize| gone.amplitude.norm() * (TAU * gone.nu * i as f64 / n as f64 + gone.amplitude.arg()).cos();
     found.residue = found.residue.iter().enumerate().map(|(i, r)| r + back(i)).collect();
     let analysis = read(samples.to_vec(), &["rectangular", "hann", "kaiser=8.6"]);
-    let all = super::find(&spectra, &analysis.request, &found, &Watch::new()).unwrap();
+    let all = super::find(&spectra, &analysis.request, &found, analysis.threshold, &Watch::new()).unwrap();
     let spacing = spectra.line_spacing_hz();
     for skirt in &all.peaks {
         let off = (skirt.frequency_hz / spacing - weak.0).abs();
@@ -170,7 +170,7 @@ fn noise_alone_and_too_short_a_segment_have_none() {
 fn the_smallest_tone_follows_the_noise() {
     let (n, noise) = (1 << 16, 1e-3);
     let analysis = read(samples(&[(900.3, 0.5, 0.0)], noise, n, 8), &["hann"]);
-    let z = super::smallest::threshold(&analysis.segment.spectra, &analysis.request);
+    let z = analysis.threshold;
     let expected = 20.0 * (2.0 * noise * (z / n as f64).sqrt()).log10();
     let stated = analysis.reading.segment.smallest_tone_db.unwrap();
     // Levels in full scales: a sine of full scale reads 0 dB.
