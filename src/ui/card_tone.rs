@@ -50,9 +50,9 @@ pub(super) fn facts(ui: &mut Ui, tone: &Tone, reading: &Reading, desk: &Desk, vi
 fn periods(ui: &mut Ui, tone: &Tone, desk: &Desk, intents: &mut Intents) {
     let Some(segment) = desk.segment() else { return };
     let n = segment.span.samples as f64 / desk.session.sample_rate_hz() * tone.frequency_hz;
-    ui.horizontal(|ui| {
+    ui.horizontal_wrapped(|ui| {
         widget::quiet(ui, format!("{} periods in the segment", figure::fixed(n, 3)));
-        let button = ui.add(egui::Button::new("make whole").small());
+        let button = ui.add(egui::Button::new("whole periods").small());
         let button = button.on_hover_text("Set the segment to the nearest length of whole periods");
         if button.accessible_name("Set the segment to whole periods of the picked tone").clicked() {
             intents.push(Intent::Do(Action::WholePeriods));

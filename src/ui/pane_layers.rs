@@ -22,7 +22,7 @@ const NEAR: (f64, f32) = (0.6, 3.0);
 const TONE_FIRST: f32 = 7.0;
 
 /// In a plot so high lines are named.
-const ROOMY: f32 = 150.0;
+const ROOMY: f32 = 260.0;
 
 /// Points from place to place of the line of the smallest tone.
 const STEP: f32 = 4.0;
