@@ -1,9 +1,11 @@
 //! Peaks of a pane that are leakage: what the window makes of tones, and no tones themselves.
 
+use realfft::num_complex::Complex64;
+
 use super::output::SkirtPeak;
 use super::{Request, parts, rows};
 use crate::signal::{Cancelled, Watch};
-use crate::spectrum::{Dense, Spectra, Stretch};
+use crate::spectrum::{Spectra, Stretch, Transform, transform};
 use crate::tone::{Noise, Search};
 
 /// The skirt peaks of all panes.
@@ -19,7 +21,7 @@ pub(super) struct Found {
 const LISTED: usize = 50;
 
 /// Lines of a pane about which peaks are looked for: those of the greatest power outside main lobes.
-const LINES: usize = 600;
+const LINES: usize = 300;
 
 /// Beside the strongest tones so many side lobes are looked at whatever the lines show: a tone on a line hides them.
 const LOBES_BESIDE: usize = 12;
@@ -37,8 +39,18 @@ const A_LINE: usize = 4;
 /// nothing of its own makes it one.
 const NO_MATTER: f64 = 1e-4;
 
-/// A peak is the tones' when they make at least so many times the power of what they leave.
+/// A peak is the tones' when it stands at least so many times over what they leave, power.
 const MADE_BY_TONES: f64 = 4.0;
+
+/// What stands between two lines of a rectangular pane shows on the nearer one with at least 1/2.47 of its power: 3.92 dB
+/// scalloping loss (Harris 1978, table I); under any other window with more.
+const BETWEEN_LINES: f64 = 2.47;
+
+/// The floor hardly changes over so many lines.
+const SAME_FLOOR: usize = 32;
+
+/// Further than so many bins off a tone's image makes no part of a skirt worth naming.
+const IMAGE_REACH: f64 = 64.0;
 
 /// Tones are named as the origin until what is left is less than this part of all.
 const LEFT_UNNAMED: f64 = 0.25;
@@ -47,11 +59,11 @@ const LEFT_UNNAMED: f64 = 0.25;
 const NAMED: usize = 4;
 
 /// Finds the skirt peaks: local maxima of |Y(ν)| outside every main lobe that stand over the pane's floor as a tone would
-/// have to, and that the fitted tones account for: what these leave there, R, does not count as a peak itself.
+/// have to, and that the fitted tones account for: what these leave there does not count as a peak itself.
 ///
-/// With P the pane's mean noise power a line and `z` the threshold of the search, a local maximum is one where
-/// |Y|² > z·P, |R|² < max(z·P, 1e-4·|Y|²) and |Y - R|² > 4·|R|². Y - R is exactly what the tones make of the pane, for
-/// tones that move too. `None` for every pane where the tones were not fitted or there is no floor.
+/// With P the pane's mean noise power a line, `z` the threshold of the search and R the residue's lines to either side
+/// under the pane's window, a local maximum is one where |Y|² > z·P, |R|² < max(z·P/2.47, 1e-4·|Y|²) and |Y|² > 4·|R|².
+/// The residue knows of tones that move too. `None` for every pane where the tones were not fitted or there is no floor.
 pub(super) fn find(
     spectra: &Spectra,
     request: &Request,
@@ -66,7 +78,7 @@ pub(super) fn find(
     if found.tones.is_empty() {
         return Ok(Found { peaks: Vec::new(), n: vec![Some(0); n_panes] });
     }
-    let residue = Dense::of(&found.residue);
+    let residue = transform(&found.residue);
     let mut all = Found::default();
     for pane in 0..n_panes {
         watch.check()?;
@@ -83,7 +95,7 @@ struct Look<'a> {
     spectra: &'a Spectra,
     found: &'a Search,
     noise: &'a Noise,
-    residue: &'a Dense,
+    residue: &'a Transform,
     z: f64,
     pane: usize,
 }
@@ -106,8 +118,15 @@ impl Look<'_> {
     fn lines(&self, lobes: &[Stretch]) -> Vec<usize> {
         let power = self.spectra.power(self.pane);
         let s2 = self.spectra.sums(self.pane).s2;
-        let counts = |k: usize| power[k] > LINE_OF_TOP * self.z * self.noise.line_power(k as f64, s2);
-        let mut lines: Vec<usize> = gaps(lobes, power.len()).flatten().filter(|k| counts(*k)).collect();
+        let mut lines: Vec<usize> = Vec::new();
+        for gap in gaps(lobes, power.len()) {
+            for from in gap.clone().step_by(SAME_FLOOR) {
+                let block = from..(from + SAME_FLOOR).min(gap.end);
+                let middle = 0.5 * (block.start + block.end) as f64;
+                let least = LINE_OF_TOP * self.z * self.noise.line_power(middle, s2);
+                lines.extend(block.filter(|k| power.get(*k).is_some_and(|p| *p > least)));
+            }
+        }
         let stronger = |a: &usize, b: &usize| power[*b].total_cmp(&power[*a]);
         if lines.len() > LINES {
             lines.select_nth_unstable_by(LINES, stronger);
@@ -169,18 +188,21 @@ impl Look<'_> {
     }
 
     /// The residue under this pane's window, where that is no cosine sum.
-    fn own_residue(&self) -> Option<Dense> {
+    fn own_residue(&self) -> Option<Transform> {
         let window = self.spectra.windows().get(self.pane).filter(|w| w.cosine_terms().is_none())?;
         let samples = window.samples(self.spectra.n_samples());
-        Some(Dense::of(&self.found.residue.iter().zip(samples).map(|(x, w)| x * w).collect::<Vec<_>>()))
+        Some(transform(&self.found.residue.iter().zip(samples).map(|(x, w)| x * w).collect::<Vec<_>>()))
     }
 
-    fn is_skirt(&self, (nu, power): Top, own_residue: Option<&Dense>) -> bool {
+    fn is_skirt(&self, (nu, power): Top, own_residue: Option<&Transform>) -> bool {
         let terms = self.spectra.windows().get(self.pane).and_then(|w| w.cosine_terms()).unwrap_or(&[]);
-        let left = own_residue.map_or_else(|| self.residue.windowed_at(terms, nu), |dense| dense.at(nu));
-        let made = (self.spectra.at(self.pane, nu) - left).norm_sqr();
+        let line = |k: f64| match own_residue {
+            Some(own) => own.at(k as i64).norm_sqr(),
+            None => windowed_line(self.residue, terms, k as i64).norm_sqr(),
+        };
+        let left = line(nu.floor()).max(line(nu.ceil()));
         let noise = self.noise.line_power(nu, self.spectra.sums(self.pane).s2);
-        left.norm_sqr() < (self.z * noise).max(NO_MATTER * power) && made > MADE_BY_TONES * left.norm_sqr()
+        left < (self.z * noise / BETWEEN_LINES).max(NO_MATTER * power) && power > MADE_BY_TONES * left
     }
 
     fn peak(&self, request: &Request, (nu, power): Top) -> SkirtPeak {
@@ -199,7 +221,9 @@ impl Look<'_> {
         let kernel = |mu: f64| self.spectra.kernel_at(self.pane, mu);
         let part = |tone: &crate::tone::FoundTone| {
             let direct = tone.amplitude * kernel(nu - tone.nu);
-            (direct + tone.amplitude.conj() * kernel(nu + tone.nu)).norm()
+            let image = nu + tone.nu;
+            let image = if image < IMAGE_REACH { tone.amplitude.conj() * kernel(image) } else { Complex64::ZERO };
+            (direct + image).norm()
         };
         let mut parts: Vec<(f64, f64)> = self.found.tones.iter().map(|t| (t.nu, part(t))).collect();
         parts.sort_by(|a, b| b.1.total_cmp(&a.1));
@@ -215,6 +239,15 @@ impl Look<'_> {
         }
         origins
     }
+}
+
+/// Line k under a cosine sum, from the lines without window: Y\[k\] = a_0 X\[k\] + Σ_m (-1)^m (a_m/2)(X\[k-m\] + X\[k+m\]).
+fn windowed_line(lines: &Transform, terms: &[f64], k: i64) -> Complex64 {
+    let part = |(m, a): (i64, &f64)| match m {
+        0 => lines.at(k) * *a,
+        _ => (lines.at(k - m) + lines.at(k + m)) * (if m % 2 == 0 { 0.5 } else { -0.5 } * a),
+    };
+    (0_i64..).zip(terms).map(part).sum()
 }
 
 /// The lines outside of `lobes`, in stretches.
