@@ -35,16 +35,12 @@ const LINE_OF_TOP: f64 = 0.1;
 /// Places looked at from line to line: a side lobe is about a bin wide.
 const A_LINE: usize = 4;
 
-/// What the tones leave of a peak, as a part of its power, that is no matter whatever the floor: 40 dB under the peak
+/// What the tones leave of a peak, as a part of its power, that is no matter whatever the floor: 30 dB under the peak
 /// nothing of its own makes it one.
-const NO_MATTER: f64 = 1e-4;
+const NO_MATTER: f64 = 1e-3;
 
 /// A peak is the tones' when it stands at least so many times over what they leave, power.
 const MADE_BY_TONES: f64 = 4.0;
-
-/// What stands between two lines of a rectangular pane shows on the nearer one with at least 1/2.47 of its power: 3.92 dB
-/// scalloping loss (Harris 1978, table I); under any other window with more.
-const BETWEEN_LINES: f64 = 2.47;
 
 /// The floor hardly changes over so many lines.
 const SAME_FLOOR: usize = 32;
@@ -62,7 +58,7 @@ const NAMED: usize = 4;
 /// have to, and that the fitted tones account for: what these leave there does not count as a peak itself.
 ///
 /// With P the pane's mean noise power a line, `z` the threshold of the search and R the residue's lines to either side
-/// under the pane's window, a local maximum is one where |Y|² > z·P, |R|² < max(z·P/2.47, 1e-4·|Y|²) and |Y|² > 4·|R|².
+/// under the pane's window, a local maximum is one where |Y|² > z·P, |R|² < max(z·P, 1e-3·|Y|²) and |Y|² > 4·|R|².
 /// The residue knows of tones that move too. `None` for every pane where the tones were not fitted or there is no floor.
 pub(super) fn find(
     spectra: &Spectra,
@@ -202,7 +198,7 @@ impl Look<'_> {
         };
         let left = line(nu.floor()).max(line(nu.ceil()));
         let noise = self.noise.line_power(nu, self.spectra.sums(self.pane).s2);
-        left < (self.z * noise / BETWEEN_LINES).max(NO_MATTER * power) && power > MADE_BY_TONES * left
+        left < (self.z * noise).max(NO_MATTER * power) && power > MADE_BY_TONES * left
     }
 
     fn peak(&self, request: &Request, (nu, power): Top) -> SkirtPeak {
