@@ -1,6 +1,7 @@
 //! Peaks over the floor, pane readings and what disturbs them. In bins and full scales; hertz and units come above.
 
 mod advice;
+pub mod families;
 mod fit;
 mod lone;
 mod motion;
