@@ -5,10 +5,10 @@ use std::path::PathBuf;
 use clap::{Args, Parser, Subcommand};
 
 use super::grammar::{
-    SegmentWish, WindowList, count, detector, duration, of_scale, positive, quantity, rate, removal, segment, tone,
-    windows,
+    SegmentWish, WindowList, count, detector, duration, of_scale, positive, quantity, rate, refusal, removal, segment,
+    tone, windows,
 };
-use crate::session::HandTone;
+use crate::session::{HandTone, Refusal};
 use crate::signal::Removal;
 use crate::units::{Detector, Quantity};
 
@@ -28,13 +28,15 @@ const READ_EXAMPLES: &str = "\
 Examples:
   panewise read pump2.wav --segment 9.0..33.0 --windows hann,flat-top,kaiser=8.6
   panewise read pump2.wav --unit m/s² --factor 500 --save pump2.session.ron
+  panewise read pump2.wav --fundamental 24.96 --refuse '50,pick-up of the cable' --by 'N. Name'
   panewise read fan.wav --unit Pa --sensitivity 0.05 --full-scale-volts 10 --json
   panewise read pump2.session.ron --csv    read what a saved session asks for
 
 Levels are corrected for the window's gain, the place between two lines, the mirror image and
 what the removed mean took along. Frequency and level of a row are those of all tones fitted together;
 a pane's columns are what its window reads. A reading is 'clear', 'crowded' (another tone in the pane's
-main lobe), 'under-skirt' (leakage of other tones moves it) or 'below-floor'.";
+main lobe), 'under-skirt' (leakage of other tones moves it) or 'below-floor'. Tags say what a row belongs to, where
+chance would hardly make it look so: the mains, a series of harmonics, sidebands, products, images, folds.";
 
 /// From a recorded capture to a signed figure: mark a steady segment, lay several DFT windows over it side by side,
 /// read each tone's frequency and corrected level.
@@ -134,6 +136,15 @@ pub(super) struct SearchWish {
     /// Name a tone by hand; ',held' keeps its frequency as given. May be given several times
     #[arg(long, value_name = "HZ[,held]", value_parser = tone, allow_negative_numbers = true)]
     pub tone: Vec<HandTone>,
+    /// Let no tone be at a place, and say why. May be given several times
+    #[arg(long, value_name = "HZ[,WHY]", value_parser = refusal, allow_negative_numbers = true)]
+    pub refuse: Vec<Refusal>,
+    /// Who names and refuses tones
+    #[arg(long, value_name = "NAME")]
+    pub by: Option<String>,
+    /// Count orders by this frequency, a shaft's speed of turning; a tone within half a line of it is followed
+    #[arg(long, value_name = "HZ", value_parser = positive, allow_negative_numbers = true)]
+    pub fundamental: Option<f64>,
     /// At most so many tones; the weakest over their floor are left out [default: 200]
     #[arg(long, value_name = "K", value_parser = count, allow_negative_numbers = true)]
     pub max_tones: Option<usize>,

@@ -3,7 +3,7 @@
 use std::ops::RangeInclusive;
 
 use super::usage::nearest;
-use crate::session::{HandTone, MAX_PANES};
+use crate::session::{HandTone, MAX_PANES, Refusal};
 use crate::signal::{RATES_HZ, Removal, Span};
 use crate::units::{Detector, Quantity, Scale};
 use crate::window::{Window, WindowError, catalogue};
@@ -116,7 +116,13 @@ pub(super) fn tone(text: &str) -> Result<HandTone, String> {
         Some(_) => return Err("write HZ or HZ,held".to_owned()),
         None => (text, false),
     };
-    Ok(HandTone { frequency_hz: positive(frequency)?, held })
+    Ok(HandTone::at(positive(frequency)?, held))
+}
+
+/// A place refused: `124.5` or `124.5,the recorder's own`.
+pub(super) fn refusal(text: &str) -> Result<Refusal, String> {
+    let (frequency, reason) = text.split_once(',').unwrap_or((text, ""));
+    Ok(Refusal { frequency_hz: positive(frequency)?, by: String::new(), reason: reason.trim().to_owned() })
 }
 
 pub(super) fn positive(text: &str) -> Result<f64, String> {
@@ -233,10 +239,21 @@ mod tests {
 
     #[test]
     fn hand_tones_may_be_held() {
-        assert_eq!(tone("124.47"), Ok(HandTone { frequency_hz: 124.47, held: false }));
-        assert_eq!(tone("124.47,held"), Ok(HandTone { frequency_hz: 124.47, held: true }));
+        assert_eq!(tone("124.47"), Ok(HandTone::at(124.47, false)));
+        assert_eq!(tone("124.47,held"), Ok(HandTone::at(124.47, true)));
         for text in ["", "0", "-3", "124.47,kept", "inf"] {
             assert!(tone(text).is_err(), "{text}");
+        }
+    }
+
+    #[test]
+    fn a_refusal_may_say_why() {
+        let refused =
+            |frequency_hz, reason: &str| Refusal { frequency_hz, by: String::new(), reason: reason.to_owned() };
+        assert_eq!(refusal("124.5"), Ok(refused(124.5, "")));
+        assert_eq!(refusal("124.5, one, two"), Ok(refused(124.5, "one, two")));
+        for text in ["", "0", ",why", "x,why", "NaN"] {
+            assert!(refusal(text).is_err(), "{text}");
         }
     }
 

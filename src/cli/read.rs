@@ -8,7 +8,9 @@ use super::{CliError, put};
 use crate::capture::{self, Capture};
 use crate::reading::{Reading, ReadingError, Request, Segment, Warning, analyse, figures_of};
 use crate::report;
-use crate::session::{self, CaptureRef, CaptureState, Command, Pane, PaneId, Session, SessionCapture};
+use crate::session::{
+    self, CaptureRef, CaptureState, Command, HandTone, Pane, PaneId, Refusal, Session, SessionCapture,
+};
 use crate::signal::{Span, Watch};
 use crate::tone::suggest_steady;
 use crate::units::{Factor, Quantity, Scale, Unit, brief};
@@ -150,7 +152,8 @@ fn change(opened: &mut Opened, wish: &ReadWish) -> Result<(), CliError> {
         Command::MoveSegment(session.current, span).apply(session);
         opened.marked = true;
     }
-    mark_steady(opened)
+    mark_steady(opened)?;
+    decide(&mut opened.session, &wish.search).map_err(usage)
 }
 
 /// The scale with what was given put in.
@@ -203,13 +206,36 @@ fn change_search(session: &mut Session, wish: &SearchWish) -> Result<(), String>
         tuning.false_alarm = false_alarm;
     }
     Command::SetTuning(tuning).apply(session);
+    Ok(())
+}
+
+/// What is decided by hand. It comes after the segment: how near is near depends on that.
+fn decide(session: &mut Session, wish: &SearchWish) -> Result<(), String> {
     let half_hz = session.sample_rate_hz() / 2.0;
+    let below = |option: &str, hz: f64| {
+        let f = brief(hz);
+        let said = || format!("{option} {f} Hz is not below half the sample rate: give one below {half_hz} Hz");
+        if hz < half_hz { Ok(()) } else { Err(said()) }
+    };
+    let by = || wish.by.clone().unwrap_or_default();
     for tone in &wish.tone {
-        if tone.frequency_hz >= half_hz {
-            let f = brief(tone.frequency_hz);
-            return Err(format!("--tone {f} Hz is not below half the sample rate: give one below {half_hz} Hz"));
+        below("--tone", tone.frequency_hz)?;
+        Command::AddHandTone(HandTone { by: by(), ..tone.clone() }).apply(session);
+    }
+    for refusal in &wish.refuse {
+        below("--refuse", refusal.frequency_hz)?;
+        let near = wish.tone.iter().find(|t| session.is_same_tone(t.frequency_hz, refusal.frequency_hz));
+        if let Some(tone) = near {
+            let (named, refused) = (brief(tone.frequency_hz), brief(refusal.frequency_hz));
+            return Err(format!(
+                "--tone {named} and --refuse {refused} are one place at this resolution: give one of them"
+            ));
         }
-        Command::AddHandTone(tone.clone()).apply(session);
+        Command::RefuseTone(Refusal { by: by(), ..refusal.clone() }).apply(session);
+    }
+    if let Some(hz) = wish.fundamental {
+        below("--fundamental", hz)?;
+        Command::PinFundamental(Some(hz)).apply(session);
     }
     Ok(())
 }

@@ -3,7 +3,7 @@
 use std::sync::Arc;
 
 use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
-use super::{Request, advice, rows, skirts, smallest};
+use super::{Request, advice, families, hands, rows, skirts, smallest};
 use crate::capture::segment_doubts;
 use crate::signal::{Cancelled, RATES_HZ, Removed, SignalError, Source, Span, Stored, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
@@ -135,16 +135,21 @@ pub fn analyse(
     segment.spectra.prepare_between_lines(watch)?;
     watch.report(0.2);
     let (named, mut doubts) = named_tones(&segment.spectra, request);
+    let spacing_hz = segment.spectra.line_spacing_hz();
+    let refused: Vec<f64> = request.refused.iter().map(|r| r.frequency_hz / spacing_hz).collect();
     let quest = Quest {
         removal: request.removal,
         false_alarm: request.tuning.false_alarm,
         max_tones: request.tuning.max_tones,
         named: &named,
+        refused: &refused,
     };
     let found = search(&segment.spectra, &quest, watch)?;
     doubts.extend(unsteady(&segment, request, watch)?);
     watch.report(0.5);
-    let tones = rows::tones(&segment.spectra, request, &found, watch)?;
+    let mut tones = rows::tones(&segment.spectra, request, &found, watch)?;
+    let fundamental = families::fill(&mut tones, request, spacing_hz);
+    hands::overrule(&mut tones, request, spacing_hz);
     let threshold = smallest::threshold(&segment.spectra, request);
     let leaked = skirts::find(&segment.spectra, request, &found, threshold, watch)?;
     let advice = advice::ranked(&segment.spectra, &found, watch)?;
@@ -157,6 +162,8 @@ pub fn analyse(
         scale: scale_facts(request),
         panes: pane_facts(&segment.spectra, request, &found, &leaked.n),
         advice,
+        fundamental,
+        decisions: hands::decisions(&tones, request, spacing_hz),
         tones,
         skirts: leaked.peaks,
         warnings: warnings(&segment, request, &found, doubts),

@@ -10,6 +10,10 @@ pub fn figures_of(reading: &Reading) -> Figures {
         frequency_hz: tone.frequency_hz,
         amplitude: tone.amplitude,
         level_db: tone.level_db,
+        frequency_u95_hz: tone.frequency_u95_hz,
+        level_u95_db: tone.level_u95_db,
+        verdict: tone.verdict.map(|v| v.word().to_owned()),
+        overruled: tone.overruled.as_ref().map(|o| o.verdict.word().to_owned()),
         readings: tone
             .readings
             .iter()

@@ -3,7 +3,9 @@
 mod advice;
 mod analysis;
 mod budget;
+mod families;
 mod figures;
+mod hands;
 mod output;
 mod parts;
 mod request;
@@ -14,8 +16,8 @@ mod smallest;
 pub use analysis::{Analysis, ReadingError, Segment, analyse, analyse_curves, with_windows};
 pub use figures::figures_of;
 pub use output::{
-    AdviceLine, BudgetItem, CaptureFacts, CourseFact, LedgerStep, Overruled, PaneFacts, PaneReading, Reading,
-    ReadingState, ScaleFacts, SegmentFacts, SkirtPeak, Tone, Verdict, Warning,
+    AdviceLine, BudgetItem, CaptureFacts, CourseFact, Decision, DecisionKind, FundamentalFact, LedgerStep, Overruled,
+    PaneFacts, PaneReading, Reading, ReadingState, ScaleFacts, SegmentFacts, SkirtPeak, Tone, Verdict, Warning,
 };
 pub use parts::{Skirts, residue_of, skirts_of};
 pub use request::Request;

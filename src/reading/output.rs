@@ -5,6 +5,7 @@
 
 use serde::{Serialize, Serializer};
 
+pub use crate::session::Verdict;
 use crate::signal::Removed;
 use crate::units::Detector;
 
@@ -27,6 +28,10 @@ pub struct Reading {
     pub advice: Vec<AdviceLine>,
     /// Tones, by frequency.
     pub tones: Vec<Tone>,
+    /// The frequency that orders are counted by, where one is pinned.
+    pub fundamental: Option<FundamentalFact>,
+    /// What the user has decided, by frequency.
+    pub decisions: Vec<Decision>,
     /// Peaks that are leakage: at most the strongest 50 a pane, by pane, strongest first.
     pub skirts: Vec<SkirtPeak>,
     /// What a reader of these figures should know.
@@ -163,22 +168,56 @@ impl AdviceLine {
     }
 }
 
-/// What a tone is.
+/// The pinned fundamental.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct FundamentalFact {
+    /// As it was pinned.
+    pub pinned_hz: f64,
+    /// As orders are counted by it: the best estimate of the tone within half a line of it, else as it was pinned.
+    pub used_hz: f64,
+}
+
+/// What a user can decide.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
 #[serde(rename_all = "lowercase")]
-pub enum Verdict {
-    /// Fitted, steady, parted from its neighbours, and the clear readings agree.
-    Holds,
-    /// A neighbour is too near.
-    Crowded,
-    /// It moves over the segment.
-    Wanders,
-    /// Clear readings disagree and nothing explains it.
-    Disputed,
-    /// Leakage of stronger tones; not a tone.
-    Skirt,
-    /// Too weak to be sure.
-    Faint,
+pub enum DecisionKind {
+    /// A tone was named.
+    Named,
+    /// A tone was named, and its frequency is held.
+    Held,
+    /// No tone is fitted or listed there.
+    Refused,
+    /// A verdict was put in the place of the program's.
+    Overruled,
+}
+
+impl DecisionKind {
+    /// The word for it.
+    pub fn word(self) -> &'static str {
+        match self {
+            Self::Named => "named",
+            Self::Held => "held",
+            Self::Refused => "refused",
+            Self::Overruled => "overruled",
+        }
+    }
+}
+
+/// Something the user has decided.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct Decision {
+    /// What.
+    pub kind: DecisionKind,
+    /// Where.
+    pub frequency_hz: f64,
+    /// The verdict put in place.
+    pub verdict: Option<Verdict>,
+    /// Who; empty where that was not said.
+    pub by: String,
+    /// Why; empty where that was not said.
+    pub reason: String,
+    /// The tone it belongs to; `None` where none stands there, as at a place refused.
+    pub tone_hz: Option<f64>,
 }
 
 /// An overruled verdict.

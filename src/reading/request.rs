@@ -1,6 +1,6 @@
 //! What a Reading depends on, all of it.
 
-use crate::session::{CaptureRef, HandTone, Session, Tuning};
+use crate::session::{CaptureRef, HandTone, Overrule, Refusal, Session, Tuning};
 use crate::signal::{Removal, Span};
 use crate::units::Scale;
 use crate::window::Window;
@@ -24,6 +24,12 @@ pub struct Request {
     pub windows: Vec<Window>,
     /// Tones named by hand.
     pub hand_tones: Vec<HandTone>,
+    /// Places where no tone is to be.
+    pub refused: Vec<Refusal>,
+    /// Verdicts put in the place of the program's, those of this channel and segment.
+    pub overruled: Vec<Overrule>,
+    /// The frequency that orders are counted by.
+    pub fundamental_hz: Option<f64>,
     /// What governs the search.
     pub tuning: Tuning,
 }
@@ -40,6 +46,9 @@ impl Request {
             removal: session.removal,
             windows: session.panes.iter().map(|p| p.window.clone()).collect(),
             hand_tones: session.hand_tones.clone(),
+            refused: session.refused.clone(),
+            overruled: session.overruled_here().map(|(_, o)| o.clone()).collect(),
+            fundamental_hz: session.fundamental_hz,
             tuning: session.tuning,
         }
     }

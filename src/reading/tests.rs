@@ -182,15 +182,11 @@ fn the_floor_is_that_of_the_noise() {
 fn a_tone_named_by_hand_is_read_where_it_is_held() {
     let n = 8192;
     let mut request = request(n);
-    request.hand_tones = vec![
-        HandTone { frequency_hz: 100.0, held: true },
-        HandTone { frequency_hz: 300.2, held: false },
-        HandTone { frequency_hz: 99_999.0, held: false },
-    ];
+    request.hand_tones = vec![HandTone::at(100.0, true), HandTone::at(310.2, false), HandTone::at(99_999.0, false)];
     let analysis = analyse(&capture(&[made(100.3, 0.5)], 1e-4, n), &request, None, &Watch::new()).unwrap();
     let tones = &analysis.reading.tones;
     assert_eq!(tones.len(), 2);
-    assert_eq!(tones[0].tags, ["by-hand", "held"]);
+    assert_eq!(tones[0].tags, ["mains", "by-hand", "held"]);
     assert!(tones[0].readings.iter().all(|r| r.peak_hz == 100.0 && r.borrowed));
     assert_eq!(tones[1].tags, ["by-hand"]);
 }

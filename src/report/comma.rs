@@ -22,7 +22,8 @@ fn head(reading: &Reading) -> Vec<String> {
     let figures =
         ["frequency_hz", "frequency_u95_hz", "amplitude", "amplitude_u95", "level", "level_db", "level_u95_db"];
     let about = ["agreement_db", "unit", "detector", "reference", "tags"];
-    let mut cells: Vec<String> = figures.into_iter().chain(about).map(String::from).collect();
+    let judged = ["order", "verdict", "why", "overruled", "overruled_by", "overruled_reason"];
+    let mut cells: Vec<String> = figures.into_iter().chain(about).chain(judged).map(String::from).collect();
     for (i, pane) in reading.panes.iter().enumerate() {
         let pane = format!("pane {} {}", i + 1, pane.written());
         cells.extend(["level_db", "peak_hz", "state", "u_db"].map(|what| format!("{pane} {what}")));
@@ -45,7 +46,15 @@ fn row(reading: &Reading, tone: &Tone) -> Vec<String> {
         Detector::name(scale.detector).to_owned(),
         scale.reference.to_string(),
         tone.tags.join("; "),
+        optional(tone.order),
+        tone.verdict.map(|v| v.word().to_owned()).unwrap_or_default(),
+        tone.why.clone().unwrap_or_default(),
     ];
+    let overruled = tone.overruled.as_ref();
+    cells.extend(
+        overruled
+            .map_or([const { String::new() }; 3], |o| [o.verdict.word().to_owned(), o.by.clone(), o.reason.clone()]),
+    );
     for pane in &tone.readings {
         cells.extend([
             pane.level_db.to_string(),
@@ -65,7 +74,7 @@ fn optional(value: Option<f64>) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::report::sample::reading;
+    use crate::report::sample::{judged, reading};
 
     #[test]
     fn every_row_has_a_cell_for_each_head_and_numbers_come_back_exactly() {
@@ -82,6 +91,13 @@ mod tests {
         assert_eq!(cell("pane 1 rectangular state"), "under-skirt");
         assert_eq!(cell("pane 2 kaiser=8.6 peak_hz").parse::<f64>().unwrap(), 24.96);
         assert_eq!(cell("pane 2 kaiser=8.6 u_db"), "");
+        assert_eq!((cell("order"), cell("verdict")), (String::new(), String::new()));
         assert_eq!((cell("unit"), cell("detector")), ("m/s²".to_owned(), "rms".to_owned()));
+    }
+
+    #[test]
+    fn a_verdict_and_what_was_put_in_its_place_have_cells_of_their_own() {
+        let text = String::from_utf8(csv_table(&judged()).unwrap()).unwrap();
+        assert!(text.contains(",3,crowded,\"a tone, too near\",holds,N.N.,\"seen, on the spot\","), "{text}");
     }
 }

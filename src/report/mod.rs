@@ -1,7 +1,9 @@
 //! Tables and figures: a [`Reading`](crate::reading::Reading) or the catalogue in, text out.
 
 mod comma;
+mod digits;
 mod json;
+mod judged;
 mod kernels;
 #[cfg(test)]
 mod sample;

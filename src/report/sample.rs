@@ -1,8 +1,8 @@
 //! A Reading made by hand, for tests.
 
 use crate::reading::{
-    AdviceLine, CaptureFacts, LedgerStep, PaneFacts, PaneReading, Reading, ReadingState, ScaleFacts, SegmentFacts,
-    Tone, Warning,
+    AdviceLine, BudgetItem, CaptureFacts, Decision, DecisionKind, FundamentalFact, LedgerStep, Overruled, PaneFacts,
+    PaneReading, Reading, ReadingState, ScaleFacts, SegmentFacts, Tone, Verdict, Warning,
 };
 use crate::signal::{Removal, Removed};
 use crate::units::Detector;
@@ -45,6 +45,8 @@ pub(super) fn reading() -> Reading {
             expected_worst_error_db: Some(0.45),
             why: "the noise at 24.96 Hz decides".to_owned(),
         }],
+        fundamental: None,
+        decisions: Vec::new(),
         tones: vec![tone()],
         skirts: Vec::new(),
         warnings: vec![Warning { code: "assumed-segment", text: "the longest steady stretch was read".to_owned() }],
@@ -53,6 +55,45 @@ pub(super) fn reading() -> Reading {
 
 pub(super) fn without_tones() -> Reading {
     Reading { tones: Vec::new(), ..reading() }
+}
+
+/// The same with all that is decided of a tone and beside it.
+pub(super) fn judged() -> Reading {
+    let mut reading = reading();
+    let said = |kind, frequency_hz, reason: &str| Decision {
+        kind,
+        frequency_hz,
+        verdict: None,
+        by: "N.N.".to_owned(),
+        reason: reason.to_owned(),
+        tone_hz: None,
+    };
+    reading.fundamental = Some(FundamentalFact { pinned_hz: 8.3, used_hz: 8.32 });
+    reading.decisions = vec![
+        Decision {
+            verdict: Some(Verdict::Holds),
+            tone_hz: Some(24.96),
+            ..said(DecisionKind::Overruled, 24.96, "seen, on the spot")
+        },
+        Decision { by: String::new(), ..said(DecisionKind::Held, 99.84, "") },
+        said(DecisionKind::Refused, 124.5, "the recorder's own\nhum"),
+    ];
+    let budget = |item: &str, u: Option<f64>| BudgetItem {
+        item: item.to_owned(),
+        u_amplitude: u,
+        u_frequency_hz: u,
+        stated: u.is_some(),
+    };
+    let tone = &mut reading.tones[0];
+    tone.verdict = Some(Verdict::Crowded);
+    tone.why = Some("a tone, too near".to_owned());
+    tone.order = Some(3.0);
+    tone.tags = vec!["harmonic 3 of 8.32".to_owned()];
+    tone.amplitude_u95 = Some(0.000_033);
+    tone.budget = Some(vec![budget("noise", Some(1.2e-5)), budget("neighbours", Some(0.0)), budget("factor", None)]);
+    let (by, reason) = ("N.N.".to_owned(), "seen, on the spot".to_owned());
+    tone.overruled = Some(Overruled { by, reason, verdict: Verdict::Holds });
+    reading
 }
 
 fn pane(window: &str, parameter: &[f64], floor_db: Option<f64>) -> PaneFacts {

@@ -20,6 +20,11 @@ impl Table {
         Self { columns, n_head: 0, rows: Vec::new() }
     }
 
+    /// One more column, at the right end.
+    pub(super) fn column(&mut self, align: Align) {
+        self.columns.push(align);
+    }
+
     /// One more row of the head, above the rule.
     pub(super) fn head(&mut self, cells: Vec<String>) {
         self.n_head += 1;

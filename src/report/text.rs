@@ -1,12 +1,13 @@
 //! The tone table for the terminal.
 
-use super::CAUTION;
+use super::digits::{MOST_DECIMALS, aligned, decimals_of, digits_by, or_less, room, short};
 use super::table::{Align, Table};
+use super::{CAUTION, judged};
 use crate::reading::{PaneReading, Reading, Tone};
 use crate::session::Figure;
 
-/// Decimals of a frequency at most: lines of the slowest rate that can be meant are still told apart.
-const MOST_DECIMALS: f64 = 18.0;
+/// Decimals of a level in decibels, at most, and where no uncertainty is stated.
+const DB_DECIMALS: (usize, usize) = (5, 3);
 
 /// The tone table as text: what was read and how levels are stated, a line a tone with a column a pane, then what a
 /// reader of the figures should know.
@@ -16,8 +17,11 @@ pub fn tone_table(reading: &Reading) -> String {
     if reading.tones.is_empty() {
         text.push_str("No tone stands over the floor.\n");
     } else {
-        text.push_str(&table(reading));
+        let frequencies = frequencies(reading);
+        text.push_str(&table(reading, &frequencies));
+        text.push_str(&judged::verdicts(reading, &frequencies.values));
     }
+    text.push_str(&judged::decisions(reading));
     text.push_str(&advised(reading));
     if !reading.warnings.is_empty() {
         text.push('\n');
@@ -57,8 +61,15 @@ fn head(reading: &Reading) -> String {
         unit_of_levels(reading),
         scale.reference_label,
         segment.smallest_tone_db.map_or_else(String::new, smallest),
-        if stated { "U: expanded uncertainty (k = 2) by noise and neighbours alone\n" } else { "" },
+        if stated { covered(reading) } else { String::new() },
     )
+}
+
+/// What the uncertainties are made of, and what they leave out.
+fn covered(reading: &Reading) -> String {
+    let missing = judged::not_stated(reading);
+    let missing = if missing.is_empty() { String::new() } else { format!("; not stated: {}", missing.join(", ")) };
+    format!("U: expanded uncertainty (k = 2){missing}\n")
 }
 
 fn smallest(level_db: f64) -> String {
@@ -70,48 +81,109 @@ fn unit_of_levels(reading: &Reading) -> String {
     format!("{} {}", reading.scale.unit, reading.scale.detector.title())
 }
 
-fn table(reading: &Reading) -> String {
-    let mut columns = vec![Align::Right; 6];
-    let mut names = ["frequency", "U", "level", "level", "U", "agreement"].map(String::from).to_vec();
-    let mut units = ["Hz", "Hz", &unit_of_levels(reading), "dB", "dB", "dB"].map(String::from).to_vec();
-    for pane in &reading.panes {
-        columns.extend([Align::Right, Align::Left]);
-        // The window's name stands over both of the pane's columns.
-        names.extend([String::new(), pane.written()]);
-        units.extend(["dB".to_owned(), "state".to_owned()]);
-    }
-    let tagged = reading.tones.iter().any(|tone| !tone.tags.is_empty());
-    if tagged {
-        columns.push(Align::Left);
-        names.push(String::new());
-        units.push("tags".to_owned());
-    }
-    let mut table = Table::new(columns);
-    table.head(names);
-    table.head(units);
+/// Frequencies and their uncertainties, a row each, in the digits they deserve, points in a line.
+struct Frequencies {
+    values: Vec<String>,
+    spreads: Vec<String>,
+}
+
+fn frequencies(reading: &Reading) -> Frequencies {
     let decimals: Vec<_> = reading.tones.iter().map(|tone| frequency_decimals(reading, tone)).collect();
     let most = decimals.iter().copied().max().unwrap_or(0);
-    for (tone, decimals) in reading.tones.iter().zip(decimals) {
-        table.row(row(tone, (decimals, most), tagged));
+    let figures: Vec<_> = reading.tones.iter().zip(&decimals).map(|(t, d)| (t.frequency_hz, *d)).collect();
+    let spread = |(tone, &decimals): (&Tone, &usize)| match tone.frequency_u95_hz {
+        Some(u) => format!("{u:.decimals$}{}", room(decimals, most)),
+        None => "-".to_owned(),
+    };
+    Frequencies { values: aligned(&figures), spreads: reading.tones.iter().zip(&decimals).map(spread).collect() }
+}
+
+/// Which columns a table has beside those it always has.
+#[derive(Debug, Clone, Copy)]
+struct Columns {
+    orders: bool,
+    verdicts: bool,
+    tags: bool,
+}
+
+fn table(reading: &Reading, frequencies: &Frequencies) -> String {
+    let has = Columns {
+        orders: reading.fundamental.is_some(),
+        verdicts: reading.tones.iter().any(|t| t.verdict.is_some() || t.overruled.is_some()),
+        tags: reading.tones.iter().any(|t| !t.tags.is_empty()),
+    };
+    let mut table = Table::new(Vec::new());
+    let mut heads: Vec<(Align, String, String)> = Vec::new();
+    let mut head = |align, name: &str, unit: &str| heads.push((align, name.to_owned(), unit.to_owned()));
+    head(Align::Right, "frequency", "Hz");
+    head(Align::Right, "U", "Hz");
+    if has.orders {
+        head(Align::Right, "order", "");
+    }
+    head(Align::Right, "level", &unit_of_levels(reading));
+    head(Align::Right, "level", "dB");
+    head(Align::Right, "U", "dB");
+    head(Align::Right, "agreement", "dB");
+    if has.verdicts {
+        head(Align::Left, "verdict", "");
+    }
+    for pane in &reading.panes {
+        // The window's name stands over both of the pane's columns.
+        head(Align::Right, "", "dB");
+        head(Align::Left, &pane.written(), "state");
+    }
+    if has.tags {
+        head(Align::Left, "", "tags");
+    }
+    for (align, ..) in &heads {
+        table.column(*align);
+    }
+    table.head(heads.iter().map(|h| h.1.clone()).collect());
+    table.head(heads.iter().map(|h| h.2.clone()).collect());
+    let levels = level_figures(reading);
+    for (i, (tone, level)) in reading.tones.iter().zip(levels).enumerate() {
+        let at = |list: &[String]| list.get(i).cloned().unwrap_or_default();
+        let mut cells = vec![at(&frequencies.values), at(&frequencies.spreads)];
+        cells.extend(row(reading, tone, level, has));
+        table.row(cells);
     }
     table.text()
 }
 
-/// `decimals` of the frequency are shown; room is left for as many as any row has, so that the points stand in a line.
-fn row(tone: &Tone, (decimals, most): (usize, usize), tagged: bool) -> Vec<String> {
-    let room = most - decimals + usize::from(decimals == 0 && most > 0);
-    let fixed = |hz: f64| format!("{hz:.decimals$}{}", " ".repeat(room));
+/// Levels in decibels and their uncertainties.
+fn level_figures(reading: &Reading) -> Vec<(String, String)> {
+    let (most, standing) = DB_DECIMALS;
+    let decimals = |t: &Tone| t.level_u95_db.filter(|u| *u > 0.0).map_or(standing, |u| decimals_of(u, most));
+    let figures: Vec<_> = reading.tones.iter().map(|t| (t.level_db, decimals(t))).collect();
+    let widest = figures.iter().map(|f| f.1).max().unwrap_or(0);
+    let spread = |(tone, figure): (&Tone, &(f64, usize))| {
+        tone.level_u95_db.map_or_else(|| "-".to_owned(), |u| or_less(u, figure.1) + &room(figure.1, widest))
+    };
+    let spreads: Vec<_> = reading.tones.iter().zip(&figures).map(spread).collect();
+    aligned(&figures).into_iter().zip(spreads).collect()
+}
+
+/// A row but for its frequency.
+fn row(reading: &Reading, tone: &Tone, (level_db, level_u95_db): (String, String), has: Columns) -> Vec<String> {
     let none = || "-".to_owned();
-    let mut cells = vec![
-        fixed(tone.frequency_hz),
-        tone.frequency_u95_hz.map_or_else(none, fixed),
-        digits(tone.level, 5),
-        format!("{:.3}", tone.level_db),
-        tone.level_u95_db.map_or_else(none, thousandths),
+    let mut cells = Vec::new();
+    if has.orders {
+        cells.push(tone.order.map_or_else(none, |order| format!("{order:.4}")));
+    }
+    let detector = reading.scale.detector.of_unit_peak();
+    cells.extend([
+        digits_by(tone.level, tone.amplitude_u95.map(|u| u * detector)),
+        level_db,
+        level_u95_db,
         tone.agreement_db.map_or_else(none, thousandths),
-    ];
+    ]);
+    if has.verdicts {
+        let found = tone.verdict.map_or_else(none, |v| v.word().to_owned());
+        // A verdict put in the place of the program's bears a mark; the lines under the table say who and why.
+        cells.push(tone.overruled.as_ref().map_or(found, |o| format!("{}*", o.verdict.word())));
+    }
     cells.extend(tone.readings.iter().flat_map(cell));
-    if tagged {
+    if has.tags {
         cells.push(tone.tags.join(", "));
     }
     cells
@@ -124,42 +196,16 @@ fn cell(reading: &PaneReading) -> [String; 2] {
 
 /// Decibels to a thousandth; what is less but not nothing is said to be less.
 fn thousandths(db: f64) -> String {
-    if db > 0.0 && db < 0.000_5 { "<0.001".to_owned() } else { format!("{db:.3}") }
+    or_less(db, 3)
 }
 
 /// Decimals that show two digits of a tone's uncertainty; a hundredth of a line where none is stated.
 fn frequency_decimals(reading: &Reading, tone: &Tone) -> usize {
     let hundredth_hz = reading.panes.first().map_or(0.01, |p| p.line_spacing_hz / 100.0);
-    let decimals = match tone.frequency_u95_hz.filter(|u| *u > 0.0) {
-        Some(u95_hz) => 1.0 - u95_hz.log10().floor(),
-        None => (-hundredth_hz.log10()).ceil(),
-    };
-    decimals.clamp(0.0, MOST_DECIMALS) as usize
-}
-
-/// A number in `n` significant digits.
-fn digits(value: f64, n: i32) -> String {
-    if value == 0.0 || !value.is_finite() {
-        return value.to_string();
+    match tone.frequency_u95_hz.filter(|u| *u > 0.0) {
+        Some(u95_hz) => decimals_of(u95_hz, MOST_DECIMALS),
+        None => (-hundredth_hz.log10()).ceil().clamp(0.0, MOST_DECIMALS as f64) as usize,
     }
-    let exponent = value.abs().log10().floor();
-    if (-4.0..9.0).contains(&exponent) {
-        let decimals = (n - 1 - exponent as i32).max(0) as usize;
-        format!("{value:.decimals$}")
-    } else {
-        format!("{value:.*e}", n as usize - 1)
-    }
-}
-
-/// A number in few digits with its unit.
-fn short(value: f64, unit: &str) -> String {
-    let text = digits(value, 6);
-    let text = if text.contains('.') && !text.contains('e') {
-        text.trim_end_matches('0').trim_end_matches('.')
-    } else {
-        &text
-    };
-    format!("{text} {unit}")
 }
 
 /// A figure of a recheck as text.
@@ -187,24 +233,7 @@ fn capital(word: &str) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::report::sample::{reading, without_tones};
-
-    #[test]
-    fn numbers_keep_their_significant_digits() {
-        for (value, expected) in [
-            (0.0, "0"),
-            (14.142_135, "14.142"),
-            (0.001_234_567, "0.0012346"),
-            (123_456.7, "123457"),
-            (1e-9, "1.0000e-9"),
-            (f64::NAN, "NaN"),
-        ] {
-            assert_eq!(digits(value, 5), expected);
-        }
-        assert_eq!(short(24.0, "s"), "24 s");
-        assert_eq!(short(8192.0, "Hz"), "8192 Hz");
-        assert_eq!(short(100.0, "Hz"), "100 Hz");
-    }
+    use crate::report::sample::{judged, reading, without_tones};
 
     #[test]
     fn a_tone_is_a_line_with_a_level_and_a_word_for_each_pane() {
@@ -216,8 +245,8 @@ mod tests {
                 "24.96000",
                 "0.00031",
                 "1.0000",
-                "120.000",
-                "<0.001",
+                "120.00000",
+                "0.00020",
                 "0.010",
                 "120.010",
                 "under-skirt",
@@ -229,7 +258,7 @@ mod tests {
         assert!(text.contains("Segment 9.000 s to 33.000 s: 196608 samples, 24 s; lines 0.0416667 Hz apart"));
         assert!(text.contains("(r.m.s.)\nSmallest tone that would be seen: 41.5 dB (median over the band)\nU: "));
         assert!(text.contains("Note (assumed-segment): "));
-        assert!(text.contains("U: expanded uncertainty (k = 2) by noise and neighbours alone\n"));
+        assert!(text.contains("U: expanded uncertainty (k = 2)\n"));
         assert!(text.contains(
             "\nWindow advised: kaiser=8.6, worst error to expect 0.450 dB (the noise at 24.96 Hz decides)\n"
         ));
@@ -249,6 +278,20 @@ mod tests {
         assert!(row("124.470 ").contains(" 0.012 ") && row("200.0000 ").contains(" - "), "{text}");
         assert_eq!((at("24.96000"), at("124.470 ")), (at("200.0000 "), at("200.0000 ")));
         assert_eq!(row("2000 ").find("2000").unwrap() + "2000".len(), at("24.96000"), "{text}");
+    }
+
+    #[test]
+    fn orders_verdicts_and_tags_have_columns_where_there_are_any() {
+        let text = tone_table(&judged());
+        let row = text.lines().find(|line| line.trim_start().starts_with("24.96000")).unwrap();
+        let cells: Vec<_> = row.split_whitespace().collect();
+        assert_eq!(cells[..3], ["24.96000", "0.00031", "3.0000"]);
+        // 3.3e-5 of the peak is 2.3e-5 r.m.s.: two digits of it.
+        assert_eq!(cells[3..7], ["1.000000", "120.00000", "0.00020", "0.010"]);
+        assert_eq!(cells[7], "holds*");
+        assert!(row.ends_with("harmonic 3 of 8.32"), "{row}");
+        assert!(text.contains("U: expanded uncertainty (k = 2); not stated: factor\n"), "{text}");
+        assert!(text.contains("\nVerdicts") && text.contains("\nBy hand: refused at 124.5 Hz by N.N.: "), "{text}");
     }
 
     #[test]

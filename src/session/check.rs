@@ -1,6 +1,6 @@
 //! Whether a document can be: everything a file might say that the program relies on not to happen.
 
-use super::command::{MAX_PANES, MAX_SEGMENTS, MAX_TONES, axes_are_usable, scale_is_finite};
+use super::command::{MAX_DECISIONS, MAX_PANES, MAX_SEGMENTS, MAX_TONES, axes_are_usable, scale_is_finite};
 use super::{DocumentError, Session};
 use crate::signal::RATES_HZ;
 
@@ -26,6 +26,8 @@ impl Session {
         count("segments", self.segments.len(), 1, MAX_SEGMENTS)?;
         count("panes", self.panes.len(), 1, MAX_PANES)?;
         count("tones named by hand", self.hand_tones.len(), 0, MAX_TONES)?;
+        count("refusals", self.refused.len(), 0, MAX_DECISIONS)?;
+        count("verdicts overruled", self.overruled.len(), 0, MAX_DECISIONS)?;
         count("tones to search for", self.tuning.max_tones, 1, MAX_TONES)?;
         if self.channel >= channels {
             return Err(DocumentError::Channel { channel: self.channel, channels });
@@ -69,6 +71,9 @@ impl Session {
         positive("the chance of a false alarm", self.tuning.false_alarm)?;
         positive("one less the chance of a false alarm", 1.0 - self.tuning.false_alarm)?;
         self.hand_tones.iter().try_for_each(|t| positive("the frequency of a tone named by hand", t.frequency_hz))?;
+        self.refused.iter().try_for_each(|r| positive("the frequency of a refusal", r.frequency_hz))?;
+        self.overruled.iter().try_for_each(|o| positive("the frequency of a verdict overruled", o.frequency_hz))?;
+        self.fundamental_hz.map_or(Ok(()), |f| positive("the fundamental pinned", f))?;
         self.notes.iter().filter_map(|n| n.frequency_hz).try_for_each(|f| frequency("the frequency of a note", f))?;
         self.picked_hz.map_or(Ok(()), |f| frequency("the frequency picked", f))?;
         if !self.scales.iter().all(scale_is_finite) {

@@ -1,6 +1,7 @@
 //! Every change of the document, named, applied in one place.
 
-use super::{HandTone, NamedSegment, Note, Pane, PaneId, SegmentId, Session, Tuning, ViewAxes};
+use super::SAME_TONE_LINES;
+use super::{HandTone, NamedSegment, Note, Overrule, Pane, PaneId, Refusal, SegmentId, Session, Tuning, ViewAxes};
 use crate::signal::{RATES_HZ, Removal, Span};
 use crate::units::{Factor, Scale};
 use crate::window::Window;
@@ -13,6 +14,12 @@ pub const MAX_SEGMENTS: usize = 500;
 
 /// The most tones a search may be asked for.
 pub const MAX_TONES: usize = 10_000;
+
+/// The most refusals, and the most verdicts overruled, that a session has.
+pub const MAX_DECISIONS: usize = 1000;
+
+/// Letters kept of who decided something and of why.
+const REASON_LETTERS: usize = 500;
 
 /// Letters kept of a segment's name.
 const NAME_LETTERS: usize = 120;
@@ -53,8 +60,20 @@ pub enum Command {
     Pick(Option<f64>),
     /// Name a tone by hand.
     AddHandTone(HandTone),
+    /// Hold a tone's frequency as given, or let it be fitted: names the tone where it was not.
+    HoldTone(HandTone),
     /// Take a hand-named tone back.
     RemoveHandTone(usize),
+    /// Let no tone be at a place; one named there by hand is taken back.
+    RefuseTone(Refusal),
+    /// Take a refusal back.
+    TakeBackRefusal(usize),
+    /// Put a verdict in the place of the program's.
+    Overrule(Overrule),
+    /// Let the program's verdict stand again.
+    TakeBackOverrule(usize),
+    /// Count orders by a frequency, or by none.
+    PinFundamental(Option<f64>),
     /// Write or replace the remark about a tone or the session; an empty text takes it away.
     SetNote(Note),
     /// Change what governs the search.
@@ -84,7 +103,15 @@ impl Command {
             Self::MovePane(..) => "move pane",
             Self::Pick(_) => "pick tone",
             Self::AddHandTone(_) => "name tone",
+            Self::HoldTone(HandTone { held: true, .. }) => "hold frequency",
+            Self::HoldTone(_) => "let frequency be fitted",
             Self::RemoveHandTone(_) => "take back named tone",
+            Self::RefuseTone(_) => "refuse tone",
+            Self::TakeBackRefusal(_) => "take back refusal",
+            Self::Overrule(_) => "overrule verdict",
+            Self::TakeBackOverrule(_) => "take back overruling",
+            Self::PinFundamental(Some(_)) => "pin fundamental",
+            Self::PinFundamental(None) => "unpin fundamental",
             Self::SetNote(_) => "write note",
             Self::SetTuning(_) => "tune search",
             Self::SetAxes(_) => "change axes",
@@ -120,12 +147,14 @@ impl Command {
             Self::RemovePane(id) => remove_pane(session, id),
             Self::MovePane(id, to) => move_pane(session, id, to),
             Self::Pick(frequency) => is_frequency(frequency) && put(&mut session.picked_hz, frequency),
-            Self::AddHandTone(tone) => add_hand_tone(session, tone),
-            Self::RemoveHandTone(at) => {
-                at < session.hand_tones.len() && {
-                    session.hand_tones.remove(at);
-                    true
-                }
+            Self::AddHandTone(tone) | Self::HoldTone(tone) => add_hand_tone(session, &tone),
+            Self::RemoveHandTone(at) => take_out(&mut session.hand_tones, at),
+            Self::RefuseTone(refusal) => refuse_tone(session, &refusal),
+            Self::TakeBackRefusal(at) => take_out(&mut session.refused, at),
+            Self::Overrule(overrule) => overrule_verdict(session, &overrule),
+            Self::TakeBackOverrule(at) => take_out(&mut session.overruled, at),
+            Self::PinFundamental(hz) => {
+                hz.is_none_or(|hz| is_in_band(session, hz)) && put(&mut session.fundamental_hz, hz)
             }
             Self::SetNote(note) => is_frequency(note.frequency_hz) && set_note(session, note),
             Self::SetTuning(tuning) => {
@@ -201,6 +230,7 @@ fn remove_segment(session: &mut Session, id: SegmentId) -> bool {
         return false;
     }
     session.segments.remove(at);
+    session.overruled.retain(|o| o.segment != id);
     if session.current == id {
         let neighbour = session.segments.get(at).or_else(|| session.segments.last());
         session.current = neighbour.map_or(id, |s| s.id);
@@ -234,15 +264,81 @@ fn move_pane(session: &mut Session, id: PaneId, to: usize) -> bool {
     from != to
 }
 
-fn add_hand_tone(session: &mut Session, tone: HandTone) -> bool {
-    let in_band = tone.frequency_hz > 0.0 && tone.frequency_hz < session.sample_rate_hz() / 2.0;
-    if !in_band || session.hand_tones.len() >= MAX_TONES {
+fn take_out<T>(list: &mut Vec<T>, at: usize) -> bool {
+    let there = at < list.len();
+    if there {
+        list.remove(at);
+    }
+    there
+}
+
+fn is_in_band(session: &Session, frequency_hz: f64) -> bool {
+    frequency_hz > 0.0 && frequency_hz < session.sample_rate_hz() / 2.0
+}
+
+/// A name or a reason on one line, not longer than is kept.
+fn said(text: &str) -> String {
+    let text: String = text.chars().map(|c| if c.is_control() { ' ' } else { c }).collect();
+    text.trim().chars().take(REASON_LETTERS).collect()
+}
+
+/// Names a tone, or says something else of one named at this very place. A refusal there is taken back: what was said
+/// last counts.
+fn add_hand_tone(session: &mut Session, tone: &HandTone) -> bool {
+    if !is_in_band(session, tone.frequency_hz) {
         return false;
     }
+    let tone = HandTone { by: said(&tone.by), reason: said(&tone.reason), ..*tone };
+    let near_hz = SAME_TONE_LINES * session.line_spacing_hz();
     if let Some(same) = session.hand_tones.iter_mut().find(|t| t.frequency_hz == tone.frequency_hz) {
         return put(same, tone);
     }
+    if session.hand_tones.len() >= MAX_TONES {
+        return false;
+    }
+    session.refused.retain(|r| (r.frequency_hz - tone.frequency_hz).abs() > near_hz);
     session.hand_tones.push(tone);
+    true
+}
+
+fn refuse_tone(session: &mut Session, refusal: &Refusal) -> bool {
+    if !is_in_band(session, refusal.frequency_hz) {
+        return false;
+    }
+    let refusal = Refusal { by: said(&refusal.by), reason: said(&refusal.reason), ..*refusal };
+    let near_hz = SAME_TONE_LINES * session.line_spacing_hz();
+    let is_near = |hz: f64| (hz - refusal.frequency_hz).abs() <= near_hz;
+    if let Some(same) = session.refused.iter_mut().find(|r| r.frequency_hz == refusal.frequency_hz) {
+        return put(same, refusal);
+    }
+    if session.refused.len() >= MAX_DECISIONS {
+        return false;
+    }
+    session.hand_tones.retain(|t| !is_near(t.frequency_hz));
+    session.refused.push(refusal);
+    true
+}
+
+/// Of one tone in one channel and segment only what was said last is kept.
+fn overrule_verdict(session: &mut Session, overrule: &Overrule) -> bool {
+    let known =
+        overrule.channel < session.capture.channels && session.segments.iter().any(|s| s.id == overrule.segment);
+    if !known || !is_in_band(session, overrule.frequency_hz) {
+        return false;
+    }
+    let overrule = Overrule { by: said(&overrule.by), reason: said(&overrule.reason), ..*overrule };
+    let near_hz = SAME_TONE_LINES * session.line_spacing_hz();
+    let is_same = |o: &Overrule| {
+        let place = (o.channel, o.segment) == (overrule.channel, overrule.segment);
+        place && (o.frequency_hz - overrule.frequency_hz).abs() <= near_hz
+    };
+    if let Some(same) = session.overruled.iter_mut().find(|o| is_same(o)) {
+        return put(same, overrule);
+    }
+    if session.overruled.len() >= MAX_DECISIONS {
+        return false;
+    }
+    session.overruled.push(overrule);
     true
 }
 

@@ -2,6 +2,7 @@
 
 use serde::{Deserialize, Serialize};
 
+use super::{Overrule, Refusal};
 use crate::capture::Capture;
 use crate::signal::{Removal, Span};
 use crate::units::Scale;
@@ -84,6 +85,19 @@ pub struct HandTone {
     pub frequency_hz: f64,
     /// Whether its frequency is held as given.
     pub held: bool,
+    /// Who named it; may be empty.
+    #[serde(default, skip_serializing_if = "String::is_empty")]
+    pub by: String,
+    /// Why; may be empty.
+    #[serde(default, skip_serializing_if = "String::is_empty")]
+    pub reason: String,
+}
+
+impl HandTone {
+    /// A tone that nobody in particular names.
+    pub fn at(frequency_hz: f64, held: bool) -> Self {
+        Self { frequency_hz, held, by: String::new(), reason: String::new() }
+    }
 }
 
 /// A remark, about a tone or about the whole session.
@@ -161,6 +175,17 @@ pub struct Session {
     pub last_pane_id: u32,
     /// Tones named by hand.
     pub hand_tones: Vec<HandTone>,
+    /// Places where no tone is to be.
+    #[serde(default)]
+    pub refused: Vec<Refusal>,
+    /// Verdicts that stand in the place of the program's.
+    #[serde(default)]
+    pub overruled: Vec<Overrule>,
+    /// The frequency that orders are counted by, as a machine's speed of turning, Hz. Where a tone stands within half a
+    /// line of it in the segment read, that tone's best estimate is used: a pinned shaft is followed from segment to
+    /// segment, and a speed typed in few digits does not spoil the high orders.
+    #[serde(default)]
+    pub fundamental_hz: Option<f64>,
     /// What governs the search for tones.
     pub tuning: Tuning,
     /// The tone picked, by its frequency, Hz.
@@ -191,6 +216,9 @@ impl Session {
             last_pane_id: panes.len() as u32,
             panes,
             hand_tones: Vec::new(),
+            refused: Vec::new(),
+            overruled: Vec::new(),
+            fundamental_hz: None,
             tuning: Tuning::default(),
             picked_hz: None,
             notes: Vec::new(),

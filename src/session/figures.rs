@@ -32,6 +32,18 @@ pub struct ToneFigures {
     pub amplitude: f64,
     /// Level over the reference.
     pub level_db: f64,
+    /// Expanded uncertainty of the frequency; `None` where none was stated, and in sessions of format 1.
+    #[serde(default)]
+    pub frequency_u95_hz: Option<f64>,
+    /// Expanded uncertainty of the level; `None` likewise.
+    #[serde(default)]
+    pub level_u95_db: Option<f64>,
+    /// The verdict's word; `None` likewise.
+    #[serde(default)]
+    pub verdict: Option<String>,
+    /// The word of the verdict that a user has put in its place.
+    #[serde(default)]
+    pub overruled: Option<String>,
     /// One for each pane, in order.
     pub readings: Vec<PaneFigures>,
 }
@@ -76,6 +88,9 @@ const LEVELS_ALIKE_DB: f64 = 1e-6;
 
 /// The same for frequencies and amplitudes, as a ratio.
 const RATIOS_ALIKE: f64 = 1e-7;
+
+/// The same for uncertainties, which rest on the noise that a fit leaves, a small difference of larger numbers.
+const SPREADS_ALIKE: f64 = 1e-5;
 
 impl Figures {
     /// The figures that differ between these, which were saved, and `now`.
@@ -127,6 +142,7 @@ impl ToneFigures {
         ratio(moved, format!("{name}: frequency_hz"), self.frequency_hz, now.frequency_hz);
         ratio(moved, format!("{name}: amplitude"), self.amplitude, now.amplitude);
         level(moved, format!("{name}: level_db"), self.level_db, now.level_db);
+        self.moved_beside(&name, now, moved);
         if self.readings.len() != now.readings.len() {
             let count = |tone: &Self| Figure::Number(tone.readings.len() as f64);
             moved.push(Moved { what: format!("{name}: number of readings"), was: count(self), is: count(now) });
@@ -138,6 +154,31 @@ impl ToneFigures {
             if was.state != is.state {
                 let what = format!("{name}: state in {pane}");
                 moved.push(Moved { what, was: Figure::Word(was.state.clone()), is: Figure::Word(is.state.clone()) });
+            }
+        }
+    }
+}
+
+impl ToneFigures {
+    /// What goes with a figure: its uncertainty and its verdict. What was not saved has not moved.
+    fn moved_beside(&self, name: &str, now: &Self, moved: &mut Vec<Moved>) {
+        for (what, was, is) in [
+            ("frequency_u95_hz", self.frequency_u95_hz, now.frequency_u95_hz),
+            ("level_u95_db", self.level_u95_db, now.level_u95_db),
+        ] {
+            let Some(was) = was else { continue };
+            let what = format!("{name}: {what}");
+            match is {
+                Some(is) => number(moved, what, was, is, SPREADS_ALIKE * was.abs().max(is.abs())),
+                None => moved.push(Moved { what, was: Figure::Number(was), is: Figure::None }),
+            }
+        }
+        for (what, was, is) in
+            [("verdict", &self.verdict, &now.verdict), ("overruled", &self.overruled, &now.overruled)]
+        {
+            if was.is_some() && was != is {
+                let figure = |word: &Option<String>| word.clone().map_or(Figure::None, Figure::Word);
+                moved.push(Moved { what: format!("{name}: {what}"), was: figure(was), is: figure(is) });
             }
         }
     }
@@ -171,7 +212,16 @@ mod tests {
 
     fn tone(frequency_hz: f64, level_db: f64) -> ToneFigures {
         let reading = PaneFigures { state: "clear".to_owned(), peak_hz: frequency_hz, level_db };
-        ToneFigures { frequency_hz, amplitude: 1.0, level_db, readings: vec![reading] }
+        ToneFigures {
+            frequency_hz,
+            amplitude: 1.0,
+            level_db,
+            frequency_u95_hz: Some(1e-3),
+            level_u95_db: None,
+            verdict: Some("holds".to_owned()),
+            overruled: None,
+            readings: vec![reading],
+        }
     }
 
     fn figures(tones: Vec<ToneFigures>) -> Figures {
@@ -218,6 +268,20 @@ mod tests {
         let was = figures(vec![tone(24.96, -3.0)]);
         assert_eq!(was.moved(&figures(vec![tone(24.96, f64::NAN)])).len(), 2);
         assert_eq!(was.moved(&figures(vec![tone(24.96 + 1e-12, -3.0 + 1e-9)])), []);
+    }
+
+    #[test]
+    fn a_moved_verdict_and_uncertainty_are_named_and_what_was_never_saved_is_not() {
+        let was = figures(vec![tone(24.96, -3.0)]);
+        let mut now = was.clone();
+        now.tones[0].verdict = Some("crowded".to_owned());
+        now.tones[0].frequency_u95_hz = Some(1.1e-3);
+        now.tones[0].level_u95_db = Some(0.1);
+        let names: Vec<_> = was.moved(&now).into_iter().map(|m| m.what).collect();
+        assert_eq!(names, ["tone 24.9600 Hz: frequency_u95_hz", "tone 24.9600 Hz: verdict"]);
+        let mut old = was.clone();
+        (old.tones[0].verdict, old.tones[0].frequency_u95_hz) = (None, None);
+        assert_eq!(old.moved(&now), []);
     }
 
     #[test]

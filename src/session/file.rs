@@ -14,7 +14,10 @@ use super::{Figures, Session, SessionError};
 pub const EXTENSION: &str = ".session.ron";
 
 /// The format written, and the newest one read.
-pub const FORMAT: u32 = 1;
+///
+/// Format 2 added refusals, overruled verdicts, the pinned fundamental, who named a tone, and verdicts and uncertainties
+/// among the figures; sessions of format 1 have none of them and are read as they are.
+pub const FORMAT: u32 = 2;
 
 /// No session is longer than this.
 const MOST_BYTES: u64 = 16 << 20;

@@ -5,6 +5,7 @@
 
 mod check;
 mod command;
+mod decisions;
 mod document;
 mod error;
 mod figures;
@@ -16,7 +17,8 @@ mod recovery;
 #[cfg(test)]
 mod tests;
 
-pub use command::{Command, MAX_PANES, MAX_SEGMENTS, MAX_TONES};
+pub use command::{Command, MAX_DECISIONS, MAX_PANES, MAX_SEGMENTS, MAX_TONES};
+pub use decisions::{Overrule, Refusal, SAME_TONE_LINES, Verdict};
 pub use document::{
     CaptureRef, DEFAULT_WINDOWS, FrequencyAxis, HandTone, NamedSegment, Note, Pane, PaneId, SegmentId, Session, Tuning,
     ViewAxes,

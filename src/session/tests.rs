@@ -105,8 +105,8 @@ fn numbers_that_cannot_be_change_nothing() {
         Command::SetRate(Some(0.0)),
         Command::SetRate(Some(1e300)),
         Command::Pick(Some(nan)),
-        Command::AddHandTone(HandTone { frequency_hz: nan, held: false }),
-        Command::AddHandTone(HandTone { frequency_hz: 500.0, held: false }),
+        Command::AddHandTone(HandTone::at(nan, false)),
+        Command::AddHandTone(HandTone::at(500.0, false)),
         Command::RemoveHandTone(0),
         Command::SetNote(Note { frequency_hz: Some(f64::INFINITY), text: "x".to_owned() }),
         Command::SetNote(Note { frequency_hz: None, text: "  ".to_owned() }),
@@ -198,7 +198,7 @@ fn a_saved_session_comes_back_and_its_capture_is_told_from_its_folder() {
     let loaded = load(&path).unwrap();
     assert_eq!(loaded.session, session);
     let text = std::fs::read_to_string(&path).unwrap();
-    assert!(text.starts_with("Session(\n  format: 1,\n  program: "), "{text}");
+    assert!(text.starts_with("Session(\n  format: 2,\n  program: "), "{text}");
     assert!(text.contains("path: \"pump.wav\""), "{text}");
 }
 
@@ -281,4 +281,100 @@ fn a_pane_shows_the_residue_by_a_step_of_its_own_and_older_sessions_show_the_seg
     assert_eq!(text.matches("residue").count(), 1);
     assert!(history.undo(&mut session) && !session.panes[1].residue);
     assert!(!ron::to_string(&session).unwrap().contains("residue"));
+}
+
+fn refusal(frequency_hz: f64) -> Refusal {
+    Refusal { frequency_hz, by: "N.N.".to_owned(), reason: "the recorder's own".to_owned() }
+}
+
+fn overrule(frequency_hz: f64, verdict: Verdict) -> Overrule {
+    let (by, reason) = ("N.N.".to_owned(), "seen on the spot".to_owned());
+    Overrule { frequency_hz, channel: 0, segment: FIRST, verdict, by, reason }
+}
+
+#[test]
+fn decisions_are_steps_with_names_and_are_taken_back() {
+    let mut session = pump();
+    let mut history = History::new();
+    for (command, name) in [
+        (Command::RefuseTone(refusal(50.0)), "refuse tone"),
+        (Command::Overrule(overrule(120.0, Verdict::Disputed)), "overrule verdict"),
+        (Command::PinFundamental(Some(24.96)), "pin fundamental"),
+        (Command::HoldTone(HandTone::at(99.84, true)), "hold frequency"),
+    ] {
+        assert!(history.apply(&mut session, command.clone()), "{name}");
+        assert_eq!(history.undo_name(), Some(name));
+        assert!(!history.apply(&mut session, command), "{name} twice");
+    }
+    assert_eq!(session.check(), Ok(()));
+    for (command, name) in [
+        (Command::TakeBackRefusal(0), "take back refusal"),
+        (Command::TakeBackOverrule(0), "take back overruling"),
+        (Command::PinFundamental(None), "unpin fundamental"),
+        (Command::HoldTone(HandTone::at(99.84, false)), "let frequency be fitted"),
+    ] {
+        assert!(history.apply(&mut session, command), "{name}");
+        assert_eq!(history.undo_name(), Some(name));
+    }
+    assert!(session.refused.is_empty() && session.overruled.is_empty() && session.fundamental_hz.is_none());
+    for _ in 0..8 {
+        assert!(history.undo(&mut session));
+    }
+    assert_eq!(session, pump());
+}
+
+#[test]
+fn decisions_that_cannot_be_change_nothing() {
+    let mut session = pump();
+    for command in [
+        Command::RefuseTone(refusal(f64::NAN)),
+        Command::RefuseTone(refusal(500.0)),
+        Command::Overrule(overrule(0.0, Verdict::Holds)),
+        Command::Overrule(Overrule { channel: 2, ..overrule(50.0, Verdict::Holds) }),
+        Command::Overrule(Overrule { segment: SegmentId(7), ..overrule(50.0, Verdict::Holds) }),
+        Command::PinFundamental(Some(f64::INFINITY)),
+        Command::PinFundamental(Some(-1.0)),
+        Command::TakeBackRefusal(0),
+        Command::TakeBackOverrule(3),
+    ] {
+        assert!(!command.clone().apply(&mut session), "{command:?}");
+    }
+    assert_eq!(session, pump());
+}
+
+#[test]
+fn of_naming_and_refusing_one_place_the_last_counts() {
+    // Lines stand 1 Hz apart.
+    let mut session = pump();
+    assert!(Command::AddHandTone(HandTone::at(50.0, false)).apply(&mut session));
+    assert!(Command::AddHandTone(HandTone::at(60.0, false)).apply(&mut session));
+    assert!(Command::RefuseTone(refusal(50.7)).apply(&mut session));
+    assert_eq!(session.hand_tones, [HandTone::at(60.0, false)]);
+    assert!(Command::AddHandTone(HandTone::at(50.0, true)).apply(&mut session));
+    assert_eq!((session.hand_tones.len(), session.refused.len()), (2, 0));
+}
+
+#[test]
+fn a_verdict_is_overruled_once_a_tone_in_its_own_channel_and_segment() {
+    let mut session = pump();
+    assert!(Command::Overrule(overrule(50.0, Verdict::Holds)).apply(&mut session));
+    assert!(Command::Overrule(overrule(50.7, Verdict::Skirt)).apply(&mut session));
+    assert_eq!(session.overruled, [overrule(50.7, Verdict::Skirt)]);
+    assert!(Command::Overrule(Overrule { channel: 1, ..overrule(50.7, Verdict::Faint) }).apply(&mut session));
+    assert!(Command::AddSegment(span(0, 500)).apply(&mut session));
+    let second = session.current;
+    assert!(Command::Overrule(Overrule { segment: second, ..overrule(50.7, Verdict::Faint) }).apply(&mut session));
+    assert_eq!(session.overruled_here().map(|(i, o)| (i, o.verdict)).collect::<Vec<_>>(), [(2, Verdict::Faint)]);
+    Command::ChooseSegment(FIRST).apply(&mut session);
+    assert_eq!(session.overruled_here().map(|(i, o)| (i, o.verdict)).collect::<Vec<_>>(), [(0, Verdict::Skirt)]);
+    assert!(Command::RemoveSegment(second).apply(&mut session));
+    assert_eq!(session.overruled.len(), 2, "what was said of a segment goes with it");
+}
+
+#[test]
+fn names_and_reasons_are_kept_on_one_line_and_not_endlessly() {
+    let mut session = pump();
+    let reason = format!(" one\ntwo{}", "x".repeat(10_000));
+    assert!(Command::RefuseTone(Refusal { reason, ..refusal(50.0) }).apply(&mut session));
+    assert!(session.refused[0].reason.starts_with("one two") && session.refused[0].reason.len() == 500);
 }

@@ -132,6 +132,9 @@ pub struct Quest<'a> {
     /// Tones named by hand, kept whatever the search finds; those less than half a cycle from 0 Hz or half the rate are
     /// passed over.
     pub named: &'a [NamedTone],
+    /// Places, in bins, where no tone is to be: one found within [`SAME_AS_NAMED`] of them is not fitted. What is named
+    /// stays.
+    pub refused: &'a [f64],
 }
 
 /// Looks for tones in the segment of `spectra`, whose own panes do not matter, and fits them jointly.
@@ -155,6 +158,7 @@ pub fn search(spectra: &Spectra, quest: &Quest<'_>, watch: &Watch) -> Result<Sea
             look(&view, noise, z, &mut found, watch)?;
         }
     }
+    found.retain(|f| !quest.refused.iter().any(|nu| (nu - f.nu).abs() < SAME_AS_NAMED));
     let n_found = found.len();
     found.sort_by(|a, b| b.snr.total_cmp(&a.snr));
     found.truncate(quest.max_tones);

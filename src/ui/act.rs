@@ -230,7 +230,7 @@ fn on_tones(desk: &Desk, view: &mut View, action: Action, intents: &mut Intents)
         Action::TakeBackTone => return hand_tone(desk, view).map(Command::RemoveHandTone),
         Action::NameTone => {
             let frequency_hz = view.hairline_hz?;
-            return Some(Command::AddHandTone(HandTone { frequency_hz, held: false }));
+            return Some(Command::AddHandTone(HandTone::at(frequency_hz, false)));
         }
         _ => {}
     }

@@ -123,7 +123,11 @@ fn text_and_csv_show_the_same_tones() {
         };
         let line = text.lines().find(near).unwrap_or_else(|| panic!("no row of {frequency_hz} Hz in\n{text}"));
         let cells: Vec<_> = line.split_whitespace().collect();
-        assert_eq!(cells[3], format!("{:.3}", tone["level_db"].as_f64().unwrap()), "{line}");
+        let decimals = cells[3].split_once('.').map_or(0, |(_, after)| after.len());
+        assert_eq!(cells[3], format!("{:.decimals$}", tone["level_db"].as_f64().unwrap()), "{line}");
+        // As many decimals as two digits of the uncertainty have, but for one that is less than the last of them.
+        let u95_db = tone["level_u95_db"].as_f64().unwrap();
+        assert_eq!(decimals, ((1.0 - u95_db.log10().floor()) as usize).min(5), "{u95_db}: {line}");
         let level = tone["level"].as_f64().unwrap();
         assert!((cells[2].parse::<f64>().unwrap() / level - 1.0).abs() < 1e-4, "{level}: {line}");
         assert!((level / tone["amplitude"].as_f64().unwrap() - std::f64::consts::FRAC_1_SQRT_2).abs() < 1e-12);

@@ -4,8 +4,8 @@ use std::fs;
 use std::path::Path;
 
 use panewise::session::{
-    CaptureRef, Command, FORMAT, Figures, FrequencyAxis, HandTone, Note, PaneFigures, PaneId, SegmentId, Session,
-    SessionError, ToneFigures, Tuning, ViewAxes, load, save,
+    CaptureRef, Command, FORMAT, Figures, FrequencyAxis, HandTone, Note, Overrule, PaneFigures, PaneId, Refusal,
+    SegmentId, Session, SessionError, ToneFigures, Tuning, Verdict, ViewAxes, load, save,
 };
 use panewise::signal::{Removal, Span};
 use panewise::units::{Detector, Factor, Quantity, Scale};
@@ -40,7 +40,18 @@ fn document() -> Session {
         Command::AddPane(Window::parse("hann").unwrap()),
         Command::RemovePane(PaneId(2)),
         Command::Pick(Some(124.8)),
-        Command::AddHandTone(HandTone { frequency_hz: 124.47, held: true }),
+        Command::AddHandTone(HandTone::at(124.47, true)),
+        Command::HoldTone(HandTone { by: "N.N.".to_owned(), reason: "rig".to_owned(), ..HandTone::at(130.0, true) }),
+        Command::RefuseTone(Refusal { frequency_hz: 50.5, by: "N.N.".to_owned(), reason: "recorder".to_owned() }),
+        Command::Overrule(Overrule {
+            frequency_hz: 99.85,
+            channel: 1,
+            segment: SegmentId(2),
+            verdict: Verdict::Disputed,
+            by: "N.N.".to_owned(),
+            reason: "the load changed".to_owned(),
+        }),
+        Command::PinFundamental(Some(24.96)),
         Command::SetNote(Note { frequency_hz: None, text: "two\nlines /* and */ // more".to_owned() }),
         Command::SetNote(Note { frequency_hz: Some(99.84), text: "four times shaft".to_owned() }),
         Command::SetTuning(Tuning { false_alarm: 1e-4, max_tones: 17 }),
@@ -69,6 +80,10 @@ fn figures() -> Figures {
             frequency_hz: f64::from_bits(0x405f_3333_3333_3334),
             amplitude: 5e-324,
             level_db: 140.0,
+            frequency_u95_hz: Some(1e-4),
+            level_u95_db: None,
+            verdict: Some("holds".to_owned()),
+            overruled: Some("disputed".to_owned()),
             readings,
         }],
     }
@@ -147,7 +162,7 @@ fn what_cannot_be_is_refused_by_name() {
     let path = saved(&shop);
     let whole = fs::read_to_string(&path).unwrap();
     for (from, to, said) in [
-        ("format: 1", "format: 7", "newer Panewise (format 7; this one reads 1)"),
+        ("format: 2", "format: 7", "newer Panewise (format 7; this one reads 2)"),
         ("rate_hz: Some(8191.999999999999)", "rate_hz: Some(NaN)", "the sample rate is NaN"),
         ("channel: 1", "channel: 2", "it reads channel 3 of a capture that has 2"),
         ("current: SegmentId(2)", "current: SegmentId(5)", "the segment to read (id 5)"),
@@ -158,6 +173,10 @@ fn what_cannot_be_is_refused_by_name() {
         ("last_pane_id: 7", "last_pane_id: 4294967295", "pane id 4294967295"),
         ("window: \"hann\"", "window: \"no-such\"", "no-such"),
         ("frequency_hz: 124.47", "frequency_hz: inf", "a tone named by hand is inf"),
+        ("frequency_hz: 50.5", "frequency_hz: -50.5", "a refusal is -50.5"),
+        ("frequency_hz: 99.85", "frequency_hz: NaN", "a verdict overruled is NaN"),
+        ("verdict: disputed", "verdict: fine", "fine"),
+        ("fundamental_hz: Some(24.96)", "fundamental_hz: Some(0.0)", "the fundamental pinned is 0"),
         ("max_tones: 17", "max_tones: 99999999", "99999999 tones to search for"),
         ("false_alarm: 0.0001", "false_alarm: 1.5", "false alarm"),
         ("channels: 2", "channels: 3", "2 scales where 3 to 3"),
@@ -170,7 +189,45 @@ fn what_cannot_be_is_refused_by_name() {
         assert!(error.contains(said), "{to}: {error}");
         assert!(!error.contains('\n'), "{error}");
     }
-    assert_eq!(FORMAT, 1);
+    assert_eq!(FORMAT, 2);
+}
+
+#[test]
+fn a_session_of_format_1_is_read_as_it_was() {
+    let shop = Shop::new();
+    let path = saved(&shop);
+    let whole = fs::read_to_string(&path).unwrap();
+    // What format 1 did not have, as it was written then: nothing of it.
+    let mut old = String::new();
+    let mut skip = false;
+    for line in whole.lines() {
+        let is = |what: &str| line.trim_start().starts_with(what);
+        if is("refused: [") || is("overruled: [") {
+            skip = true;
+        }
+        let newer = ["fundamental_hz", "by: ", "reason: ", "frequency_u95_hz", "level_u95_db", "verdict", "overruled"];
+        if !skip && !newer.into_iter().any(is) {
+            old.push_str(&line.replace("format: 2", "format: 1"));
+            old.push('\n');
+        }
+        if skip && line.starts_with("    ],") {
+            skip = false;
+        }
+    }
+    assert!(old.contains("format: 1") && !old.contains("Refusal") && old.contains("tuning"), "{old}");
+    fs::write(&path, old).unwrap();
+    let loaded = load(&path).unwrap();
+    let mut expected = document();
+    (expected.refused, expected.overruled, expected.fundamental_hz) = (vec![], vec![], None);
+    for tone in &mut expected.hand_tones {
+        (tone.by, tone.reason) = (String::new(), String::new());
+    }
+    let capture = expected.capture.clone();
+    assert_eq!(Session { capture, ..loaded.session }, expected);
+    let figures = loaded.figures.unwrap();
+    assert_eq!((figures.tones[0].verdict.clone(), figures.tones[0].frequency_u95_hz), (None, None));
+    // What was never saved has not moved.
+    assert_eq!(figures.moved(&self::figures()), []);
 }
 
 #[test]

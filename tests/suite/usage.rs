@@ -172,7 +172,7 @@ fn bad_input_is_told_in_one_line_that_names_it() {
     fs::create_dir(shop.path("folder.wav")).unwrap();
     fs::create_dir(shop.path("folder.session.ron")).unwrap();
     fs::write(shop.path("garbage.session.ron"), "Session(format: 1, program: 3)").unwrap();
-    fs::write(shop.path("newer.session.ron"), "Session(format: 2, what: [(1, 2)])").unwrap();
+    fs::write(shop.path("newer.session.ron"), "Session(format: 3, what: [(1, 2)])").unwrap();
     for name in ["missing", "empty", "garbage", "folder"] {
         let said = shop.run(&["read", &format!("{name}.wav")]).refused();
         assert!(said.contains(&format!("{name}.wav")), "{said}");
@@ -184,7 +184,7 @@ fn bad_input_is_told_in_one_line_that_names_it() {
         }
     }
     let said = shop.run(&["read", "newer.session.ron"]).refused();
-    assert!(said.contains("was written by a newer Panewise (format 2; this one reads 1)"), "{said}");
+    assert!(said.contains("was written by a newer Panewise (format 3; this one reads 2)"), "{said}");
     let said = shop.run(&["read", "garbage.session.ron"]).refused();
     assert!(said.contains("line:column 1:"), "{said}");
 }

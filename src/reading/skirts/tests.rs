@@ -132,7 +132,7 @@ fn a_tone_that_the_fit_does_not_know_of_is_none() {
     let (n, strong, weak) = (8192, (1000.4, 1.0, 0.3), (1013.2, 5e-3, 1.0));
     let samples: Arc<[f64]> = samples(&[strong, weak], 1e-4, n, 5).into();
     let spectra = Spectra::new(Arc::clone(&samples), RATE_HZ, &windows, &Watch::new()).unwrap();
-    let quest = Quest { removal: Removal::None, false_alarm: 1e-3, max_tones: 10, named: &[] };
+    let quest = Quest { removal: Removal::None, false_alarm: 1e-3, max_tones: 10, named: &[], refused: &[] };
     let mut found = search(&spectra, &quest, &Watch::new()).unwrap();
     assert_eq!(found.tones.len(), 2);
     let gone = found.tones.remove(1);

@@ -93,9 +93,9 @@ impl Field {
                 (None, None) => break,
             };
             if i < below {
-                below -= 1
+                below -= 1;
             } else {
-                above += 1
+                above += 1;
             }
             if without != Some(i) {
                 count += 1;

@@ -119,7 +119,7 @@ impl Series {
 }
 
 fn smallest_divisor(k: u32) -> u32 {
-    (2..).take_while(|d| d * d <= k).find(|d| k.is_multiple_of(*d)).unwrap_or(k)
+    (2..=k.isqrt()).find(|d| k.is_multiple_of(*d)).unwrap_or(k)
 }
 
 impl Found {

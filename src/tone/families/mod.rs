@@ -22,7 +22,7 @@ use harmonic::Series;
 const ALLOWED: f64 = 3e-3;
 
 /// A fit likelier than this by chance says nothing of a single tone.
-const TELLING: f64 = 0.05;
+const TELLING: f64 = 0.02;
 
 /// Families of products are looked for among so many of the strongest tones.
 const N_STRONG: usize = 12;
