@@ -2,7 +2,7 @@
 
 use realfft::num_complex::Complex64;
 
-use super::search::{FoundTone, Noise};
+use super::found::{FoundTone, Noise};
 use super::state::{Disturbance, Lobes};
 use crate::signal::{Cancelled, Watch};
 use crate::window::{Kernel, Window};
@@ -100,7 +100,7 @@ pub fn judge(window: &Window, n: usize, tones: &[FoundTone], noise: Option<&Nois
     let mut worst: Option<(f64, Deciding)> = None;
     let mut merged = None;
     let (mut sum, mut n_read, mut n_unreadable) = (0.0, 0_usize, 0);
-    for (i, tone) in tones.iter().enumerate() {
+    for (i, tone) in tones.iter().enumerate().filter(|(_, tone)| !tone.faint) {
         let power = noise.map_or(0.0, |noise| noise.line_power(tone.nu, judged.lobes.s2));
         let disturbance = Disturbance::under(|nu| judged.relative(nu), &judged.lobes, tones, i, power);
         let strongest = disturbance.strongest;

@@ -3,19 +3,24 @@
 mod advice;
 pub mod families;
 mod fit;
+mod found;
 mod lone;
+mod model;
 mod motion;
+mod residue;
 mod search;
 mod state;
 mod steadiness;
 mod synthesis;
 mod threshold;
+mod track;
 
 pub use advice::{Deciding, WindowAdvice, advise, judge};
-pub use fit::{JointFit, SteadyTone, UnitUncertainty, fit_jointly};
+pub use fit::{JointFit, SteadyTone, UnitUncertainty, fit_jointly, unit_uncertainties};
+pub use found::{FoundTone, NamedTone, Noise, Quest, Search};
 pub use lone::{LoneReading, PaneView};
-pub use motion::{CoursePoint, Motion};
-pub use search::{FoundTone, LEAST_CYCLES, NamedTone, Noise, Quest, Search, search};
+pub use motion::{CoursePoint, Motion, PARTS};
+pub use search::{LEAST_CYCLES, search};
 pub use state::{Disturbance, Lobes, State};
 pub use steadiness::suggest_steady;
 pub use threshold::detection_threshold;

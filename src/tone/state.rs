@@ -2,7 +2,7 @@
 
 use realfft::num_complex::Complex64;
 
-use super::search::FoundTone;
+use super::found::{FoundTone, Search};
 use crate::spectrum::Spectra;
 use crate::units::db;
 
@@ -11,7 +11,9 @@ use crate::units::db;
 pub struct Disturbance {
     /// Whether another tone stands inside the pane's main lobe, not so weak that it could not matter.
     pub crowded: bool,
-    /// What the other tones together do to the level, signed, dB.
+    /// What the other tones together put there, as an amplitude at the first sample.
+    leak: Complex64,
+    /// What they do to the level, signed, dB.
     pub leak_db: f64,
     /// What noise does to the level, one standard uncertainty, dB.
     pub noise_db: f64,
@@ -56,15 +58,31 @@ pub struct Lobes {
 }
 
 impl Disturbance {
-    /// Of tone `of` among `tones`, in pane `pane`, whose mean noise a line there is `noise_power` (as |Y|²; 0 if not
-    /// known).
-    pub fn of(spectra: &Spectra, pane: usize, tones: &[FoundTone], of: usize, noise_power: f64) -> Self {
+    /// Of tone `of` among those found, in pane `pane`; what tones that move leak is that of their paths.
+    pub fn of(spectra: &Spectra, pane: usize, found: &Search, of: usize) -> Self {
         let n = spectra.n_samples();
         let half_width_bins = spectra.windows().get(pane).map_or(0.0, |w| w.main_lobe_half_width_bins(n));
         let sums = spectra.sums(pane);
         let lobes = Lobes { half_width_bins, s1: sums.s1, s2: sums.s2 };
         let top = spectra.kernel_at(pane, 0.0);
-        Self::under(|nu| spectra.kernel_at(pane, nu) / top, &lobes, tones, of, noise_power)
+        let nu = found.tones.get(of).map_or(0.0, |t| t.nu);
+        let noise_power = found.noise.as_ref().map_or(0.0, |noise| noise.line_power(nu, sums.s2));
+        let steady = |nu: f64| spectra.kernel_at(pane, nu) / top;
+        let mut disturbance = Self::under(steady, &lobes, &found.tones, of, noise_power);
+        let Some(tone) = found.tones.get(of) else { return disturbance };
+        let window = spectra.windows().get(pane);
+        let mut change = Complex64::ZERO;
+        for (j, (other, motion)) in found.tones.iter().zip(&found.motions).enumerate() {
+            let (Some(motion), Some(window)) = (motion.as_ref().filter(|_| j != of), window) else { continue };
+            if let Some(seen) = motion.seen_under(window, nu) {
+                change += seen * (2.0 / sums.s1) - other.amplitude * steady(nu - other.nu);
+            }
+        }
+        if change != Complex64::ZERO {
+            disturbance.leak += change;
+            disturbance.leak_db = db((tone.amplitude + disturbance.leak).norm() / tone.amplitude.norm());
+        }
+        disturbance
     }
 
     /// The same under any window: `kernel` gives W(ν)/W(0).
@@ -75,14 +93,22 @@ impl Disturbance {
         of: usize,
         noise_power: f64,
     ) -> Self {
-        let nothing = Self { crowded: false, leak_db: 0.0, noise_db: 0.0, over_floor: 0.0, strongest: None };
+        let nothing = Self {
+            crowded: false,
+            leak: Complex64::ZERO,
+            leak_db: 0.0,
+            noise_db: 0.0,
+            over_floor: 0.0,
+            strongest: None,
+        };
         let Some(tone) = tones.get(of) else { return nothing };
         let own = tone.amplitude.norm();
         let mut leak = Complex64::ZERO;
         let (mut crowded, mut most) = (false, 0.0);
         let mut strongest = None;
         for (i, other) in tones.iter().enumerate() {
-            if i == of {
+            // A faint peak is not counted as a tone.
+            if i == of || other.faint {
                 continue;
             }
             let distance = tone.nu - other.nu;
@@ -99,6 +125,7 @@ impl Disturbance {
         let own_power = (own * lobes.s1 / 2.0).powi(2);
         Self {
             crowded,
+            leak,
             leak_db: db((tone.amplitude + leak).norm() / own),
             // Of the noise |Y|² only the part in phase with the tone moves its level: half the power.
             noise_db: db(1.0 + (noise_power / 2.0 / own_power).sqrt()),

@@ -12,14 +12,14 @@ use crate::spectrum::Dense;
 /// The background and the tones that fit a segment best.
 #[derive(Debug, Clone)]
 pub struct JointFit {
-    n: usize,
-    removal: Removal,
     /// The tones.
     pub tones: Vec<SteadyTone>,
     /// The constant and the slope a sample fitted with them (what was left of the mean or the line).
     pub background: (f64, f64),
     /// Whether the steps died away.
     pub converged: bool,
+    /// Whether they came down to what no reading shows: a thousandth of a line.
+    pub nearly: bool,
 }
 
 /// Standard uncertainties of one tone for noise of unit variance a sample.
@@ -40,6 +40,9 @@ const MOST_STEPS: usize = 20;
 
 /// Longest step of a frequency, bins: a quarter of a line keeps each tone on its own peak.
 const LONGEST_STEP: f64 = 0.25;
+
+/// Frequencies that move less than this have nearly settled, bins.
+const NEARLY: f64 = 1e-3;
 
 /// Frequencies that move less than this have settled, bins.
 const SETTLED: f64 = 1e-9;
@@ -65,26 +68,43 @@ pub fn fit_jointly(
     let mut tones = start.to_vec();
     let mut background = (0.0, 0.0);
     let mut converged = tones.is_empty();
+    let mut nearly = converged;
     for _ in 0..MOST_STEPS {
         watch.check()?;
         let Some(equations) = NormalEquations::of(n, removal, &tones) else { return Ok(None) };
         let step = equations.step(samples, &linear(removal, background, &tones));
         let longest = advance(removal, &mut background, &mut tones, &step, LONGEST_STEP * line);
+        nearly = longest < NEARLY * line;
         if longest < SETTLED * line {
             converged = true;
             break;
         }
     }
-    Ok(Some(JointFit { n, removal, tones, background, converged }))
+    Ok(Some(JointFit { tones, background, converged, nearly }))
 }
 
-impl JointFit {
-    /// Standard uncertainties of each tone for noise of unit variance a sample, from the inverse of the joint normal
-    /// matrix; `None` where two tones cannot be told apart.
-    pub fn unit_uncertainties(&self) -> Option<Vec<UnitUncertainty>> {
-        let covariance = NormalEquations::of(self.n, self.removal, &self.tones)?.covariance();
-        Some(uncertainties(self.n, self.removal, &self.tones, &covariance))
+impl UnitUncertainty {
+    /// The bounds of a lone tone far from 0 Hz and half the rate, of peak amplitude `amplitude` in `n` samples.
+    ///
+    /// # Reference
+    /// Rife and Boorstyn, Single-tone parameter estimation from discrete-time observations, IEEE Trans. Information
+    /// Theory 20(5), 1974, for a real tone (from memory).
+    pub fn lone(n: usize, amplitude: f64) -> Self {
+        let count = n as f64;
+        let lone_amplitude = (2.0 / count).sqrt();
+        let lone_omega = (24.0 / (amplitude * amplitude * count * (count * count - 1.0))).sqrt();
+        Self { amplitude: lone_amplitude, omega: lone_omega, lone_amplitude, lone_omega }
     }
+}
+
+/// Standard uncertainties of each of `tones` for noise of unit variance a sample, from the inverse of the joint normal
+/// matrix of a segment of `n` samples; `None` where two tones cannot be told apart.
+pub fn unit_uncertainties(n: usize, removal: Removal, tones: &[SteadyTone]) -> Option<Vec<UnitUncertainty>> {
+    if tones.is_empty() {
+        return Some(Vec::new());
+    }
+    let covariance = NormalEquations::of(n, removal, tones)?.covariance();
+    Some(uncertainties(n, removal, tones, &covariance))
 }
 
 /// How many columns the background has.
@@ -138,7 +158,6 @@ fn advance(
 
 fn uncertainties(n: usize, removal: Removal, tones: &[SteadyTone], covariance: &DMatrix<f64>) -> Vec<UnitUncertainty> {
     let mut at = n_background(removal);
-    let count = n as f64;
     tones
         .iter()
         .map(|tone| {
@@ -149,12 +168,7 @@ fn uncertainties(n: usize, removal: Removal, tones: &[SteadyTone], covariance: &
                 + y * y * covariance[(at + 1, at + 1)];
             let omega = if tone.held { 0.0 } else { covariance[(at + 2, at + 2)].max(0.0).sqrt() };
             at += if tone.held { 2 } else { 3 };
-            UnitUncertainty {
-                amplitude: variance.max(0.0).sqrt(),
-                omega,
-                lone_amplitude: (2.0 / count).sqrt(),
-                lone_omega: (24.0 / (size * size * count * (count * count - 1.0))).sqrt(),
-            }
+            UnitUncertainty { amplitude: variance.max(0.0).sqrt(), omega, ..UnitUncertainty::lone(n, size) }
         })
         .collect()
 }
@@ -195,7 +209,7 @@ mod tests {
         let n = 1000;
         let dense = Dense::of(&samples(n, &[(100.3, 0.5, 1.0)], 0.0));
         let fit = fit_jointly(&dense, Removal::Mean, &[start(n, 100.2)], &Watch::new()).unwrap().unwrap();
-        let u = fit.unit_uncertainties().unwrap()[0];
+        let u = unit_uncertainties(n, Removal::Mean, &fit.tones).unwrap()[0];
         assert!((u.amplitude / u.lone_amplitude - 1.0).abs() < 0.01);
         assert!((u.omega / u.lone_omega - 1.0).abs() < 0.01);
     }
@@ -207,7 +221,7 @@ mod tests {
         let held = SteadyTone { held: true, ..start(n, 100.0) };
         let fit = fit_jointly(&dense, Removal::None, &[held], &Watch::new()).unwrap().unwrap();
         assert_eq!(fit.tones[0].omega, held.omega);
-        assert_eq!(fit.unit_uncertainties().unwrap()[0].omega, 0.0);
+        assert_eq!(unit_uncertainties(n, Removal::None, &fit.tones).unwrap()[0].omega, 0.0);
     }
 
     #[test]

@@ -4,5 +4,5 @@ mod joint;
 mod normal;
 mod sums;
 
-pub use joint::{JointFit, UnitUncertainty, fit_jointly};
+pub use joint::{JointFit, UnitUncertainty, fit_jointly, unit_uncertainties};
 pub use normal::SteadyTone;

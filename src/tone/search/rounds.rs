@@ -1,0 +1,197 @@
+//! Fitting, looking at what is left, and making something of it, until only noise is left.
+
+use super::super::model::Member;
+use super::super::residue::{Peak, ResidueSpectrum};
+use super::super::track::{Bar, LEAST_APART, Path, explain, may_move};
+use super::{APART, Hunt, Left, MOST_FOUND, SAME_AS_NAMED, mean_amplitude, span};
+use crate::signal::{Cancelled, Watch};
+
+/// Rounds at most.
+const MOST_ROUNDS: usize = 24;
+
+/// A peak nearer than this to a tone asks first whether that tone moves, bins.
+const NEAR: f64 = 4.0;
+
+/// A peak of the residue counts when it stands this much over what the peaks accepted before it in the same round
+/// leak there (an amplitude ratio).
+const OVER_SKIRT: f64 = 2.0;
+
+/// A tone nearer than this to another is not asked whether it moves: its track would hold both, bins.
+const LONE: f64 = 2.5;
+
+/// On the pedestal of a tone that could not be followed a peak must stand so much more over its near surroundings.
+const PEDESTAL_FACTOR: f64 = 1.5;
+
+/// Lines to either side that are the near surroundings of a peak.
+const SURROUNDINGS: f64 = 15.0;
+
+/// Of the threshold of detection, what a tone must keep when all are fitted together.
+const SIGNIFICANT: f64 = 0.5;
+
+impl Hunt<'_> {
+    /// Goes on until the residue holds nothing but noise; what is left then.
+    pub(super) fn rounds(&mut self, watch: &Watch) -> Result<Left, Cancelled> {
+        let mut asked_all = false;
+        let mut round = 0;
+        loop {
+            watch.check()?;
+            watch.report(0.9 * round as f64 / MOST_ROUNDS as f64);
+            self.model.fit(watch)?;
+            let left = self.left();
+            round += 1;
+            let Some(spectrum) = left.spectrum.as_ref().filter(|_| round < MOST_ROUNDS) else { return Ok(left) };
+            let peaks = self.unexplained(spectrum);
+            let mut changed = self.adopt(&peaks, &left.residue, spectrum, watch)?;
+            if !changed && !asked_all {
+                asked_all = true;
+                changed = self.ask_who_moves(&left.residue, spectrum, watch)?;
+            }
+            if !changed {
+                return Ok(left);
+            }
+        }
+    }
+
+    /// Peaks of the residue that are still to be accounted for, strongest first.
+    fn unexplained(&self, spectrum: &ResidueSpectrum) -> Vec<Peak> {
+        let mut peaks = spectrum.peaks(&self.thresholds);
+        peaks.retain(|p| p.is_tone && self.stubborn.iter().all(|s| (s - p.nu).abs() > 1.0));
+        for member in self.model.members.iter().filter(|m| !m.followed) {
+            let reach = NEAR + span(&member.path) / 2.0;
+            let below = member.nu() - reach - spectrum.reach_of_pedestal(member.nu() - reach, -1.0);
+            let above = member.nu() + reach + spectrum.reach_of_pedestal(member.nu() + reach, 1.0);
+            // On the pedestal of a tone that could not be followed only what stands out of the pedestal itself counts.
+            let threshold = PEDESTAL_FACTOR * self.thresholds.least();
+            let top = |p: &Peak| p.over_floor * spectrum.floor().at(p.nu);
+            let stands_out = |p: &Peak| top(p) > threshold * spectrum.near_floor(p.nu, SURROUNDINGS);
+            let inside = |p: &Peak| (below..above).contains(&p.nu);
+            let near = |p: &Peak| (p.nu - member.nu()).abs() < reach;
+            peaks.retain(|p| !inside(p) || (!near(p) && stands_out(p)));
+        }
+        peaks
+    }
+
+    /// Makes something of each peak: a new tone, or another account of the tone beside it. Whether anything changed.
+    fn adopt(
+        &mut self,
+        peaks: &[Peak],
+        residue: &[f64],
+        spectrum: &ResidueSpectrum,
+        watch: &Watch,
+    ) -> Result<bool, Cancelled> {
+        let mut accepted: Vec<Peak> = Vec::new();
+        for peak in peaks {
+            watch.check()?;
+            if self.model.members.len() >= MOST_FOUND {
+                break;
+            }
+            if accepted.iter().any(|a| (a.nu - peak.nu).abs() < APART) {
+                continue;
+            }
+            // Side lobes of the rectangular window fall as 1/(πd).
+            let leak = |a: &Peak| a.amplitude.norm() / (std::f64::consts::PI * (a.nu - peak.nu).abs());
+            if peak.amplitude.norm() < OVER_SKIRT * accepted.iter().map(leak).sum::<f64>() {
+                continue;
+            }
+            accepted.push(*peak);
+            self.account_for(peak, residue, spectrum);
+        }
+        Ok(!accepted.is_empty())
+    }
+
+    fn account_for(&mut self, peak: &Peak, residue: &[f64], spectrum: &ResidueSpectrum) {
+        let distance = |i: &usize| {
+            let member = &self.model.members[*i];
+            ((member.nu() - peak.nu).abs() - span(&member.path) / 2.0).max(0.0)
+        };
+        let members = 0..self.model.members.len();
+        let host = members.min_by(|a, b| distance(a).total_cmp(&distance(b))).filter(|i| distance(i) < NEAR);
+        if host.is_some_and(|i| self.ask(i, residue, spectrum, true)) {
+            return;
+        }
+        let host_moves = host.is_some_and(|i| !self.model.members[i].path.is_steady());
+        if host_moves || self.is_known(peak.nu, LEAST_APART) {
+            // Nothing can be made of it: it is part of how that tone moves.
+            if let Some(member) = host.and_then(|i| self.model.members.get_mut(i)) {
+                member.followed &= member.path.is_steady();
+            }
+            self.stubborn.push(peak.nu);
+            return;
+        }
+        self.model.members.push(Member::found(peak.nu, self.seen_from_middle(peak.nu, peak.amplitude)));
+    }
+
+    /// Asks whether a tone moves or has company; whether its account changed.
+    fn ask(&mut self, i: usize, residue: &[f64], spectrum: &ResidueSpectrum, may_have_company: bool) -> bool {
+        let member = &self.model.members[i];
+        let path = member.path.clone().recentred();
+        let mut track = self.model.grid.track(residue, path.nu);
+        let point_variance = track.point_variance(spectrum.floor().at(member.nu()));
+        if !may_have_company && !may_move(&track, &path, point_variance) {
+            return false;
+        }
+        track.add(&path);
+        let bar = Bar { point_variance, tone: self.thresholds.least(), may_move: !member.held, may_have_company };
+        let account = explain(&track, path.clone(), &bar);
+        let orders = |path: &Path| path.phase.len() + path.level.len();
+        let longer = orders(&account.path) > orders(&path);
+        let company: Vec<_> = account.company.iter().filter(|c| !self.is_known_beside(i, c.nu)).copied().collect();
+        if !longer && company.is_empty() {
+            return false;
+        }
+        let left_over = account.left / (point_variance * track.points.len() as f64);
+        let member = &mut self.model.members[i];
+        if !member.held {
+            let steady = account.path.is_steady();
+            member.path = account.path.recentred();
+            member.left_over = if steady { 1.0 } else { left_over };
+            if steady {
+                member.path = Path::steady(member.path.nu, member.path.middle());
+            }
+        }
+        self.model.members.extend(company.iter().map(|c| Member::found(c.nu, c.middle_amplitude)));
+        true
+    }
+
+    fn is_known_beside(&self, i: usize, nu: f64) -> bool {
+        let mut others = self.model.members.iter().enumerate().filter(|(j, _)| *j != i);
+        others.any(|(_, m)| (m.nu() - nu).abs() < SAME_AS_NAMED)
+    }
+
+    /// Asks every lone steady tone whether it moves by less than the residue shows.
+    fn ask_who_moves(&mut self, residue: &[f64], spectrum: &ResidueSpectrum, watch: &Watch) -> Result<bool, Cancelled> {
+        let mut changed = false;
+        for i in 0..self.model.members.len() {
+            watch.check()?;
+            let member = &self.model.members[i];
+            let lone = self.model.members.iter().filter(|m| (m.nu() - member.nu()).abs() < LONE).count() == 1;
+            if lone && member.path.is_steady() && !member.held {
+                changed |= self.ask(i, residue, spectrum, false);
+            }
+        }
+        Ok(changed)
+    }
+
+    /// Takes tones out again that, all fitted together, do not stand over the noise.
+    pub(super) fn give_up_insignificant(&mut self, mut left: Left, watch: &Watch) -> Result<Left, Cancelled> {
+        for _ in 0..MOST_ROUNDS {
+            watch.check()?;
+            let (Some(spectrum), Some(units)) = (&left.spectrum, self.uncertainties()) else { break };
+            // A lone tone's amplitude over its uncertainty, squared, is twice its power over a line's noise.
+            let power = |i: usize| {
+                let member = &self.model.members[i];
+                let deviation = (spectrum.floor().at(member.nu()) / self.n()).sqrt();
+                0.5 * (mean_amplitude(&member.path) / (units[i].amplitude * deviation)).powi(2)
+            };
+            let weakest = (0..self.model.members.len())
+                .filter(|i| self.model.members[*i].named.is_none())
+                .map(|i| (i, power(i)))
+                .min_by(|a, b| a.1.total_cmp(&b.1));
+            let Some((i, _)) = weakest.filter(|w| w.1 < SIGNIFICANT * self.thresholds.least()) else { break };
+            self.model.members.remove(i);
+            self.model.fit(watch)?;
+            left = self.left();
+        }
+        Ok(left)
+    }
+}
