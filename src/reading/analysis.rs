@@ -294,8 +294,7 @@ fn warnings(segment: &Segment, request: &Request, found: &Search, doubts: Vec<Wa
     let mut warnings = segment.doubts.clone();
     warnings.extend(doubts);
     if !found.settled {
-        let text = "the tones could not be fitted together: frequency and level of a row are those of the sharpest \
-                    pane that reads it clearly";
+        let text = "the tones could not be fitted together to the end: no uncertainty is stated, and levels may be off";
         warnings.push(Warning { code: "not-fitted", text: text.to_owned() });
     }
     if found.noise.is_none() {

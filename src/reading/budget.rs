@@ -3,7 +3,7 @@
 use super::output::BudgetItem;
 use super::{Request, rows};
 use crate::spectrum::Spectra;
-use crate::tone::Search;
+use crate::tone::{PARTS, Search};
 use crate::units::db;
 
 /// The coverage factor of expanded uncertainties.
@@ -21,8 +21,9 @@ pub(super) struct Budget {
 impl Budget {
     /// Of tone `i`; `None` where the tones were not fitted jointly or the segment is too short to tell its noise.
     ///
-    /// `noise` is the lone-tone bound, `neighbours` what the joint covariance adds to it in quadrature. What only the
-    /// user can state stands in the list as not stated.
+    /// `noise` is the lone-tone bound, `neighbours` what the joint covariance adds to it in quadrature, `change` what
+    /// the mean of eight parts of the segment is uncertain by for a tone that was seen to move. What only the user can
+    /// state stands in the list as not stated.
     pub(super) fn of(spectra: &Spectra, request: &Request, found: &Search, i: usize) -> Option<Self> {
         let unit = found.unit_uncertainties.get(i)?;
         let n = spectra.n_samples() as f64;
@@ -41,15 +42,25 @@ impl Budget {
         };
         let missing =
             |item: &str| BudgetItem { item: item.to_owned(), u_amplitude: None, u_frequency_hz: None, stated: false };
+        let change = found.motions.get(i).and_then(Option::as_ref).map_or((0.0, 0.0), |motion| {
+            let parts = (PARTS as f64).sqrt();
+            let factor = request.scale.units_per_full_scale();
+            (motion.scatter_amplitude * factor / parts, motion.scatter_nu * spectra.line_spacing_hz() / parts)
+        });
         let items = vec![
             evaluated("noise", lone),
             evaluated("neighbours", (added(joint.0, lone.0), added(joint.1, lone.1))),
+            evaluated("change", change),
             missing("factor"),
             missing("response"),
             missing("clock"),
         ];
-        let combined = |lone: f64, joint: f64| COVERAGE * lone.max(joint);
-        Some(Self { items, frequency_u95_hz: combined(lone.1, joint.1), amplitude_u95: combined(lone.0, joint.0) })
+        let combined = |lone: f64, joint: f64, change: f64| COVERAGE * lone.max(joint).hypot(change);
+        Some(Self {
+            items,
+            frequency_u95_hz: combined(lone.1, joint.1, change.1),
+            amplitude_u95: combined(lone.0, joint.0, change.0),
+        })
     }
 
     /// The expanded uncertainty of a level, dB, of a tone of peak amplitude `amplitude`.

@@ -12,6 +12,7 @@ mod request;
 mod rows;
 mod skirts;
 mod smallest;
+mod verdict;
 
 pub use analysis::{Analysis, ReadingError, Segment, analyse, analyse_curves, with_windows};
 pub use figures::figures_of;

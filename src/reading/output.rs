@@ -247,7 +247,7 @@ pub struct BudgetItem {
 /// One tone.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct Tone {
-    /// Frequency by the joint fit; where that did not settle, that of the sharpest clear pane.
+    /// Frequency by the joint fit; of a tone that moves the mean over the segment.
     pub frequency_hz: f64,
     /// Its expanded uncertainty, k = 2; `None` where the joint fit did not settle or no floor can be told.
     pub frequency_u95_hz: Option<f64>,
@@ -263,22 +263,22 @@ pub struct Tone {
     pub level_u95_db: Option<f64>,
     /// Cosine phase at the segment's first sample, -π to π; `None` where the joint fit did not settle.
     pub phase_rad: Option<f64>,
-    /// Needs a search of the residue, which this version does not make.
+    /// What it is, by the fit and the standing set of windows.
     pub verdict: Option<Verdict>,
-    /// Goes with the verdict.
+    /// The sentence that goes with the verdict.
     pub why: Option<String>,
     /// An overruled verdict.
     pub overruled: Option<Overruled>,
     /// What the uncertainty is made of; `None` likewise. `noise` is the lone-tone bound, `neighbours` what the joint
     /// covariance adds; what only the user can state is listed as not stated.
     pub budget: Option<Vec<BudgetItem>>,
-    /// One-sided, unit²/Hz at the tone; needs the joint fit's residue.
+    /// One-sided noise density at the tone, unit²/Hz, of what the fit leaves; `None` without a floor.
     pub noise_density: Option<f64>,
-    /// Power over one rectangular line's mean noise; needs the joint fit's residue.
+    /// Power over one rectangular line's mean noise, dB; `None` without a floor.
     pub snr_db: Option<f64>,
-    /// Needs the joint fit.
+    /// Frequency at the segment's end less that at its start; `None` where the tone was not seen to move.
     pub drift_hz: Option<f64>,
-    /// Needs the joint fit.
+    /// Level at the segment's end less that at its start; `None` likewise.
     pub drift_db: Option<f64>,
     /// Frequency and level over the segment, where the tone was seen to move.
     pub course: Option<Vec<CourseFact>>,

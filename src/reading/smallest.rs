@@ -7,8 +7,8 @@ use crate::units::db;
 
 /// How far a line's power must stand over the floor for the search to count it (z).
 pub(super) fn threshold(spectra: &Spectra, request: &Request) -> f64 {
-    let n_lines = spectra.n_samples() / 2 + 1;
-    detection_threshold(n_lines, (Floor::LENGTH.min(n_lines) / 2).max(1), request.tuning.false_alarm)
+    let n_lines = spectra.n_samples() / 2;
+    detection_threshold(n_lines, Floor::longest(n_lines), request.tuning.false_alarm)
 }
 
 /// The peak amplitude, in full scales, of a tone whose power is z times the mean noise power a line.

@@ -48,6 +48,9 @@ pub struct Quest<'a> {
     /// Tones named by hand, kept whatever the search finds; those less than half a cycle from 0 Hz or half the rate are
     /// passed over.
     pub named: &'a [NamedTone],
+    /// Places, in bins, where no tone is to be: none within three quarters of a bin of them is fitted or listed. What is
+    /// named stays.
+    pub refused: &'a [f64],
 }
 
 /// What a search gives.

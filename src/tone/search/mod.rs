@@ -33,7 +33,7 @@ const FIRST_OVER_FLOOR: f64 = 100.0;
 /// skirt, or its path.
 const APART: f64 = 8.0;
 
-/// A tone named by hand within this of a peak is that peak, bins.
+/// A tone named by hand, or a place refused, within this of a peak is that peak, bins.
 const SAME_AS_NAMED: f64 = 0.75;
 
 /// A tone named by hand must stand this far from 0 Hz and half the rate: half a cycle in the segment.
@@ -137,7 +137,7 @@ impl<'a> Hunt<'a> {
                 continue;
             }
             taken.push(nu);
-            if self.is_known(nu, SAME_AS_NAMED + 0.5) {
+            if self.is_known(nu, SAME_AS_NAMED + 0.5) || self.is_refused(nu) {
                 continue;
             }
             let amplitude = look.at(0, nu) * (2.0 / s1);
@@ -149,6 +149,11 @@ impl<'a> Hunt<'a> {
     /// The power |Y|² a line of rounding, which is no noise, under a window with the sum S2.
     fn rounding_power(&self, s2: f64) -> f64 {
         (super::residue::ROUNDING * self.rms).powi(2) * s2
+    }
+
+    /// Whether no tone is to be at a place.
+    fn is_refused(&self, nu: f64) -> bool {
+        self.quest.refused.iter().any(|place| (place - nu).abs() < SAME_AS_NAMED)
     }
 
     /// Whether a tone of the model stands within `reach` of a place.

@@ -135,7 +135,7 @@ impl Hunt<'_> {
     fn faint(&self, spectrum: &ResidueSpectrum) -> Vec<Peak> {
         let mut peaks = spectrum.peaks(&self.thresholds);
         let near = |p: &Peak, m: &Member| (m.nu() - p.nu).abs() < NEAR + span(&m.path);
-        peaks.retain(|p| !p.is_tone && !self.model.members.iter().any(|m| near(p, m)));
+        peaks.retain(|p| !p.is_tone && !self.is_refused(p.nu) && !self.model.members.iter().any(|m| near(p, m)));
         peaks.truncate(MOST_FAINT);
         peaks
     }

@@ -55,7 +55,7 @@ impl Hunt<'_> {
     /// Peaks of the residue that are still to be accounted for, strongest first.
     fn unexplained(&self, spectrum: &ResidueSpectrum) -> Vec<Peak> {
         let mut peaks = spectrum.peaks(&self.thresholds);
-        peaks.retain(|p| p.is_tone && self.stubborn.iter().all(|s| (s - p.nu).abs() > 1.0));
+        peaks.retain(|p| p.is_tone && !self.is_refused(p.nu) && self.stubborn.iter().all(|s| (s - p.nu).abs() > 1.0));
         for member in self.model.members.iter().filter(|m| !m.followed) {
             let reach = NEAR + span(&member.path) / 2.0;
             let below = member.nu() - reach - spectrum.reach_of_pedestal(member.nu() - reach, -1.0);
@@ -135,7 +135,7 @@ impl Hunt<'_> {
         let account = explain(&track, path.clone(), &bar);
         let orders = |path: &Path| path.phase.len() + path.level.len();
         let longer = orders(&account.path) > orders(&path);
-        let company: Vec<_> = account.company.iter().filter(|c| !self.is_known_beside(i, c.nu)).copied().collect();
+        let company: Vec<_> = account.company.iter().filter(|c| !self.is_known_beside(i, c.nu) && !self.is_refused(c.nu)).copied().collect();
         if !longer && company.is_empty() {
             return false;
         }
