@@ -22,6 +22,8 @@ pub(super) struct Member {
     pub(super) held: bool,
     /// Whether its path leaves nothing to be followed; steady tones' always do.
     pub(super) followed: bool,
+    /// How often it was asked whether it moves or has company.
+    pub(super) n_asked: usize,
     /// What its path left over what noise would have, as a power ratio; 1 for steady tones.
     pub(super) left_over: f64,
 }
@@ -30,7 +32,7 @@ impl Member {
     /// A steady tone found.
     pub(super) fn found(nu: f64, middle_amplitude: Complex64) -> Self {
         let path = Path::steady(nu, middle_amplitude);
-        Self { path, named: None, held: false, followed: true, left_over: 1.0 }
+        Self { path, named: None, held: false, followed: true, n_asked: 0, left_over: 1.0 }
     }
 
     /// Its mean frequency, bins.
@@ -55,11 +57,15 @@ pub(super) struct Model<'a> {
     pub(super) settled: bool,
 }
 
-/// Rounds in which steady and moving tones are fitted in turn.
+/// Rounds in which steady and moving tones are fitted in turn, to the end and while the search goes on.
 const ROUNDS: usize = 8;
+const ROUNDS_BETWEEN: usize = 2;
 
-/// Paths that change by less than this part of the noise's power have settled.
-const SETTLED: f64 = 1e-4;
+/// Paths that change by less than this part of what is left of their track have settled.
+const SETTLED: f64 = 1e-3;
+
+/// A path is fitted until a step brings less than this part of a point's share of what is left.
+const ENOUGH: f64 = 1e-3;
 
 /// A tone that a fit moves further than this did not settle, bins.
 const MOST_MOVED: f64 = 1.5;
@@ -102,15 +108,32 @@ impl<'a> Model<'a> {
         }
     }
 
-    /// Fits all of it anew, from where it stands.
+    /// Fits all of it anew, from where it stands, well enough for the search to go on.
     ///
     /// # Errors
     /// [`Cancelled`] where the watch says so.
     pub(super) fn fit(&mut self, watch: &Watch) -> Result<(), Cancelled> {
-        if self.members.iter().all(|m| m.path.is_steady()) {
+        self.fit_in(ROUNDS_BETWEEN, watch)
+    }
+
+    /// As [`Model::fit`], until steady and moving tones no longer change one another.
+    ///
+    /// # Errors
+    /// [`Cancelled`] where the watch says so.
+    pub(super) fn fit_to_the_end(&mut self, watch: &Watch) -> Result<(), Cancelled> {
+        self.fit_in(ROUNDS, watch)
+    }
+
+    /// Whether any of the tones moves.
+    pub(super) fn moves(&self) -> bool {
+        self.members.iter().any(|m| !m.path.is_steady())
+    }
+
+    fn fit_in(&mut self, rounds: usize, watch: &Watch) -> Result<(), Cancelled> {
+        if !self.moves() {
             return self.fit_steady(None, watch);
         }
-        for _ in 0..ROUNDS {
+        for _ in 0..rounds {
             let mut rest = self.without_moving();
             self.fit_steady(Some(&Dense::of(&rest)), watch)?;
             self.take_out_steady(&mut rest);
@@ -130,7 +153,9 @@ impl<'a> Model<'a> {
             let old = member.path.clone();
             let mut track = self.grid.track(rest, old.nu);
             track.add(&old);
-            let account = refit(&track, Account::of(old.clone()));
+            let start = Account::of(old.clone()).weighed(&track);
+            let enough = ENOUGH * start.left / track.points.len() as f64;
+            let account = refit(&track, start, enough);
             changed = changed.max(account.path.distance(&old, &self.grid) / account.left.max(f64::MIN_POSITIVE));
             old.take_out(rest, -1.0);
             account.path.take_out(rest, 1.0);

@@ -39,8 +39,9 @@ const SAME_AS_NAMED: f64 = 0.75;
 /// A tone named by hand must stand this far from 0 Hz and half the rate: half a cycle in the segment.
 pub const LEAST_CYCLES: f64 = 0.5;
 
-/// Tones kept while searching, before the weakest are left out.
-const MOST_FOUND: usize = 400;
+/// So many tones are fitted together whatever is asked for, before the weakest are left out: what they leak is known
+/// then.
+const FITTED: usize = 64;
 
 /// Lines of noise that go with each parameter fitted.
 const LINES_A_PARAMETER: f64 = 0.5;
@@ -54,7 +55,11 @@ pub fn search(spectra: &Spectra, quest: &Quest<'_>, watch: &Watch) -> Result<Sea
     hunt.name_tones();
     hunt.first_look(watch)?;
     let left = hunt.rounds(watch)?;
-    let left = hunt.give_up_insignificant(left, watch)?;
+    let mut left = hunt.give_up_insignificant(left, watch)?;
+    if hunt.model.moves() {
+        hunt.model.fit_to_the_end(watch)?;
+        left = hunt.left();
+    }
     hunt.result(left, watch)
 }
 
@@ -99,6 +104,12 @@ impl<'a> Hunt<'a> {
         amplitude * Complex64::cis(TAU * nu / self.n() * (self.n() - 1.0) / 2.0)
     }
 
+    /// Whether no more tones are taken in.
+    fn is_full(&self) -> bool {
+        let n_found = self.model.members.iter().filter(|m| m.named.is_none()).count();
+        n_found >= self.quest.max_tones.max(FITTED)
+    }
+
     fn name_tones(&mut self) {
         let n = self.n();
         // A column of no amplitude has no frequency: a tone named in silence starts with a trace.
@@ -130,7 +141,7 @@ impl<'a> Hunt<'a> {
         let mut taken: Vec<f64> = Vec::new();
         for k in lines {
             let nu = k as f64;
-            if self.model.members.len() >= MOST_FOUND {
+            if self.is_full() {
                 break;
             }
             if taken.iter().any(|t| (t - nu).abs() < APART) {

@@ -85,10 +85,11 @@ impl Hunt<'_> {
     /// The tones kept, in order.
     pub(super) fn result(mut self, mut left: Left, watch: &Watch) -> Result<Search, Cancelled> {
         let n_found = self.model.members.iter().filter(|m| m.named.is_none()).count();
-        let n_left_out = n_found.saturating_sub(self.quest.max_tones);
+        let n_too_many = n_found.saturating_sub(self.quest.max_tones);
+        let n_not_taken = left.spectrum.as_ref().filter(|_| self.is_full()).map_or(0, |s| self.unexplained(s).len());
         // Looked for before any tone is left out: those would all be faint peaks.
         let faint = left.spectrum.as_ref().map_or_else(Vec::new, |s| self.faint(s));
-        if n_left_out > 0 {
+        if n_too_many > 0 {
             self.leave_out_weakest(left.spectrum.as_ref());
             self.model.fit(watch)?;
             left.residue = self.model.residue();
@@ -110,7 +111,7 @@ impl Hunt<'_> {
             settled,
             unit_uncertainties,
             noise,
-            n_left_out,
+            n_left_out: n_too_many + n_not_taken,
             motions: rows.into_iter().map(|r| r.motion).collect(),
             residue: left.residue.into(),
         })

@@ -3,11 +3,14 @@
 use super::super::model::Member;
 use super::super::residue::{Peak, ResidueSpectrum};
 use super::super::track::{Bar, LEAST_APART, Path, explain, may_move};
-use super::{APART, Hunt, Left, MOST_FOUND, SAME_AS_NAMED, mean_amplitude, span};
+use super::{APART, Hunt, Left, SAME_AS_NAMED, mean_amplitude, span};
 use crate::signal::{Cancelled, Watch};
 
 /// Rounds at most.
-const MOST_ROUNDS: usize = 24;
+const MOST_ROUNDS: usize = 16;
+
+/// A tone is asked so often whether it moves or has company: what is left then is more than can be followed.
+const MOST_ASKED: usize = 4;
 
 /// A peak nearer than this to a tone asks first whether that tone moves, bins.
 const NEAR: f64 = 4.0;
@@ -53,7 +56,7 @@ impl Hunt<'_> {
     }
 
     /// Peaks of the residue that are still to be accounted for, strongest first.
-    fn unexplained(&self, spectrum: &ResidueSpectrum) -> Vec<Peak> {
+    pub(super) fn unexplained(&self, spectrum: &ResidueSpectrum) -> Vec<Peak> {
         let mut peaks = spectrum.peaks(&self.thresholds);
         peaks.retain(|p| p.is_tone && !self.is_refused(p.nu) && self.stubborn.iter().all(|s| (s - p.nu).abs() > 1.0));
         for member in self.model.members.iter().filter(|m| !m.followed) {
@@ -82,7 +85,7 @@ impl Hunt<'_> {
         let mut accepted: Vec<Peak> = Vec::new();
         for peak in peaks {
             watch.check()?;
-            if self.model.members.len() >= MOST_FOUND {
+            if self.is_full() {
                 break;
             }
             if accepted.iter().any(|a| (a.nu - peak.nu).abs() < APART) {
@@ -123,6 +126,10 @@ impl Hunt<'_> {
 
     /// Asks whether a tone moves or has company; whether its account changed.
     fn ask(&mut self, i: usize, residue: &[f64], spectrum: &ResidueSpectrum, may_have_company: bool) -> bool {
+        if self.model.members[i].n_asked >= MOST_ASKED {
+            return false;
+        }
+        self.model.members[i].n_asked += 1;
         let member = &self.model.members[i];
         let path = member.path.clone().recentred();
         let mut track = self.model.grid.track(residue, path.nu);

@@ -58,7 +58,7 @@ impl Account {
     }
 
     /// The account with its sum of squares.
-    pub(super) fn weighed(mut self, track: &Track<'_>) -> Self {
+    pub(crate) fn weighed(mut self, track: &Track<'_>) -> Self {
         self.left = self.remainder(track).iter().map(Complex64::norm_sqr).sum();
         self
     }

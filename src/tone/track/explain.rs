@@ -3,7 +3,7 @@
 use realfft::num_complex::Complex64;
 use std::f64::consts::PI;
 
-use super::fit::fit;
+use super::fit::{fit, fit_for};
 use super::{Account, Company, MOST_ORDER, Path, Track, spectrum};
 
 /// What an account has to bring to be believed.
@@ -30,13 +30,25 @@ const REACH: f64 = 12.0;
 pub(crate) const LEAST_APART: f64 = 1.1;
 
 /// Steady tones beside one, at most.
-const MOST_COMPANY: usize = 8;
+const MOST_COMPANY: usize = 6;
+
+/// Steps by which an account grows, at most.
+const MOST_GROWTH: usize = 12;
+
+/// Steps in which a try shows what it promises, and how many of the tries are followed up.
+const STRIDES: usize = 3;
+const PROMISING: usize = 2;
 
 /// Steps in which a pair is first looked for, bins, and how far out on either side of the carrier.
 const PAIR_STEP: f64 = 0.25;
 const PAIR_REACH: f64 = 3.0;
 
 impl Bar {
+    /// A fit may stop when a step brings less than this of the sum of squares: a tenth of what decides nothing.
+    fn enough(&self) -> f64 {
+        0.05 * self.point_variance
+    }
+
     fn cost(&self, account: &Account) -> f64 {
         let orders = account.path.phase.len().saturating_sub(2) + account.path.level.len().saturating_sub(1);
         2.0 * account.left / self.point_variance
@@ -72,7 +84,7 @@ const FIRST_ORDERS: usize = 5;
 /// is taken. A tone that moves is so never taken for a crowd, nor a pair for one that moves, unless that explains the
 /// track better for its parameters.
 pub(crate) fn explain(track: &Track<'_>, path: Path, bar: &Bar) -> Account {
-    let start = fit(track, Account { path, company: Vec::new(), left: f64::INFINITY });
+    let start = fit(track, Account::of(path), bar.enough());
     let alone = grow(track, start.clone(), bar, bar.may_move, false);
     if !bar.may_have_company {
         return alone;
@@ -84,9 +96,11 @@ pub(crate) fn explain(track: &Track<'_>, path: Path, bar: &Bar) -> Account {
 }
 
 /// Takes the best next step while one pays.
+///
+/// What could come next is fitted in two strides only; the two most promising are fitted to the end.
 fn grow(track: &Track<'_>, start: Account, bar: &Bar, move_on: bool, take_company: bool) -> Account {
     let mut account = start;
-    loop {
+    for _ in 0..MOST_GROWTH {
         let mut tries = Vec::new();
         if move_on {
             tries.extend(longer_paths(track, &account));
@@ -94,12 +108,18 @@ fn grow(track: &Track<'_>, start: Account, bar: &Bar, move_on: bool, take_compan
         if take_company {
             tries.extend(with_company(track, &account));
         }
-        let best = tries.into_iter().min_by(|a, b| bar.cost(a).total_cmp(&bar.cost(b)));
-        match best {
+        let by_cost = |a: &Account, b: &Account| bar.cost(a).total_cmp(&bar.cost(b));
+        let mut tries: Vec<Account> =
+            tries.into_iter().map(|start| fit_for(track, start, bar.enough(), STRIDES)).collect();
+        tries.sort_by(by_cost);
+        tries.truncate(PROMISING);
+        let finished = tries.into_iter().map(|start| fit(track, start, bar.enough())).filter(is_apart);
+        match finished.min_by(by_cost) {
             Some(next) if bar.cost(&next) < bar.cost(&account) => account = next,
-            _ => return account,
+            _ => break,
         }
     }
+    account
 }
 
 /// The account with a path of higher order.
@@ -114,7 +134,7 @@ fn longer_paths(track: &Track<'_>, account: &Account) -> Vec<Account> {
         let mut path = account.path.clone();
         path.phase.resize(phase, 0.0);
         path.level.resize(level, 0.0);
-        tries.push(fit(track, Account { path, ..account.clone() }));
+        tries.push(Account { path, ..account.clone() });
     }
     if account.path.phase.len() == 2 && account.company.is_empty() {
         tries.push(swept(track, account));
@@ -135,7 +155,7 @@ fn swept(track: &Track<'_>, account: &Account) -> Account {
     // u² = (2 P_2 + 1)/3.
     let phase = vec![mean.arg() + PI * sweep / 12.0, PI * offset, PI * sweep / 6.0];
     let level = vec![mean.norm().max(f64::MIN_POSITIVE).ln(), 0.0];
-    fit(track, Account { path: Path { phase, level, ..account.path.clone() }, ..account.clone() })
+    Account { path: Path { phase, level, ..account.path.clone() }, ..account.clone() }
 }
 
 /// The account with one more steady tone.
@@ -156,7 +176,7 @@ fn with_company(track: &Track<'_>, account: &Account) -> Vec<Account> {
     if account.path.is_steady() && account.company.is_empty() {
         starts.extend(pair(track, account));
     }
-    starts.into_iter().map(|start| fit(track, start)).filter(is_apart).collect()
+    starts
 }
 
 /// Whether all steady tones of an account are far enough apart to be told apart.

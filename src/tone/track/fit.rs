@@ -16,13 +16,16 @@ const LONGEST: f64 = 0.8;
 /// The longest change of a company's frequency in one step, bins.
 const LONGEST_NU: f64 = 0.25;
 
-/// A step that brings less than this part of what is left is the last.
-const SETTLED: f64 = 1e-7;
+/// Fits `start` to `track`, keeping its shape, until a step brings less than `enough` of the sum of squares; `start`
+/// itself where that cannot be bettered.
+pub(crate) fn fit(track: &Track<'_>, start: Account, enough: f64) -> Account {
+    fit_for(track, start, enough, MOST_STEPS)
+}
 
-/// Fits `start` to `track`, keeping its shape; `start` itself where that cannot be bettered.
-pub(crate) fn fit(track: &Track<'_>, start: Account) -> Account {
+/// As [`fit`], in so many steps at most.
+pub(super) fn fit_for(track: &Track<'_>, start: Account, enough: f64, most_steps: usize) -> Account {
     let mut account = start.weighed(track);
-    for _ in 0..MOST_STEPS {
+    for _ in 0..most_steps {
         let Some(step) = step(track, &account) else { break };
         let mut part = room(&account, &step);
         let before = account.left;
@@ -37,7 +40,7 @@ pub(crate) fn fit(track: &Track<'_>, start: Account) -> Account {
         }
         let Some(bettered) = next else { break };
         account = bettered;
-        if part >= 1.0 && before - account.left < SETTLED * before {
+        if part >= 1.0 && before - account.left < enough {
             break;
         }
     }

@@ -28,7 +28,7 @@ const BLOCKS: usize = 256;
 const PADDING: usize = 4;
 
 /// The highest order of a path's phase and level.
-pub(super) const MOST_ORDER: usize = 14;
+pub(super) const MOST_ORDER: usize = 10;
 
 /// How the samples of a segment are divided into blocks.
 pub(super) struct Grid {
@@ -37,7 +37,7 @@ pub(super) struct Grid {
     ends: Vec<usize>,
     /// The middle of each block, from -1 at the segment's start to 1 at its end.
     places: Vec<f64>,
-    /// Legendre polynomials P_0 to P_14 at the places.
+    /// Legendre polynomials P_0 to P_10 at the places.
     basis: Vec<Vec<f64>>,
     /// Of the points and zeros behind them.
     transform: Arc<dyn Fft<f64>>,

@@ -19,7 +19,7 @@ pub(crate) struct Path {
     pub(crate) level: Vec<f64>,
 }
 
-/// P_0(u) to P_14(u).
+/// P_0(u) to P_10(u).
 pub(super) fn legendre(u: f64) -> [f64; MOST_ORDER + 1] {
     let mut row = [1.0; MOST_ORDER + 1];
     row[1] = u;
@@ -30,16 +30,16 @@ pub(super) fn legendre(u: f64) -> [f64; MOST_ORDER + 1] {
     row
 }
 
-/// First and second derivatives of P_0 to P_14 at `u`: P'_{p+1} = P'_{p-1} + (2p+1) P_p, and its derivative.
-fn legendre_derivatives(u: f64) -> [[f64; 3]; MOST_ORDER + 1] {
-    let values = legendre(u);
+/// P_p, P'_p and P''_p at `u` for the first `n` orders, at least two: P'_{p+1} = P'_{p-1} + (2p+1) P_p, and its
+/// derivative.
+fn legendre_derivatives(u: f64, n: usize) -> [[f64; 3]; MOST_ORDER + 1] {
     let mut rows = [[0.0; 3]; MOST_ORDER + 1];
-    for (row, value) in rows.iter_mut().zip(values) {
-        row[0] = value;
-    }
-    rows[1][1] = 1.0;
-    for p in 1..MOST_ORDER {
-        let odd = 2.0 * p as f64 + 1.0;
+    rows[0][0] = 1.0;
+    (rows[1][0], rows[1][1]) = (u, 1.0);
+    for p in 1..n.min(MOST_ORDER + 1) - 1 {
+        let order = p as f64;
+        let odd = 2.0 * order + 1.0;
+        rows[p + 1][0] = (odd * u * rows[p][0] - order * rows[p - 1][0]) / (order + 1.0);
         rows[p + 1][1] = rows[p - 1][1] + odd * rows[p][0];
         rows[p + 1][2] = rows[p - 1][2] + odd * rows[p][1];
     }
@@ -81,7 +81,7 @@ impl Path {
 
     /// Frequency at u, bins.
     pub(crate) fn frequency(&self, u: f64) -> f64 {
-        self.nu + sum(&self.phase, legendre_derivatives(u).into_iter().map(|d| d[1])) / PI
+        self.nu + sum(&self.phase, legendre_derivatives(u, self.phase.len().max(2)).iter().map(|d| d[1])) / PI
     }
 
     /// The mean frequency: turns over the segment, bins.
@@ -181,10 +181,11 @@ impl Path {
         let omega = TAU * self.nu / n.max(1) as f64;
         let middle = (n as f64 - 1.0) / 2.0;
         let block = (n / BLOCKS_A_TURN).clamp(1, LONGEST_BLOCK);
+        let orders = self.phase.len().max(self.level.len()).max(2);
         for (b, block_samples) in samples.chunks_mut(block).enumerate() {
             let centre = (b * block) as f64 + (block_samples.len() as f64 - 1.0) / 2.0 - middle;
             let u = centre * step;
-            let rows = legendre_derivatives(u);
+            let rows = legendre_derivatives(u, orders);
             let of = |order: usize| {
                 let re = sum(&self.level, rows.iter().map(|r| r[order]));
                 Complex64::new(re, sum(&self.phase, rows.iter().map(|r| r[order])))
