@@ -36,7 +36,7 @@ pub struct UnitUncertainty {
 }
 
 /// Gauss-Newton steps at most.
-const MOST_STEPS: usize = 20;
+const MOST_STEPS: usize = 60;
 
 /// Longest step of a frequency, bins: a quarter of a line keeps each tone on its own peak.
 const LONGEST_STEP: f64 = 0.25;
