@@ -5,11 +5,12 @@ use std::path::PathBuf;
 use clap::{Args, Parser, Subcommand};
 
 use super::grammar::{
-    SegmentWish, WindowList, count, detector, duration, of_scale, positive, quantity, rate, refusal, removal, segment,
-    tone, windows,
+    SegmentWish, WindowList, count, detector, duration, kind, of_scale, positive, quantity, rate, refusal, removal,
+    segment, tone, windows,
 };
 use crate::session::{HandTone, Refusal};
 use crate::signal::Removal;
+use crate::tone::Kind;
 use crate::units::{Detector, Quantity};
 
 const EXAMPLES: &str = "\
@@ -77,6 +78,9 @@ pub(super) struct ReadWish {
     /// [default: rectangular,hann,hamming,blackman,blackman-harris,flat-top]
     #[arg(long, value_name = "NAME[=PARAM],...", value_parser = windows, help_heading = "What to read")]
     pub windows: Option<WindowList>,
+    /// What the segment holds, in the place of what is found: tones, random or transient
+    #[arg(long, value_name = "KIND", value_parser = kind, help_heading = "What to read")]
+    pub kind: Option<Kind>,
     /// What is taken out of the segment first: none, mean or line [default: mean]
     #[arg(long, value_name = "WHAT", value_parser = removal, help_heading = "What to read")]
     pub remove: Option<Removal>,

@@ -5,6 +5,7 @@ use std::ops::RangeInclusive;
 use super::usage::nearest;
 use crate::session::{HandTone, MAX_PANES, Refusal};
 use crate::signal::{RATES_HZ, Removal, Span};
+use crate::tone::Kind;
 use crate::units::{Detector, Quantity, Scale};
 use crate::window::{Window, WindowError, catalogue};
 
@@ -162,6 +163,10 @@ pub(super) fn quantity(text: &str) -> Result<Quantity, String> {
 
 pub(super) fn detector(text: &str) -> Result<Detector, String> {
     Detector::parse(text).ok_or_else(|| one_of(&Detector::ALL.map(Detector::name)))
+}
+
+pub(super) fn kind(text: &str) -> Result<Kind, String> {
+    Kind::parse(text).ok_or_else(|| one_of(&Kind::ALL.map(Kind::name)))
 }
 
 pub(super) fn removal(text: &str) -> Result<Removal, String> {

@@ -152,6 +152,9 @@ fn change(opened: &mut Opened, wish: &ReadWish) -> Result<(), CliError> {
         Command::MoveSegment(session.current, span).apply(session);
         opened.marked = true;
     }
+    if wish.kind.is_some() {
+        Command::SetKind(wish.kind).apply(session);
+    }
     mark_steady(opened)?;
     decide(&mut opened.session, &wish.search).map_err(usage)
 }

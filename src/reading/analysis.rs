@@ -3,11 +3,11 @@
 use std::sync::Arc;
 
 use super::output::{CaptureFacts, PaneFacts, Reading, ScaleFacts, SegmentFacts, Warning};
-use super::{Request, advice, families, hands, rows, skirts, smallest};
+use super::{Request, advice, families, hands, kind, rows, skirts, smallest};
 use crate::capture::segment_doubts;
-use crate::signal::{Cancelled, RATES_HZ, Removed, SignalError, Source, Span, Stored, Watch, read_channel, remove};
+use crate::signal::{Cancelled, RATES_HZ, Removed, SignalError, Source, Span, Watch, read_channel, remove};
 use crate::spectrum::Spectra;
-use crate::tone::{LEAST_CYCLES, NamedTone, Quest, Search, search, suggest_steady};
+use crate::tone::{LEAST_CYCLES, NamedTone, Quest, Search, search};
 use crate::units::{ScaleError, brief};
 
 /// Why there is no Reading.
@@ -145,20 +145,25 @@ pub fn analyse(
         refused: &refused,
     };
     let found = search(&segment.spectra, &quest, watch)?;
-    doubts.extend(unsteady(&segment, request, watch)?);
+    let judged = kind::judge(&segment, request, &found);
+    doubts.extend(match kind::transient(judged.kind) {
+        Some(warning) => Some(warning),
+        None => kind::unsteady(&segment, request, watch)?,
+    });
     watch.report(0.5);
     let mut tones = rows::tones(&segment.spectra, request, &found, watch)?;
     let fundamental = families::fill(&mut tones, request, spacing_hz);
     hands::overrule(&mut tones, request, spacing_hz);
     let threshold = smallest::threshold(&segment.spectra, request);
     let leaked = skirts::find(&segment.spectra, request, &found, threshold, watch)?;
+    let smallest_tone_db = smallest::typical_db(&segment.spectra, request, &found, threshold);
     let advice = advice::ranked(&segment.spectra, &found, watch)?;
     doubts.extend(advice::no_window_reads_all(&advice));
     let reading = Reading {
         schema: Reading::SCHEMA,
         version: env!("CARGO_PKG_VERSION").to_owned(),
         capture: capture_facts(request),
-        segment: segment_facts(&segment, request, &found, threshold),
+        segment: segment_facts(&segment, request, smallest_tone_db, judged),
         scale: scale_facts(request),
         panes: pane_facts(&segment.spectra, request, &found, &leaked.n),
         advice,
@@ -198,7 +203,12 @@ fn capture_facts(request: &Request) -> CaptureFacts {
     }
 }
 
-fn segment_facts(segment: &Segment, request: &Request, found: &Search, threshold: f64) -> SegmentFacts {
+fn segment_facts(
+    segment: &Segment,
+    request: &Request,
+    smallest_tone_db: Option<f64>,
+    judged: kind::Judged,
+) -> SegmentFacts {
     let removed = segment.removed;
     let factor = request.scale.units_per_full_scale();
     let Span { start, samples } = request.span;
@@ -208,8 +218,9 @@ fn segment_facts(segment: &Segment, request: &Request, found: &Search, threshold
         samples,
         start_s: start as f64 / request.sample_rate_hz,
         duration_s: samples as f64 / request.sample_rate_hz,
-        kind: None,
-        smallest_tone_db: smallest::typical_db(&segment.spectra, request, found, threshold),
+        kind: judged.kind,
+        kind_why: Some(judged.why),
+        smallest_tone_db,
         removed: Removed { offset: removed.offset * factor, slope_per_s: removed.slope_per_s * factor, ..removed },
     }
 }
@@ -268,26 +279,6 @@ fn named_tones(spectra: &Spectra, request: &Request) -> (Vec<NamedTone>, Vec<War
         }
     }
     (named, doubts)
-}
-
-/// A segment is called unsteady when its longest steady stretch is less than this part of it.
-const STEADY_PART: f64 = 0.8;
-
-/// What is to be said of a segment that is not steady: levels of tones are then means over it.
-fn unsteady(segment: &Segment, request: &Request, watch: &Watch) -> Result<Option<Warning>, ReadingError> {
-    let samples = segment.spectra.samples();
-    let source = Stored::new(request.sample_rate_hz, 1, samples.to_vec());
-    let steady = suggest_steady(&source, 0, request.sample_rate_hz, watch)?;
-    let part = steady.map_or(0.0, |s| s.samples as f64 / samples.len() as f64);
-    if part >= STEADY_PART || samples.iter().all(|x| *x == 0.0) {
-        return Ok(None);
-    }
-    let at = |sample: u64| (request.span.start + sample) as f64 / request.sample_rate_hz;
-    let which = steady.map_or("no part of the segment is steady".to_owned(), |s| {
-        format!("only {:.3} s to {:.3} s of the segment is steady", at(s.start), at(s.end()))
-    });
-    let text = format!("{which}: levels are means over the segment, and a tone that moves may show as several");
-    Ok(Some(Warning { code: "not-steady", text }))
 }
 
 fn warnings(segment: &Segment, request: &Request, found: &Search, doubts: Vec<Warning>) -> Vec<Warning> {

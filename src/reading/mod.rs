@@ -6,6 +6,7 @@ mod budget;
 mod families;
 mod figures;
 mod hands;
+mod kind;
 mod output;
 mod parts;
 mod request;

@@ -7,6 +7,7 @@ use serde::{Serialize, Serializer};
 
 pub use crate::session::Verdict;
 use crate::signal::Removed;
+use crate::tone::Kind;
 use crate::units::Detector;
 
 /// One segment, read.
@@ -73,8 +74,10 @@ pub struct SegmentFacts {
     pub start_s: f64,
     /// Duration in seconds.
     pub duration_s: f64,
-    /// `tones`, `random` or `transient`; `None` until that is found.
-    pub kind: Option<String>,
+    /// `tones`, `random` or `transient`, found or set by hand; `None` where the segment is too short or silent.
+    pub kind: Option<Kind>,
+    /// What decides that, in a sentence.
+    pub kind_why: Option<String>,
     /// The level of the smallest tone that the search would see, by the median of the floor over the band, over the
     /// reference; `None` for too short a segment.
     pub smallest_tone_db: Option<f64>,

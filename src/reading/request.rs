@@ -2,6 +2,7 @@
 
 use crate::session::{CaptureRef, HandTone, Overrule, Refusal, Session, Tuning};
 use crate::signal::{Removal, Span};
+use crate::tone::Kind;
 use crate::units::Scale;
 use crate::window::Window;
 
@@ -16,6 +17,8 @@ pub struct Request {
     pub channel: usize,
     /// The segment.
     pub span: Span,
+    /// What the user says the segment holds; `None`: what is found.
+    pub kind: Option<Kind>,
     /// What a sample means.
     pub scale: Scale,
     /// What is taken out first.
@@ -42,6 +45,7 @@ impl Request {
             sample_rate_hz: session.sample_rate_hz(),
             channel: session.channel,
             span: session.current_segment().map_or(Span { start: 0, samples: 0 }, |s| s.span),
+            kind: session.current_segment().and_then(|s| s.kind),
             scale: session.scale(),
             removal: session.removal,
             windows: session.panes.iter().map(|p| p.window.clone()).collect(),

@@ -5,6 +5,7 @@ use crate::reading::{
     PaneReading, Reading, ReadingState, ScaleFacts, SegmentFacts, Tone, Verdict, Warning,
 };
 use crate::signal::{Removal, Removed};
+use crate::tone::Kind;
 use crate::units::Detector;
 
 /// Two panes over 24 s of an invented pump, one tone.
@@ -26,7 +27,8 @@ pub(super) fn reading() -> Reading {
             samples: 196_608,
             start_s: 9.0,
             duration_s: 24.0,
-            kind: None,
+            kind: Some(Kind::Tones),
+            kind_why: Some("1 tone carries 98.0 % of the power".to_owned()),
             smallest_tone_db: Some(41.5),
             removed: Removed { what: Removal::Mean, offset: 0.01, slope_per_s: 0.0 },
         },

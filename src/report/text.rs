@@ -5,6 +5,7 @@ use super::table::{Align, Table};
 use super::{CAUTION, judged};
 use crate::reading::{PaneReading, Reading, Tone};
 use crate::session::Figure;
+use crate::tone::Kind;
 
 /// Decimals of a level in decibels, at most, and where no uncertainty is stated.
 const DB_DECIMALS: (usize, usize) = (5, 3);
@@ -49,7 +50,7 @@ fn head(reading: &Reading) -> String {
     let end_s = segment.start_s + segment.duration_s;
     let spacing = reading.panes.first().map(|p| format!("; lines {} apart", short(p.line_spacing_hz, "Hz")));
     format!(
-        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}: levels in {} and in {}\n{}{}",
+        "{}: {}, {}, {channel}\nSegment {:.3} s to {end_s:.3} s: {} samples, {}{}\n{}{}: levels in {} and in {}\n{}{}",
         plain(&capture.path),
         capture.format,
         short(capture.sample_rate_hz, "Hz"),
@@ -57,6 +58,7 @@ fn head(reading: &Reading) -> String {
         segment.samples,
         short(segment.duration_s, "s"),
         spacing.unwrap_or_default(),
+        kind(reading),
         capital(scale.quantity),
         unit_of_levels(reading),
         scale.reference_label,
@@ -70,6 +72,13 @@ fn covered(reading: &Reading) -> String {
     let missing = judged::not_stated(reading);
     let missing = if missing.is_empty() { String::new() } else { format!("; not stated: {}", missing.join(", ")) };
     format!("U: expanded uncertainty (k = 2){missing}\n")
+}
+
+/// What the segment holds and why: `Kind: tones (15 tones carry 98.0 % of the power)`.
+fn kind(reading: &Reading) -> String {
+    let segment = &reading.segment;
+    let why = segment.kind_why.as_deref().map_or_else(String::new, |why| format!(" ({})", plain(why)));
+    format!("Kind: {}{why}\n", segment.kind.map_or("not told", Kind::name))
 }
 
 fn smallest(level_db: f64) -> String {
@@ -257,6 +266,7 @@ mod tests {
         assert!(text.contains("Acceleration: levels in m/s² r.m.s. and in dB re 1 µm/s² (r.m.s.)"));
         assert!(text.contains("Segment 9.000 s to 33.000 s: 196608 samples, 24 s; lines 0.0416667 Hz apart"));
         assert!(text.contains("(r.m.s.)\nSmallest tone that would be seen: 41.5 dB (median over the band)\nU: "));
+        assert!(text.contains("apart\nKind: tones (1 tone carries 98.0 % of the power)\nAcceleration: "), "{text}");
         assert!(text.contains("Note (assumed-segment): "));
         assert!(text.contains("U: expanded uncertainty (k = 2)\n"));
         assert!(text.contains(

@@ -3,6 +3,7 @@
 use super::SAME_TONE_LINES;
 use super::{HandTone, NamedSegment, Note, Overrule, Pane, PaneId, Refusal, SegmentId, Session, Tuning, ViewAxes};
 use crate::signal::{RATES_HZ, Removal, Span};
+use crate::tone::Kind;
 use crate::units::{Factor, Scale};
 use crate::window::Window;
 
@@ -42,6 +43,8 @@ pub enum Command {
     AddSegment(Span),
     /// Call a segment something else.
     RenameSegment(SegmentId, String),
+    /// Say what the current segment holds, or leave that to be found.
+    SetKind(Option<Kind>),
     /// Take a segment away.
     RemoveSegment(SegmentId),
     /// Read another segment.
@@ -93,6 +96,7 @@ impl Command {
             Self::MoveSegment(..) => "move segment",
             Self::AddSegment(_) => "mark segment",
             Self::RenameSegment(..) => "rename segment",
+            Self::SetKind(_) => "say what the segment holds",
             Self::RemoveSegment(_) => "remove segment",
             Self::ChooseSegment(_) => "choose segment",
             Self::AddPane(_) => "add pane",
@@ -138,6 +142,10 @@ impl Command {
             Self::RenameSegment(id, name) => {
                 let name: String = name.trim().chars().take(NAME_LETTERS).collect();
                 !name.is_empty() && segment(session, id).is_some_and(|s| put(&mut s.name, name))
+            }
+            Self::SetKind(kind) => {
+                let id = session.current;
+                segment(session, id).is_some_and(|s| put(&mut s.kind, kind))
             }
             Self::RemoveSegment(id) => remove_segment(session, id),
             Self::ChooseSegment(id) => segment(session, id).is_some() && put(&mut session.current, id),
@@ -219,7 +227,7 @@ fn add_segment(session: &mut Session, span: Span) -> bool {
     }
     session.last_segment_id = id;
     let span = inside(span, session.capture.frames);
-    session.segments.push(NamedSegment { id: SegmentId(id), name: format!("segment {id}"), span });
+    session.segments.push(NamedSegment { id: SegmentId(id), name: format!("segment {id}"), span, kind: None });
     session.current = SegmentId(id);
     true
 }

@@ -5,6 +5,7 @@ use serde::{Deserialize, Serialize};
 use super::{Overrule, Refusal};
 use crate::capture::Capture;
 use crate::signal::{Removal, Span};
+use crate::tone::Kind;
 use crate::units::Scale;
 use crate::window::Window;
 
@@ -61,6 +62,10 @@ pub struct NamedSegment {
     pub name: String,
     /// The samples marked.
     pub span: Span,
+    /// What the user says it holds, in the place of what is found. Left out of a saved session where nothing is said, so
+    /// that older programs open that.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub kind: Option<Kind>,
 }
 
 /// One window over the segment.
@@ -200,7 +205,7 @@ impl Session {
     /// A new session about a capture: one segment over all of it, the standing set of windows, no scale stated.
     pub fn new(capture: CaptureRef) -> Self {
         let span = Span { start: 0, samples: capture.frames };
-        let whole = NamedSegment { id: SegmentId(1), name: "segment 1".to_owned(), span };
+        let whole = NamedSegment { id: SegmentId(1), name: "segment 1".to_owned(), span, kind: None };
         let windows = DEFAULT_WINDOWS.iter().filter_map(|name| Window::parse(name).ok());
         let panes: Vec<_> =
             (1..).zip(windows).map(|(id, window)| Pane { id: PaneId(id), window, residue: false }).collect();

@@ -2,6 +2,7 @@
 
 use super::*;
 use crate::signal::Span;
+use crate::tone::Kind;
 use crate::units::{Factor, Scale};
 use crate::window::Window;
 
@@ -377,4 +378,22 @@ fn names_and_reasons_are_kept_on_one_line_and_not_endlessly() {
     let reason = format!(" one\ntwo{}", "x".repeat(10_000));
     assert!(Command::RefuseTone(Refusal { reason, ..refusal(50.0) }).apply(&mut session));
     assert!(session.refused[0].reason.starts_with("one two") && session.refused[0].reason.len() == 500);
+}
+
+#[test]
+fn what_a_segment_holds_is_said_by_a_step_for_the_current_segment_and_older_sessions_say_nothing() {
+    let mut session = pump();
+    let mut history = History::new();
+    let first = session.current;
+    assert!(history.apply(&mut session, Command::SetKind(Some(Kind::Transient))));
+    assert_eq!(history.undo_name(), Some("say what the segment holds"));
+    assert!(!history.apply(&mut session, Command::SetKind(Some(Kind::Transient))));
+    assert!(Command::AddSegment(span(0, 100)).apply(&mut session));
+    assert_eq!(session.current_segment().unwrap().kind, None);
+    let text = ron::to_string(&session).unwrap();
+    assert_eq!(text.matches("kind:Some(transient)").count(), 1, "{text}");
+    assert_eq!(ron::from_str::<Session>(&text).unwrap(), session);
+    assert!(Command::ChooseSegment(first).apply(&mut session));
+    assert!(Command::SetKind(None).apply(&mut session));
+    assert!(!ron::to_string(&session).unwrap().contains("kind"));
 }

@@ -36,6 +36,7 @@ mod plot;
 mod preferences;
 mod services;
 mod setup;
+mod setup_kind;
 mod setup_rate;
 mod setup_scale;
 mod setup_search;

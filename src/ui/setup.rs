@@ -8,7 +8,7 @@ use super::typed::{Bounds, number_row};
 use super::view::{Intent, Intents, View};
 use super::widget::{quiet, row, section};
 use super::{advice, figure, list, theme};
-use super::{setup_rate, setup_scale, setup_search};
+use super::{setup_kind, setup_rate, setup_scale, setup_search};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, Note, ViewAxes};
 use crate::signal::{Removal, Span};
 
@@ -93,6 +93,7 @@ fn segments(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Intents) {
         figure::significant(spacing, 4)
     );
     quiet(ui, facts);
+    setup_kind::show(ui, desk, intents);
     removal(ui, desk, intents);
 }
 

@@ -7,6 +7,7 @@
 mod samples;
 
 mod contents;
+mod kinds;
 mod oddities;
 mod readings;
 mod steady;

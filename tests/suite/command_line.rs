@@ -23,7 +23,7 @@ fn the_machine_readable_reading_has_every_key() {
     let reading = shop.run(&[&["read", "pump.wav", "--json"], &SEGMENT[..], &SCALE].concat()).json();
     assert_keys(&reading, "schema version capture segment scale panes advice tones skirts warnings");
     assert_keys(&reading["capture"], "path blake3 sample_rate_hz channels frames format");
-    assert_keys(&reading["segment"], "channel start_sample samples start_s duration_s kind removed");
+    assert_keys(&reading["segment"], "channel start_sample samples start_s duration_s kind kind_why removed");
     assert_keys(&reading["segment"]["removed"], "what offset slope_per_s");
     assert_keys(&reading["scale"], "quantity unit detector reference factor");
     let panes = reading["panes"].as_array().unwrap();
@@ -94,6 +94,10 @@ fn the_second_channel_and_other_options_are_obeyed() {
     );
     // A full-scale sine is 0 dB without a scale; here it is 4 V peak to peak over 0.5 V.
     assert!((volts - first - 20.0 * 8.0_f64.log10()).abs() < 1e-9);
+    assert_eq!(reading["segment"]["kind"], "tones");
+    let (_, reading) = level_db(&["--kind", "random"]);
+    assert_eq!(reading["segment"]["kind"], "random");
+    assert!(reading["segment"]["kind_why"].as_str().unwrap().starts_with("set by hand; found to be tones: "));
     let (_, reading) = level_db(&["--rate", "8192", "--remove", "line", "--max-tones", "1", "--tone", "100,held"]);
     assert_eq!(reading["capture"]["sample_rate_hz"], 8192.0);
     assert_eq!(reading["segment"]["removed"]["what"], "line");

@@ -8,6 +8,7 @@ use panewise::session::{
     SegmentId, Session, SessionError, ToneFigures, Tuning, Verdict, ViewAxes, load, save,
 };
 use panewise::signal::{Removal, Span};
+use panewise::tone::Kind;
 use panewise::units::{Detector, Factor, Quantity, Scale};
 use panewise::window::Window;
 
@@ -36,6 +37,7 @@ fn document() -> Session {
         Command::SetRate(Some(8_191.999_999_999_999)),
         Command::SetRemoval(Removal::Line),
         Command::AddSegment(Span { start: 73_728, samples: 196_608 }),
+        Command::SetKind(Some(Kind::Transient)),
         Command::RenameSegment(SegmentId(2), "steady \"run\" ) , \\ 2\nµ".to_owned()),
         Command::AddPane(Window::parse("hann").unwrap()),
         Command::RemovePane(PaneId(2)),

@@ -142,7 +142,12 @@ impl Hunt<'_> {
         let account = explain(&track, path.clone(), &bar);
         let orders = |path: &Path| path.phase.len() + path.level.len();
         let longer = orders(&account.path) > orders(&path);
-        let company: Vec<_> = account.company.iter().filter(|c| !self.is_known_beside(i, c.nu) && !self.is_refused(c.nu)).copied().collect();
+        let company: Vec<_> = account
+            .company
+            .iter()
+            .filter(|c| !self.is_known_beside(i, c.nu) && !self.is_refused(c.nu))
+            .copied()
+            .collect();
         if !longer && company.is_empty() {
             return false;
         }

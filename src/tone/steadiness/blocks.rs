@@ -6,6 +6,7 @@ use std::sync::Arc;
 
 use realfft::{RealFftPlanner, RealToComplex, num_complex::Complex64};
 
+use super::grow::sum_of_logarithms;
 use crate::signal::{SignalError, Source, Span, Watch};
 
 /// Blocks aimed at in a capture: up to twice as many are made.
@@ -21,6 +22,32 @@ const GUARD: u64 = 2;
 /// signal.
 const DEPTH: f64 = 1e-9;
 
+/// One channel of samples that somebody else holds.
+#[derive(Debug)]
+pub(super) struct Lent<'a>(pub(super) &'a [f64]);
+
+impl Source for Lent<'_> {
+    fn sample_rate_hz(&self) -> f64 {
+        1.0
+    }
+
+    fn n_channels(&self) -> usize {
+        1
+    }
+
+    fn n_frames(&self) -> u64 {
+        self.0.len() as u64
+    }
+
+    fn read_frames(&self, start: u64, out: &mut [f64]) -> Result<(), SignalError> {
+        let end = start.saturating_add(out.len() as u64);
+        let out_of_range = SignalError::OutOfRange { start, end, frames: self.n_frames() };
+        let part = usize::try_from(start).ok().and_then(|from| self.0.get(from..from.checked_add(out.len())?));
+        out.copy_from_slice(part.ok_or(out_of_range)?);
+        Ok(())
+    }
+}
+
 /// What is kept of a channel.
 pub(super) struct Blocks {
     block: u64,
@@ -31,8 +58,8 @@ pub(super) struct Blocks {
     levels: Vec<f64>,
     /// Power of each line, block by block.
     power: Vec<f32>,
-    /// Their natural logarithms.
-    ln_power: Vec<f32>,
+    /// The sum of the natural logarithms of a block's powers.
+    ln_power: Vec<f64>,
 }
 
 impl Blocks {
@@ -84,7 +111,8 @@ impl Blocks {
         for p in &mut self.power {
             *p = p.max(floor);
         }
-        self.ln_power = self.power.iter().map(|p| p.ln()).collect();
+        let lines = self.power.chunks_exact(self.n_lines.max(1));
+        self.ln_power = lines.map(|l| sum_of_logarithms(l.iter().map(|&p| f64::from(p)))).collect();
     }
 
     pub(super) fn len(&self) -> usize {
@@ -99,10 +127,19 @@ impl Blocks {
         &self.levels
     }
 
-    /// Powers and their logarithms of block `b`.
-    pub(super) fn lines(&self, b: usize) -> (&[f32], &[f32]) {
-        let range = b * self.n_lines..(b + 1) * self.n_lines;
-        (self.power.get(range.clone()).unwrap_or_default(), self.ln_power.get(range).unwrap_or_default())
+    /// Samples in a block.
+    pub(super) fn block(&self) -> u64 {
+        self.block
+    }
+
+    /// Powers of block `b`.
+    pub(super) fn lines(&self, b: usize) -> &[f32] {
+        self.power.get(b * self.n_lines..(b + 1) * self.n_lines).unwrap_or_default()
+    }
+
+    /// The sum of the natural logarithms of the powers of block `b`.
+    pub(super) fn ln_power(&self, b: usize) -> f64 {
+        self.ln_power.get(b).copied().unwrap_or(f64::NAN)
     }
 
     /// The r.m.s. of some blocks.
