@@ -71,9 +71,9 @@ fn percent(share: f64) -> String {
 
 /// What is to be said of a transient.
 pub(super) fn transient(kind: Option<Kind>) -> Option<Warning> {
-    let text = "the segment is a transient: a tone's level over all of it falls with every second of rest around it, \
-                so it stands for nothing by itself; mark the event from its start to where it has died, use the \
-                rectangular window, and compare levels only between segments of one length";
+    let text = "a transient: tone levels over the whole segment mean little, since they fall with every second of rest \
+                taken in around it; mark the event alone, use the rectangular window, and compare levels only over \
+                equal lengths";
     (kind == Some(Kind::Transient)).then(|| Warning { code: "transient", text: text.to_owned() })
 }
 

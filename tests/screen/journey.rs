@@ -166,7 +166,7 @@ fn what_is_doubtful_about_the_figures_stands_above_the_table_uncut() {
     screen.menu("Segment", "Mark the whole capture");
     screen.settle();
     let warnings = screen.harness.state().reading().expect("a reading").0.warnings.clone();
-    assert!(warnings.iter().any(|w| w.code == "not-steady"), "{warnings:?}");
+    assert!(warnings.iter().any(|w| w.code == "transient"), "{warnings:?}");
     let head = screen.harness.get_by_label("frequency, Hz").rect();
     for warning in warnings {
         let line = screen.harness.get_by_label(&warning.text).rect();
