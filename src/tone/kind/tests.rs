@@ -15,7 +15,7 @@ fn noise(n: usize, sigma: f64, seed: u64) -> Vec<f64> {
 
 fn grounds(samples: &[f64]) -> Grounds {
     let spectra = Spectra::new(samples.into(), 1000.0, &[], &Watch::new()).unwrap();
-    let quest = Quest { removal: Removal::Mean, false_alarm: 1e-3, max_tones: 200, named: &[] };
+    let quest = Quest { removal: Removal::Mean, false_alarm: 1e-3, max_tones: 200, named: &[], refused: &[] };
     kind_of(samples, &search(&spectra, &quest, &Watch::new()).unwrap())
 }
 
