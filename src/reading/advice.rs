@@ -3,7 +3,7 @@
 use super::output::{AdviceLine, Warning};
 use crate::signal::{Cancelled, Watch};
 use crate::spectrum::Spectra;
-use crate::tone::{Deciding, Search, WindowAdvice, advise, judge};
+use crate::tone::{Deciding, Known, Search, WindowAdvice, advise, judge};
 use crate::window::{Window, catalogue};
 
 /// Windows that are not for steady tones, or are whatever the user makes of them.
@@ -17,13 +17,17 @@ pub(super) fn ranked(spectra: &Spectra, found: &Search, watch: &Watch) -> Result
     }
     let entries = catalogue().iter().filter(|e| !NOT_RANKED.contains(&e.name));
     let windows: Vec<Window> = entries.filter_map(|e| Window::parse(e.name).ok()).collect();
-    let ranked = advise(&windows, spectra.n_samples(), &found.tones, found.noise.as_ref(), watch)?;
+    let ranked = advise(&windows, spectra.n_samples(), &found.tones, known(found), watch)?;
     Ok(ranked.iter().map(|advice| line(spectra, found, advice)).collect())
 }
 
 /// The largest error to expect of a pane; `None` where some tone cannot be read in it, or the tones were not fitted.
 pub(super) fn expected_worst_error_db(spectra: &Spectra, found: &Search, window: &Window) -> Option<f64> {
-    judge(window, spectra.n_samples(), &found.tones, found.noise.as_ref()).filter(|_| found.settled)?.worst_db
+    judge(window, spectra.n_samples(), &found.tones, known(found)).filter(|_| found.settled)?.worst_db
+}
+
+fn known(found: &Search) -> Known<'_> {
+    Known { noise: found.noise.as_ref(), units: &found.unit_uncertainties }
 }
 
 /// Says so where no window of the catalogue reads all tones.

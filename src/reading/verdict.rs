@@ -1,6 +1,7 @@
 //! The verdict on a tone, and the sentence why: from the fit and the standing set of windows, whatever panes are open.
 
 use super::output::{PaneReading, ReadingState, Tone, Verdict};
+use crate::spectrum::weighted_line;
 use crate::tone::{Motion, Search};
 use crate::units::db;
 use crate::window::Window;
@@ -19,6 +20,9 @@ const APART: f64 = 3.5;
 
 /// Differences under this do not matter to anybody, dB.
 const NO_MATTER_DB: f64 = 0.01;
+
+/// Noise leaves so many times its mean power in a line once in a hundred thousand.
+const LEFT_OVER: f64 = 11.5;
 
 /// Two tones this far apart are no longer crowded by the fit, lines.
 const PARTED_LINES: f64 = 2.0;
@@ -153,7 +157,7 @@ impl Judged<'_> {
         };
         let clear = self.standing.iter().filter(|r| r.state == ReadingState::Clear);
         let worst = clear.max_by(|a, b| off(a).total_cmp(&off(b)))?;
-        if off(worst) <= 0.0 {
+        if off(worst) <= 0.0 || !self.leaves_more_than_noise(worst) {
             return None;
         }
         Some(format!(
@@ -162,6 +166,18 @@ impl Judged<'_> {
             worst.window,
             worst.level_db - self.row.level_db
         ))
+    }
+
+    /// Whether what the fit leaves at the tone, under the reading's window, is more than noise: whatever the other tones
+    /// leak there is in the fit, and explains no more.
+    fn leaves_more_than_noise(&self, reading: &PaneReading) -> bool {
+        let (Ok(window), Some(noise)) = (Window::parse(&reading.window), &self.found.noise) else { return true };
+        let tone = &self.found.tones[self.i];
+        let n = self.found.residue.len();
+        let sums = window.sums(n);
+        let left = weighted_line(&self.found.residue, &window.samples(n), tone.nu);
+        let level = db(1.0 + 2.0 * left.norm() / sums.s1 / tone.amplitude.norm());
+        left.norm_sqr() > LEFT_OVER * noise.line_power(tone.nu, sums.s2) && level > NO_MATTER_DB
     }
 
     fn holds(&self) -> String {

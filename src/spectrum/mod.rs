@@ -15,4 +15,4 @@ pub use floor::Floor;
 pub use outside::{Stretch, joined};
 pub use panes::{cosine_pane_powers, sampled_pane_power};
 pub use spectra::{Curve, LEAST_DB, Spectra};
-pub use transform::{Transform, transform, transform_padded};
+pub use transform::{Transform, transform, transform_padded, weighted_line};

@@ -97,6 +97,19 @@ pub(super) fn transform_in_place(samples: &mut [f64]) -> Transform {
     Transform { n, padding: 1, lines }
 }
 
+/// Σ_n w\[n\] x\[n\] e^{-j2πνn/N} at one ν, in a pass over the samples; `weights` w are as many as the samples.
+pub fn weighted_line(samples: &[f64], weights: &[f64], nu: f64) -> Complex64 {
+    const BLOCK: usize = 64;
+    let omega = std::f64::consts::TAU * nu / samples.len().max(1) as f64;
+    let turns: Vec<Complex64> = (0..BLOCK).map(|k| Complex64::cis(-omega * k as f64)).collect();
+    let blocks = samples.chunks(BLOCK).zip(weights.chunks(BLOCK)).enumerate();
+    let block = |(b, (x, w)): (usize, (&[f64], &[f64]))| {
+        let sum: Complex64 = x.iter().zip(w).zip(&turns).map(|((x, w), turn)| turn * (x * w)).sum();
+        sum * Complex64::cis(-(omega * (b * BLOCK) as f64).rem_euclid(std::f64::consts::TAU))
+    };
+    blocks.map(block).sum()
+}
+
 /// How many plans are kept. A dragged edge asks for a new length at every step; each plan holds twiddle factors of
 /// about the segment's size, so all of them cannot be kept.
 const KEPT_PLANS: usize = 4;

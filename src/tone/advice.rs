@@ -2,9 +2,11 @@
 
 use realfft::num_complex::Complex64;
 
+use super::fit::UnitUncertainty;
 use super::found::{FoundTone, Noise};
 use super::state::{Disturbance, Lobes};
 use crate::signal::{Cancelled, Watch};
+use crate::units::db;
 use crate::window::{Kernel, Window};
 
 /// What a window would make of the tones of a segment.
@@ -77,13 +79,13 @@ pub fn advise(
     windows: &[Window],
     n: usize,
     tones: &[FoundTone],
-    noise: Option<&Noise>,
+    known: Known<'_>,
     watch: &Watch,
 ) -> Result<Vec<WindowAdvice>, Cancelled> {
     let mut ranked = Vec::with_capacity(windows.len());
     for window in windows {
         watch.check()?;
-        ranked.extend(judge(window, n, tones, noise));
+        ranked.extend(judge(window, n, tones, known));
     }
     ranked.sort_by(|a, b| {
         let worst = |w: &WindowAdvice| w.worst_db.unwrap_or(f64::INFINITY);
@@ -94,14 +96,35 @@ pub fn advise(
     Ok(ranked)
 }
 
+/// What is known beside the tones themselves.
+#[derive(Debug, Clone, Copy, Default)]
+pub struct Known<'a> {
+    /// The noise; none without a floor.
+    pub noise: Option<&'a Noise>,
+    /// What noise of unit variance does to each tone; none where they were not fitted.
+    pub units: &'a [UnitUncertainty],
+}
+
+impl Known<'_> {
+    /// How far the place of tone `i` is uncertain, bins.
+    fn place(&self, i: usize, nu: f64, n: f64) -> f64 {
+        let unit = self.units.get(i).map_or(0.0, |u| u.omega);
+        unit * self.noise.map_or(0.0, |noise| noise.sample_deviation(nu, n)) * n / std::f64::consts::TAU
+    }
+}
+
 /// What one window would make of the tones; `None` where there are none.
-pub fn judge(window: &Window, n: usize, tones: &[FoundTone], noise: Option<&Noise>) -> Option<WindowAdvice> {
+///
+/// The expected error of a level is that by leak and noise together, √(leak² + noise²): the leak as the root of its mean
+/// square over all phases, since those are as little known as the noise, and over the places within the tone's
+/// uncertainty, so that no null of a kernel that happens to lie at the estimate counts.
+pub fn judge(window: &Window, n: usize, tones: &[FoundTone], known: Known<'_>) -> Option<WindowAdvice> {
     let judged = Judged::of(window, n);
     let mut worst: Option<(f64, Deciding)> = None;
     let mut merged = None;
     let (mut sum, mut n_read, mut n_unreadable) = (0.0, 0_usize, 0);
     for (i, tone) in tones.iter().enumerate().filter(|(_, tone)| !tone.faint) {
-        let power = noise.map_or(0.0, |noise| noise.line_power(tone.nu, judged.lobes.s2));
+        let power = known.noise.map_or(0.0, |noise| noise.line_power(tone.nu, judged.lobes.s2));
         let disturbance = Disturbance::under(|nu| judged.relative(nu), &judged.lobes, tones, i, power);
         let strongest = disturbance.strongest;
         if disturbance.crowded {
@@ -109,11 +132,12 @@ pub fn judge(window: &Window, n: usize, tones: &[FoundTone], noise: Option<&Nois
             merged = merged.or(strongest.map(|j| Deciding::Merges(i.min(j), i.max(j))));
             continue;
         }
-        let error = disturbance.leak_db.hypot(disturbance.noise_db);
+        let leak_db = judged.expected_leak_db(tones, i, known.place(i, tone.nu, n as f64));
+        let error = leak_db.hypot(disturbance.noise_db);
         sum += error;
         n_read += 1;
         if worst.is_none_or(|(w, _)| error > w) {
-            let by_leak = disturbance.leak_db.abs() > disturbance.noise_db;
+            let by_leak = leak_db > disturbance.noise_db;
             let deciding = strongest.filter(|_| by_leak).map_or(Deciding::Noise(i), |j| Deciding::Skirt(i, j));
             worst = Some((error, deciding));
         }
@@ -128,6 +152,29 @@ pub fn judge(window: &Window, n: usize, tones: &[FoundTone], noise: Option<&Nois
     })
 }
 
+/// The three places, in standard uncertainties, and their weights at which a mean over a normal law is taken (Gauss and
+/// Hermite's rule of third order; common practice).
+const PLACES: [(f64, f64); 3] =
+    [(0.0, 2.0 / 3.0), (1.732_050_807_568_877_2, 1.0 / 6.0), (-1.732_050_807_568_877_2, 1.0 / 6.0)];
+
+impl Judged {
+    /// The leak on tone `i` to expect, dB, where its place is uncertain by `u` bins.
+    fn expected_leak_db(&self, tones: &[FoundTone], i: usize, u: f64) -> f64 {
+        let Some(tone) = tones.get(i) else { return 0.0 };
+        let others = tones.iter().enumerate().filter(|(j, t)| *j != i && !t.faint);
+        let leak = |(_, other): (usize, &FoundTone)| {
+            let at = |shift: f64| {
+                let nu = tone.nu + shift * u;
+                self.relative(nu - other.nu).norm_sqr() + self.relative(nu + other.nu).norm_sqr()
+            };
+            let mean: f64 = PLACES.iter().map(|(shift, weight)| weight * at(*shift)).sum();
+            other.amplitude.norm_sqr() * mean
+        };
+        // Of a leak at a random phase half the power moves the level.
+        db(1.0 + (others.map(leak).sum::<f64>() / 2.0).sqrt() / tone.amplitude.norm())
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -139,7 +186,7 @@ mod tests {
     fn rank(tones: &[FoundTone]) -> Vec<WindowAdvice> {
         let windows = ["rectangular", "hann", "blackman-harris", "flat-top", "kaiser=8"];
         let windows: Vec<Window> = windows.iter().map(|w| Window::parse(w).unwrap()).collect();
-        advise(&windows, 100_000, tones, None, &Watch::new()).unwrap()
+        advise(&windows, 100_000, tones, Known::default(), &Watch::new()).unwrap()
     }
 
     fn of<'a>(ranked: &'a [WindowAdvice], name: &str) -> &'a WindowAdvice {

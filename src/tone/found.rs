@@ -48,8 +48,8 @@ pub struct Quest<'a> {
     /// Tones named by hand, kept whatever the search finds; those less than half a cycle from 0 Hz or half the rate are
     /// passed over.
     pub named: &'a [NamedTone],
-    /// Places, in bins, where no tone is to be: none within three quarters of a bin of them is fitted or listed. What is
-    /// named stays.
+    /// Places, in bins, where no tone is to be listed, within three quarters of a bin. What stands there is fitted all the
+    /// same, so that it spoils no other tone; a tone named there is listed.
     pub refused: &'a [f64],
 }
 

@@ -16,7 +16,7 @@ mod synthesis;
 mod threshold;
 mod track;
 
-pub use advice::{Deciding, WindowAdvice, advise, judge};
+pub use advice::{Deciding, Known, WindowAdvice, advise, judge};
 pub use fit::{JointFit, SteadyTone, UnitUncertainty, fit_jointly, unit_uncertainties};
 pub use found::{FoundTone, NamedTone, Noise, Quest, Search};
 pub use kind::{Decay, Grounds, Kind, kind_of};

@@ -148,7 +148,7 @@ impl<'a> Hunt<'a> {
                 continue;
             }
             taken.push(nu);
-            if self.is_known(nu, SAME_AS_NAMED + 0.5) || self.is_refused(nu) {
+            if self.is_known(nu, SAME_AS_NAMED + 0.5) {
                 continue;
             }
             let amplitude = look.at(0, nu) * (2.0 / s1);
@@ -162,7 +162,7 @@ impl<'a> Hunt<'a> {
         (super::residue::ROUNDING * self.rms).powi(2) * s2
     }
 
-    /// Whether no tone is to be at a place.
+    /// Whether no tone is to be listed at a place.
     fn is_refused(&self, nu: f64) -> bool {
         self.quest.refused.iter().any(|place| (place - nu).abs() < SAME_AS_NAMED)
     }

@@ -98,8 +98,10 @@ impl Hunt<'_> {
         let settled = self.model.settled && units.is_some();
         let noise = left.spectrum.map(|s| Noise::new(s.into_floor(), self.n()));
         let unit = |i: usize| units.as_ref().and_then(|u| u.get(i).copied());
-        let mut rows: Vec<Row> =
-            self.model.members.iter().enumerate().map(|(i, member)| self.row(member, unit(i))).collect();
+        // What stands at a refused place is fitted, so that it spoils no other, and not listed.
+        let listed = |m: &&(usize, &Member)| m.1.named.is_some() || !self.is_refused(m.1.nu());
+        let members: Vec<(usize, &Member)> = self.model.members.iter().enumerate().collect();
+        let mut rows: Vec<Row> = members.iter().filter(listed).map(|(i, member)| self.row(member, unit(*i))).collect();
         rows.extend(faint.iter().map(|p| self.faint_row(p)));
         rows.sort_by(|a, b| a.tone.nu.total_cmp(&b.tone.nu));
         for row in &mut rows {

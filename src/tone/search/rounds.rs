@@ -22,6 +22,9 @@ const OVER_SKIRT: f64 = 2.0;
 /// A tone nearer than this to another is not asked whether it moves: its track would hold both, bins.
 const LONE: f64 = 2.5;
 
+/// Nor is one nearer than this to 0 Hz or half the rate: its own image would be in its track, bins.
+const FROM_ENDS: f64 = 8.0;
+
 /// On the pedestal of a tone that could not be followed a peak must stand so much more over its near surroundings.
 const PEDESTAL_FACTOR: f64 = 1.5;
 
@@ -43,8 +46,8 @@ impl Hunt<'_> {
             let left = self.left();
             round += 1;
             let Some(spectrum) = left.spectrum.as_ref().filter(|_| round < MOST_ROUNDS) else { return Ok(left) };
-            let peaks = self.unexplained(spectrum);
-            let mut changed = self.adopt(&peaks, &left.residue, spectrum, watch)?;
+            let (peaks, hopeless) = self.peaks(spectrum);
+            let mut changed = self.adopt(&peaks, &hopeless, &left.residue, spectrum, watch)?;
             if !changed && !asked_all {
                 asked_all = true;
                 changed = self.ask_who_moves(&left.residue, spectrum, watch)?;
@@ -57,8 +60,15 @@ impl Hunt<'_> {
 
     /// Peaks of the residue that are still to be accounted for, strongest first.
     pub(super) fn unexplained(&self, spectrum: &ResidueSpectrum) -> Vec<Peak> {
+        self.peaks(spectrum).0
+    }
+
+    /// The same, and those that nothing can be made of: what they leak is no tone either.
+    fn peaks(&self, spectrum: &ResidueSpectrum) -> (Vec<Peak>, Vec<Peak>) {
         let mut peaks = spectrum.peaks(&self.thresholds);
-        peaks.retain(|p| p.is_tone && !self.is_refused(p.nu) && self.stubborn.iter().all(|s| (s - p.nu).abs() > 1.0));
+        peaks.retain(|p| p.is_tone);
+        let all = peaks.clone();
+        peaks.retain(|p| self.stubborn.iter().all(|s| (s - p.nu).abs() > 1.0));
         for member in self.model.members.iter().filter(|m| !m.followed) {
             let reach = NEAR + span(&member.path) / 2.0;
             let below = member.nu() - reach - spectrum.reach_of_pedestal(member.nu() - reach, -1.0);
@@ -71,13 +81,15 @@ impl Hunt<'_> {
             let near = |p: &Peak| (p.nu - member.nu()).abs() < reach;
             peaks.retain(|p| !inside(p) || (!near(p) && stands_out(p)));
         }
-        peaks
+        let hopeless = all.into_iter().filter(|p| !peaks.contains(p)).collect();
+        (peaks, hopeless)
     }
 
     /// Makes something of each peak: a new tone, or another account of the tone beside it. Whether anything changed.
     fn adopt(
         &mut self,
         peaks: &[Peak],
+        hopeless: &[Peak],
         residue: &[f64],
         spectrum: &ResidueSpectrum,
         watch: &Watch,
@@ -93,24 +105,31 @@ impl Hunt<'_> {
             }
             // Side lobes of the rectangular window fall as 1/(πd).
             let leak = |a: &Peak| a.amplitude.norm() / (std::f64::consts::PI * (a.nu - peak.nu).abs());
-            if peak.amplitude.norm() < OVER_SKIRT * accepted.iter().map(leak).sum::<f64>() {
+            let stronger = hopeless.iter().filter(|h| h.amplitude.norm() > peak.amplitude.norm());
+            let leaked: f64 = accepted.iter().chain(stronger).map(leak).sum();
+            if peak.amplitude.norm() < OVER_SKIRT * leaked {
                 continue;
             }
             accepted.push(*peak);
-            self.account_for(peak, residue, spectrum);
+            if let Some(host) = self.account_for(peak, residue, spectrum) {
+                // Its remains were those of another account, and may reach far: the ends of a path are abrupt.
+                accepted.push(Peak { amplitude: host.path.middle(), nu: host.nu(), ..*peak });
+            }
         }
         Ok(!accepted.is_empty())
     }
 
-    fn account_for(&mut self, peak: &Peak, residue: &[f64], spectrum: &ResidueSpectrum) {
+    /// Makes something of one peak; the tone beside it as it was, where that had to be asked.
+    fn account_for(&mut self, peak: &Peak, residue: &[f64], spectrum: &ResidueSpectrum) -> Option<Member> {
         let distance = |i: &usize| {
             let member = &self.model.members[*i];
             ((member.nu() - peak.nu).abs() - span(&member.path) / 2.0).max(0.0)
         };
         let members = 0..self.model.members.len();
         let host = members.min_by(|a, b| distance(a).total_cmp(&distance(b))).filter(|i| distance(i) < NEAR);
+        let before = host.and_then(|i| self.model.members.get(i).cloned());
         if host.is_some_and(|i| self.ask(i, residue, spectrum, true)) {
-            return;
+            return before;
         }
         let host_moves = host.is_some_and(|i| !self.model.members[i].path.is_steady());
         if host_moves || self.is_known(peak.nu, LEAST_APART) {
@@ -119,9 +138,10 @@ impl Hunt<'_> {
                 member.followed &= member.path.is_steady();
             }
             self.stubborn.push(peak.nu);
-            return;
+            return before;
         }
         self.model.members.push(Member::found(peak.nu, self.seen_from_middle(peak.nu, peak.amplitude)));
+        None
     }
 
     /// Asks whether a tone moves or has company; whether its account changed.
@@ -133,21 +153,20 @@ impl Hunt<'_> {
         let member = &self.model.members[i];
         let path = member.path.clone().recentred();
         let mut track = self.model.grid.track(residue, path.nu);
-        let point_variance = track.point_variance(spectrum.floor().at(member.nu()));
+        // Where one tone's remains cover the whole band, the floor is theirs; the track itself then holds less.
+        let spread = track.points.iter().map(|z| z.norm_sqr()).sum::<f64>() / track.points.len().max(1) as f64;
+        let rounding = track.point_variance(self.rounding_power(self.n()));
+        let point_variance = track.point_variance(spectrum.floor().at(member.nu())).min(spread).max(rounding);
         if !may_have_company && !may_move(&track, &path, point_variance) {
             return false;
         }
         track.add(&path);
-        let bar = Bar { point_variance, tone: self.thresholds.least(), may_move: !member.held, may_have_company };
+        let bar =
+            Bar { point_variance, rounding, tone: self.thresholds.least(), may_move: !member.held, may_have_company };
         let account = explain(&track, path.clone(), &bar);
         let orders = |path: &Path| path.phase.len() + path.level.len();
         let longer = orders(&account.path) > orders(&path);
-        let company: Vec<_> = account
-            .company
-            .iter()
-            .filter(|c| !self.is_known_beside(i, c.nu) && !self.is_refused(c.nu))
-            .copied()
-            .collect();
+        let company: Vec<_> = account.company.iter().filter(|c| !self.is_known_beside(i, c.nu)).copied().collect();
         if !longer && company.is_empty() {
             return false;
         }
@@ -177,7 +196,8 @@ impl Hunt<'_> {
             watch.check()?;
             let member = &self.model.members[i];
             let lone = self.model.members.iter().filter(|m| (m.nu() - member.nu()).abs() < LONE).count() == 1;
-            if lone && member.path.is_steady() && !member.held {
+            let open = member.nu().min(self.n() / 2.0 - member.nu()) > FROM_ENDS;
+            if lone && open && member.path.is_steady() && !member.held {
                 changed |= self.ask(i, residue, spectrum, false);
             }
         }
@@ -188,22 +208,45 @@ impl Hunt<'_> {
     pub(super) fn give_up_insignificant(&mut self, mut left: Left, watch: &Watch) -> Result<Left, Cancelled> {
         for _ in 0..MOST_ROUNDS {
             watch.check()?;
-            let (Some(spectrum), Some(units)) = (&left.spectrum, self.uncertainties()) else { break };
-            // A lone tone's amplitude over its uncertainty, squared, is twice its power over a line's noise.
-            let power = |i: usize| {
-                let member = &self.model.members[i];
-                let deviation = (spectrum.floor().at(member.nu()) / self.n()).sqrt();
-                0.5 * (mean_amplitude(&member.path) / (units[i].amplitude * deviation)).powi(2)
-            };
-            let weakest = (0..self.model.members.len())
-                .filter(|i| self.model.members[*i].named.is_none())
-                .map(|i| (i, power(i)))
-                .min_by(|a, b| a.1.total_cmp(&b.1));
-            let Some((i, _)) = weakest.filter(|w| w.1 < SIGNIFICANT * self.thresholds.least()) else { break };
-            self.model.members.remove(i);
+            let Some(weak) = left.spectrum.as_ref().and_then(|spectrum| self.insignificant(spectrum)) else { break };
+            if weak.is_empty() {
+                break;
+            }
+            let mut at = 0;
+            self.model.members.retain(|_| {
+                at += 1;
+                !weak.contains(&(at - 1))
+            });
             self.model.fit(watch)?;
             left = self.left();
         }
         Ok(left)
+    }
+
+    /// The tones that do not stand over the noise; of those that stand close together only the weakest, since the others
+    /// may rise without it.
+    fn insignificant(&self, spectrum: &ResidueSpectrum) -> Option<Vec<usize>> {
+        let units = self.uncertainties()?;
+        // A lone tone's amplitude over its uncertainty, squared, is twice its power over a line's noise.
+        let power = |i: usize| {
+            let member = &self.model.members[i];
+            let deviation = (spectrum.floor().at(member.nu()) / self.n()).sqrt();
+            0.5 * (mean_amplitude(&member.path) / (units[i].amplitude * deviation)).powi(2)
+        };
+        let members = 0..self.model.members.len();
+        let mut weak: Vec<(usize, f64)> = members
+            .filter(|i| self.model.members[*i].named.is_none())
+            .map(|i| (i, power(i)))
+            .filter(|w| w.1 < SIGNIFICANT * self.thresholds.least())
+            .collect();
+        weak.sort_by(|a, b| a.1.total_cmp(&b.1));
+        let mut given_up: Vec<usize> = Vec::new();
+        for (i, _) in weak {
+            let nu = self.model.members[i].nu();
+            if given_up.iter().all(|j| (self.model.members[*j].nu() - nu).abs() > APART) {
+                given_up.push(i);
+            }
+        }
+        Some(given_up)
     }
 }

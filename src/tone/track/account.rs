@@ -27,13 +27,13 @@ pub(crate) struct Account {
 
 impl Company {
     /// Its phasor at each point of a track around `carrier`, without its image.
-    pub(super) fn turns(&self, grid: &Grid, carrier: f64) -> impl Iterator<Item = Complex64> {
+    fn turns(&self, grid: &Grid, carrier: f64) -> impl Iterator<Item = Complex64> {
         let offset = self.nu - carrier;
         grid.places.iter().map(move |u| Complex64::cis(PI * offset * u) * 0.5)
     }
 
-    /// What it looks like in a track around `carrier`, its image included.
-    fn points(&self, grid: &Grid, carrier: f64) -> impl Iterator<Item = Complex64> {
+    /// What it looks like in a track around `carrier`: the tone, and its image.
+    pub(super) fn parts(&self, grid: &Grid, carrier: f64) -> impl Iterator<Item = (Complex64, Complex64)> {
         let half = self.turns(grid, carrier).enumerate();
         half.map(move |(b, turn)| grid.seen(b, turn * self.middle_amplitude, self.nu, carrier))
     }
@@ -50,8 +50,8 @@ impl Account {
         let mut rest: Vec<Complex64> =
             track.points.iter().zip(self.path.points(track.grid)).map(|(z, own)| z - own).collect();
         for company in &self.company {
-            for (rest, own) in rest.iter_mut().zip(company.points(track.grid, track.nu)) {
-                *rest -= own;
+            for (rest, (tone, image)) in rest.iter_mut().zip(company.parts(track.grid, track.nu)) {
+                *rest -= tone + image;
             }
         }
         rest

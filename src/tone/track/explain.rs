@@ -11,6 +11,8 @@ use super::{Account, Company, MOST_ORDER, Path, Track, spectrum};
 pub(crate) struct Bar {
     /// The variance of a point by noise.
     pub(crate) point_variance: f64,
+    /// What of it is rounding at least: nothing is known below that.
+    pub(crate) rounding: f64,
     /// What one more tone must bring: its power over a line's mean noise.
     pub(crate) tone: f64,
     /// Whether the tone may move.
@@ -60,19 +62,20 @@ impl Bar {
 /// Whether what is left of a steady tone's track, `rest`, holds enough of a slow change of phase or level that it is
 /// worth while to follow it: the projection on each of the first orders, over what noise would give.
 pub(crate) fn may_move(rest: &Track<'_>, path: &Path, point_variance: f64) -> bool {
-    let own = path.points(rest.grid);
-    (1..=FIRST_ORDERS).any(|p| {
-        let basis = &rest.grid.basis[p];
-        let mut sum = Complex64::ZERO;
-        let mut weight = 0.0;
-        for ((r, s), basis) in rest.points.iter().zip(&own).zip(basis) {
-            sum += s.conj() * r * *basis;
-            weight += s.norm_sqr() * basis * basis;
+    let parts = path.parts(rest.grid);
+    let share = 1.0 + rest.grid.image_share(rest.nu);
+    let brings = |p: usize, column: &dyn Fn(Complex64, Complex64) -> Complex64| {
+        let (mut sum, mut weight) = (0.0, 0.0);
+        for ((r, (tone, image)), basis) in rest.points.iter().zip(&parts).zip(&rest.grid.basis[p]) {
+            let column = column(*tone, *image) * *basis;
+            sum += (column.conj() * r).re;
+            weight += column.norm_sqr();
         }
-        // The imaginary part is a change of phase: of first order, of the frequency, which is fitted already.
-        let phase = if p > 1 { sum.im * sum.im } else { 0.0 };
-        phase.max(sum.re * sum.re) > A_PARAMETER * weight * point_variance / 2.0
-    })
+        sum * sum > A_PARAMETER * weight * share * point_variance / 2.0
+    };
+    // A change of phase of first order is one of the frequency, which is fitted already.
+    (2..=FIRST_ORDERS).any(|p| brings(p, &|tone, image| Complex64::I * (tone - image)))
+        || (1..=FIRST_ORDERS).any(|p| brings(p, &|tone, image| tone + image))
 }
 
 /// Orders of phase and level whose change tells that a tone moves.
@@ -83,7 +86,31 @@ const FIRST_ORDERS: usize = 5;
 /// Two ways are gone, one that first lets the tone move as it likes and one that first gives it company; the cheaper
 /// is taken. A tone that moves is so never taken for a crowd, nor a pair for one that moves, unless that explains the
 /// track better for its parameters.
+///
+/// The floor that the bar rests on may itself be what this tone leaves over the whole band: where an account leaves much
+/// less than the bar says noise would, it is asked again against what it left.
 pub(crate) fn explain(track: &Track<'_>, path: Path, bar: &Bar) -> Account {
+    let share = 1.0 + track.grid.image_share(track.nu);
+    // A tone that shows twice, as itself and as its image, brings twice as much.
+    let mut bar = Bar { point_variance: bar.point_variance * share, ..*bar };
+    let mut account = explain_once(track, path.clone(), &bar);
+    for _ in 0..MOST_TIMES {
+        let parameters = account.path.phase.len() + account.path.level.len() + 3 * account.company.len();
+        let free = track.points.len() as f64 - parameters as f64 / 2.0;
+        let spread = share * account.left / free.max(1.0);
+        if spread.max(bar.rounding) > 0.5 * bar.point_variance {
+            break;
+        }
+        bar.point_variance = spread.max(bar.rounding);
+        account = explain_once(track, path.clone(), &bar);
+    }
+    account
+}
+
+/// How often an account is asked again.
+const MOST_TIMES: usize = 3;
+
+fn explain_once(track: &Track<'_>, path: Path, bar: &Bar) -> Account {
     let start = fit(track, Account::of(path), bar.enough());
     let alone = grow(track, start.clone(), bar, bar.may_move, false);
     if !bar.may_have_company {

@@ -5,7 +5,7 @@ use std::f64::consts::PI;
 use nalgebra::{Cholesky, DMatrix, DVector};
 use realfft::num_complex::Complex64;
 
-use super::{Account, Track};
+use super::{Account, Company, Track};
 
 /// Gauss-Newton steps at most.
 const MOST_STEPS: usize = 30;
@@ -51,7 +51,6 @@ pub(super) fn fit_for(track: &Track<'_>, start: Account, enough: f64, most_steps
 fn step(track: &Track<'_>, account: &Account) -> Option<DVector<f64>> {
     let grid = track.grid;
     let n = grid.len();
-    let own = account.path.points(grid);
     let (n_phase, n_level) = (account.path.phase.len(), account.path.level.len());
     let n_columns = n_phase + n_level + 3 * account.company.len();
     let mut design = DMatrix::zeros(2 * n, n_columns);
@@ -59,20 +58,21 @@ fn step(track: &Track<'_>, account: &Account) -> Option<DVector<f64>> {
         design[(b, column)] = value.re;
         design[(n + b, column)] = value.im;
     };
-    for (b, m) in own.iter().enumerate() {
-        for p in 0..n_phase {
-            put(p, b, m * Complex64::I * grid.basis[p][b]);
-        }
-        for p in 0..n_level {
-            put(n_phase + p, b, m * grid.basis[p][b]);
-        }
+    // A phase turns the image the other way.
+    for (b, (tone, image)) in account.path.parts(grid).into_iter().enumerate() {
+        let (turned, grown) = (Complex64::I * (tone - image), tone + image);
+        (0..n_phase).for_each(|p| put(p, b, turned * grid.basis[p][b]));
+        (0..n_level).for_each(|p| put(n_phase + p, b, grown * grid.basis[p][b]));
     }
     for (c, company) in account.company.iter().enumerate() {
         let at = n_phase + n_level + 3 * c;
-        for (b, turn) in company.turns(grid, track.nu).enumerate() {
-            put(at, b, turn);
-            put(at + 1, b, turn * Complex64::I);
-            put(at + 2, b, turn * company.middle_amplitude * Complex64::new(0.0, PI * grid.places[b]));
+        let unit = Company { middle_amplitude: Complex64::ONE, ..*company };
+        for (b, (tone, image)) in unit.parts(grid, track.nu).enumerate() {
+            put(at, b, tone + image);
+            put(at + 1, b, Complex64::I * (tone - image));
+        }
+        for (b, (tone, image)) in company.parts(grid, track.nu).enumerate() {
+            put(at + 2, b, Complex64::new(0.0, PI * grid.places[b]) * (tone - image));
         }
     }
     let rest = account.remainder(track);

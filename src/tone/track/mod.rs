@@ -75,12 +75,23 @@ impl Grid {
 
     /// What block `b` holds, in a track around `carrier`, of a real tone whose half envelope there is `half` and whose
     /// frequency there is `nu` (bins): the tone turned back by the carrier, and its image turned back likewise.
-    fn seen(&self, b: usize, half: Complex64, nu: f64, carrier: f64) -> Complex64 {
-        let from = if b == 0 { 0 } else { self.ends[b - 1] };
-        let length = (self.ends[b] - from) as f64;
+    fn seen(&self, b: usize, half: Complex64, nu: f64, carrier: f64) -> (Complex64, Complex64) {
         let turn = TAU / self.n as f64;
+        let length = self.block_length(b);
         let image = Complex64::cis(-(turn * carrier * self.places[b] * self.n as f64).rem_euclid(TAU));
-        half * averaged(turn * (nu - carrier), length) + half.conj() * image * averaged(turn * (nu + carrier), length)
+        (half * averaged(turn * (nu - carrier), length), half.conj() * image * averaged(turn * (nu + carrier), length))
+    }
+
+    fn block_length(&self, b: usize) -> f64 {
+        let from = if b == 0 { 0 } else { self.ends[b - 1] };
+        (self.ends[b] - from) as f64
+    }
+
+    /// The power of a tone's image in a track around `carrier`, over that of the tone itself: blocks of many samples
+    /// average it away.
+    pub(super) fn image_share(&self, carrier: f64) -> f64 {
+        let kept = |b: usize| averaged(2.0 * TAU * carrier / self.n as f64, self.block_length(b)).powi(2);
+        (0..self.len()).map(kept).sum::<f64>() / self.len() as f64
     }
 
     /// e^{-j2πνm/N} averaged over each block of `samples`.

@@ -100,14 +100,19 @@ impl Path {
             .collect()
     }
 
-    /// What it looks like in a track around its carrier, its image included.
-    pub(super) fn points(&self, grid: &Grid) -> Vec<Complex64> {
+    /// What it looks like in a track around its carrier: the tone, and its image.
+    pub(super) fn parts(&self, grid: &Grid) -> Vec<(Complex64, Complex64)> {
         let still = self.is_steady().then(|| self.frequency(0.0));
-        let point = |(b, envelope): (usize, Complex64)| {
+        let part = |(b, envelope): (usize, Complex64)| {
             let nu = still.unwrap_or_else(|| self.frequency(grid.places[b]));
             grid.seen(b, envelope * 0.5, nu, self.nu)
         };
-        self.envelope(grid).into_iter().enumerate().map(point).collect()
+        self.envelope(grid).into_iter().enumerate().map(part).collect()
+    }
+
+    /// The same, both together.
+    pub(super) fn points(&self, grid: &Grid) -> Vec<Complex64> {
+        self.parts(grid).into_iter().map(|(tone, image)| tone + image).collect()
     }
 
     /// The same tone seen from its own mean frequency: the carrier takes the linear part of the phase.

@@ -28,6 +28,7 @@ fn explained(samples: &[f64], nu: f64, sigma: f64) -> Account {
     let track = grid.track(samples, nu);
     let bar = Bar {
         point_variance: track.point_variance(samples.len() as f64 * sigma * sigma),
+        rounding: 0.0,
         tone: 22.0,
         may_move: true,
         may_have_company: true,
