@@ -1,5 +1,7 @@
 //! Fitting, looking at what is left, and making something of it, until only noise is left.
 
+use realfft::num_complex::Complex64;
+
 use super::super::model::Member;
 use super::super::residue::{Peak, ResidueSpectrum};
 use super::super::track::{Bar, LEAST_APART, Path, explain, may_move};
@@ -154,7 +156,7 @@ impl Hunt<'_> {
         let path = member.path.clone().recentred();
         let mut track = self.model.grid.track(residue, path.nu);
         // Where one tone's remains cover the whole band, the floor is theirs; the track itself then holds less.
-        let spread = track.points.iter().map(|z| z.norm_sqr()).sum::<f64>() / track.points.len().max(1) as f64;
+        let spread = track.points.iter().map(Complex64::norm_sqr).sum::<f64>() / track.points.len().max(1) as f64;
         let rounding = track.point_variance(self.rounding_power(self.n()));
         let point_variance = track.point_variance(spectrum.floor().at(member.nu())).min(spread).max(rounding);
         if !may_have_company && !may_move(&track, &path, point_variance) {
@@ -163,7 +165,7 @@ impl Hunt<'_> {
         track.add(&path);
         let bar =
             Bar { point_variance, rounding, tone: self.thresholds.least(), may_move: !member.held, may_have_company };
-        let account = explain(&track, path.clone(), &bar);
+        let account = explain(&track, &path, &bar);
         let orders = |path: &Path| path.phase.len() + path.level.len();
         let longer = orders(&account.path) > orders(&path);
         let company: Vec<_> = account.company.iter().filter(|c| !self.is_known_beside(i, c.nu)).copied().collect();

@@ -89,7 +89,7 @@ const FIRST_ORDERS: usize = 5;
 ///
 /// The floor that the bar rests on may itself be what this tone leaves over the whole band: where an account leaves much
 /// less than the bar says noise would, it is asked again against what it left.
-pub(crate) fn explain(track: &Track<'_>, path: Path, bar: &Bar) -> Account {
+pub(crate) fn explain(track: &Track<'_>, path: &Path, bar: &Bar) -> Account {
     let share = 1.0 + track.grid.image_share(track.nu);
     // A tone that shows twice, as itself and as its image, brings twice as much.
     let mut bar = Bar { point_variance: bar.point_variance * share, ..*bar };

@@ -34,7 +34,7 @@ fn explained(samples: &[f64], nu: f64, sigma: f64) -> Account {
         may_have_company: true,
     };
     let mean = track.points.iter().sum::<Complex64>() / grid.len() as f64;
-    explain(&track, Path::steady(nu, mean * 2.0), &bar)
+    explain(&track, &Path::steady(nu, mean * 2.0), &bar)
 }
 
 fn moving(path: &Path, n: usize, sigma: f64, seed: u64) -> Vec<f64> {
