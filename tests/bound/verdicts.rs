@@ -1,7 +1,9 @@
-//! What a Reading says beside its figures: leakage by its name.
+//! What a Reading says beside its figures: leakage by its name, the same whatever panes are open, sound advice.
 
+use panewise::reading::{Reading, Verdict};
 use panewise::window::Window;
 
+use crate::harness::advice::{Advised, judge};
 use crate::harness::made::Made;
 use crate::harness::read::read;
 use crate::harness::scenes::{Scene, Tint, make};
@@ -56,4 +58,74 @@ fn every_side_lobe_of_a_rectangular_pane_is_called_a_skirt() {
         assert!(!tone_listed, "seed {seed}: the tone itself is listed as a skirt");
     }
     assert!(n_lobes > 100, "{n_lobes} side lobes");
+}
+
+/// What of a tone must not depend on the panes.
+#[derive(Debug, PartialEq)]
+struct Said {
+    frequency_hz: f64,
+    amplitude: f64,
+    amplitude_u95: Option<f64>,
+    verdict: Option<Verdict>,
+    why: Option<String>,
+}
+
+fn said(reading: &Reading) -> Vec<Said> {
+    let of = |t: &panewise::reading::Tone| Said {
+        frequency_hz: t.frequency_hz,
+        amplitude: t.amplitude,
+        amplitude_u95: t.amplitude_u95,
+        verdict: t.verdict,
+        why: t.why.clone(),
+    };
+    reading.tones.iter().map(of).collect()
+}
+
+#[test]
+fn what_is_said_of_tones_does_not_depend_on_the_panes() {
+    let standing = panewise::session::DEFAULT_WINDOWS;
+    let mut reversed = standing;
+    reversed.reverse();
+    let sets: [&[&str]; 6] = [
+        &reversed,
+        &["hann"],
+        &["rectangular"],
+        &["flat-top"],
+        &["kaiser=8.6", "rectangular", "flat-top"],
+        &["blackman-harris", "hann"],
+    ];
+    for scene in [Scene::Lone, Scene::Company, Scene::Giant, Scene::Drift, Scene::Sweep, Scene::Edge] {
+        for seed in 0..3 {
+            let made = make(scene, Tint::White, seed);
+            let first = said(&read(&made, &standing));
+            for windows in sets {
+                assert_eq!(said(&read(&made, windows)), first, "{scene:?}, seed {seed}, {windows:?}");
+            }
+        }
+    }
+}
+
+/// At least 95 of 100, less three standard errors.
+fn at_least_95(good: usize, of: usize) -> bool {
+    good as f64 >= of as f64 * (0.95 - 3.0 * (0.95 * 0.05 / of as f64).sqrt())
+}
+
+#[test]
+fn the_window_advised_is_among_the_best() {
+    let mut worse = Vec::new();
+    let mut n_captures = 0;
+    for scene in [Scene::Parted, Scene::Company, Scene::Giant] {
+        for seed in 100..125 {
+            let made = make(scene, Tint::White, seed);
+            if made.tones.len() < 2 {
+                continue;
+            }
+            n_captures += 1;
+            let outcome = judge(&made, &read(&made, &["hann"]));
+            if outcome != Advised::Well {
+                worse.push((scene, seed, outcome));
+            }
+        }
+    }
+    assert!(at_least_95(n_captures - worse.len(), n_captures), "{} of {n_captures}: {worse:?}", worse.len());
 }

@@ -11,4 +11,5 @@ mod kinds;
 mod oddities;
 mod readings;
 mod steady;
+mod tables;
 mod truth;

@@ -82,8 +82,19 @@ impl Judge<'_> {
         vec![of("amplitude", |f| f.amplitude_in_bounds), of("frequency", |f| f.nu_in_bounds)]
     }
 
+    /// Errors against the bound, and against what the same noise makes of a linear fit, which few cases tell as well as
+    /// many.
     pub fn errors(&self) -> Vec<Figure> {
-        self.errors_within(BOUND)
+        let found = self.found();
+        let of = |what: &str, error: fn(&Found) -> f64, least: fn(&Found) -> f64| {
+            let value = rms(found.iter().map(|f| error(f))) / rms(found.iter().map(|f| least(f)));
+            let what = format!("{what} error over a linear fit's");
+            self.figure(&what, value, found.len(), format!("<= {BOUND:.3}"), value <= BOUND)
+        };
+        let mut figures = self.errors_within(BOUND);
+        figures.push(of("amplitude", |f| f.amplitude_in_bounds, |f| f.least_amplitude_in_bounds));
+        figures.push(of("frequency", |f| f.nu_in_bounds, |f| f.least_nu_in_bounds));
+        figures
     }
 
     /// How many of the intervals hold the truth. A part p of n cases has a standard error of √(p(1-p)/n).
@@ -142,14 +153,16 @@ impl Judge<'_> {
     }
 }
 
-/// Every figure of a run.
-pub fn of_run(run: &[(Scene, Tint, Vec<Outcome>)], judging: Judging) -> Vec<Figure> {
+/// Kinds of capture whose tones are steady.
+const STEADY: [Scene; 6] = [Scene::Lone, Scene::Edge, Scene::Company, Scene::Giant, Scene::Parted, Scene::Many];
+
+/// The figures of each kind of capture, with three standard errors allowed.
+pub fn of_each(run: &[(Scene, Tint, Vec<Outcome>)]) -> Vec<Figure> {
     let mut figures = Vec::new();
     for (scene, tint, outcomes) in run {
-        let noise = if *tint == Tint::White { "white noise" } else { "coloured noise" };
-        let name = format!("{noise}, {}", scene.name());
+        let name = format!("{}, {}", tint.name(), scene.name());
         let all: Vec<&Outcome> = outcomes.iter().collect();
-        figures.extend(of_scene(*scene, Judge { name: &name, outcomes: &all, judging }));
+        figures.extend(of_scene(*scene, Judge { name: &name, outcomes: &all, judging: Judging::FewCases }));
         if *scene == Scene::Sweep {
             let mut neighbours = outcomes.clone();
             for outcome in &mut neighbours {
@@ -157,7 +170,37 @@ pub fn of_run(run: &[(Scene, Tint, Vec<Outcome>)], judging: Judging) -> Vec<Figu
             }
             let neighbours: Vec<&Outcome> = neighbours.iter().collect();
             let name = format!("{name}, steady neighbour");
-            figures.extend(Judge { name: &name, outcomes: &neighbours, judging }.errors_within(TWICE));
+            let judge = Judge { name: &name, outcomes: &neighbours, judging: Judging::FewCases };
+            figures.extend(judge.errors_within(TWICE));
+        }
+    }
+    figures
+}
+
+/// The figures over all steady tones, and over all captures, as they are.
+pub fn of_all(run: &[(Scene, Tint, Vec<Outcome>)]) -> Vec<Figure> {
+    let mut figures = Vec::new();
+    for tint in [Tint::White, Tint::Coloured] {
+        let of = |scenes: &[Scene]| -> Vec<&Outcome> {
+            run.iter().filter(|r| r.1 == tint && scenes.contains(&r.0)).flat_map(|r| &r.2).collect()
+        };
+        let judge = |what: &str, outcomes: &[&Outcome], work: &dyn Fn(Judge<'_>) -> Vec<Figure>| {
+            work(Judge { name: &format!("{}, {what}", tint.name()), outcomes, judging: Judging::Plain })
+        };
+        figures.extend(judge("all steady tones", &of(&STEADY), &|j| {
+            let mut all = j.errors();
+            all.extend(j.intervals());
+            all.extend([j.detection(), j.no_false_tones(), j.no_tone_is_a_skirt()]);
+            all
+        }));
+        figures.extend(judge("lone and well parted tones", &of(&[Scene::Lone, Scene::Parted]), &|j| {
+            vec![j.verdicts("tones that hold", Verdict::Holds, |_| true)]
+        }));
+        for scene in [Scene::Giant, Scene::Noise, Scene::Drift, Scene::Sweep] {
+            figures.extend(judge(scene.name(), &of(&[scene]), &|j| {
+                let detection = (scene != Scene::Noise).then(|| j.detection());
+                detection.into_iter().chain([j.no_false_tones()]).collect()
+            }));
         }
     }
     figures
@@ -183,7 +226,7 @@ fn of_scene(scene: Scene, judge: Judge<'_>) -> Vec<Figure> {
             judge.verdicts("sweeping tones wander", Verdict::Wanders, |r| r.drift != 0.0),
             judge.verdicts("steady neighbours hold", Verdict::Holds, |r| r.drift == 0.0),
         ],
-        Scene::Lone | Scene::Edge | Scene::Company | Scene::Giant | Scene::Parted => {
+        Scene::Lone | Scene::Edge | Scene::Company | Scene::Giant | Scene::Parted | Scene::Many => {
             let mut figures = judge.errors();
             figures.extend(judge.intervals());
             figures.extend([judge.detection(), judge.no_false_tones(), judge.no_tone_is_a_skirt()]);

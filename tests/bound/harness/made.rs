@@ -32,6 +32,8 @@ impl MadeTone {
 pub struct Made {
     pub seed: u64,
     pub samples: Vec<f64>,
+    /// The noise among them.
+    pub noise: Vec<f64>,
     pub tones: Vec<MadeTone>,
     pub colour: Colour,
     pub removal: Removal,
@@ -97,7 +99,8 @@ impl Recipe {
 
     pub fn finish(mut self) -> Made {
         let n = self.n as f64;
-        let mut samples = self.colour.samples(self.n, &mut self.dice);
+        let noise = self.colour.samples(self.n, &mut self.dice);
+        let mut samples = noise.clone();
         let offset = if self.removal == Removal::None { 0.0 } else { self.dice.between(-5.0, 5.0) };
         let slope = if self.removal == Removal::Line { self.dice.between(-5.0, 5.0) } else { 0.0 };
         for (i, x) in samples.iter_mut().enumerate() {
@@ -105,6 +108,6 @@ impl Recipe {
             *x += offset + slope * t + self.tones.iter().map(|tone| tone.peak * tone.angle(t).cos()).sum::<f64>();
         }
         self.tones.sort_by(|a, b| a.nu.total_cmp(&b.nu));
-        Made { seed: self.seed, samples, tones: self.tones, colour: self.colour, removal: self.removal }
+        Made { seed: self.seed, samples, noise, tones: self.tones, colour: self.colour, removal: self.removal }
     }
 }

@@ -31,6 +31,8 @@ pub enum Scene {
     Sweep,
     /// Tones ten lines and more apart, 30 to 60 dB over the floor.
     Parted,
+    /// Thirty to sixty tones, three lines and more apart, 20 to 80 dB over the floor.
+    Many,
 }
 
 impl Scene {
@@ -44,6 +46,7 @@ impl Scene {
             Self::Drift => "drifting tone",
             Self::Sweep => "sweep over six lines",
             Self::Parted => "well parted tones",
+            Self::Many => "many tones",
         }
     }
 }
@@ -55,11 +58,21 @@ pub enum Tint {
     Coloured,
 }
 
+impl Tint {
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::White => "white noise",
+            Self::Coloured => "coloured noise",
+        }
+    }
+}
+
 /// What is put in.
 pub fn make(scene: Scene, tint: Tint, seed: u64) -> Made {
     let mut dice = Dice::of(seed ^ ((scene as u64) << 40) ^ ((tint as u64) << 50));
     let n = match (tint, scene) {
         (_, Scene::Sweep) => dice.pick(&[1024, 2048, 4096, 8192]),
+        (_, Scene::Many) => dice.pick(&[2048, 4096, 8192]),
         (Tint::White, _) => dice.pick(&LENGTHS),
         (Tint::Coloured, _) => dice.pick(&COLOURED_LENGTHS),
     };
@@ -120,6 +133,14 @@ fn fill(scene: Scene, recipe: &mut Recipe) {
             let neighbour_db = recipe.dice.between(30.0, 60.0);
             recipe.tone(nu, snr_db, drift);
             recipe.tone(nu + side, neighbour_db, 0.0);
+        }
+        Scene::Many => {
+            for _ in 0..recipe.dice.pick(&[30, 45, 60]) {
+                let (nu, snr_db) = (within(recipe, EDGE), recipe.dice.between(20.0, 80.0));
+                if recipe.has_room(nu, NEAR) {
+                    recipe.tone(nu, snr_db, 0.0);
+                }
+            }
         }
         Scene::Parted => {
             for _ in 0..3 {

@@ -1,8 +1,10 @@
 //! How a Reading compares with what was put in.
 
+use std::time::Instant;
+
 use panewise::reading::{Reading, Tone, Verdict};
 
-use super::fisher::bounds;
+use super::fisher::Linearised;
 use super::made::Made;
 use super::read::read;
 use super::scenes::{Scene, Tint, make};
@@ -28,6 +30,9 @@ pub struct Found {
     /// Errors over the bound's standard deviation.
     pub amplitude_in_bounds: f64,
     pub nu_in_bounds: f64,
+    /// What the same noise makes of a linear fit, likewise.
+    pub least_amplitude_in_bounds: f64,
+    pub least_nu_in_bounds: f64,
     /// Errors over the stated expanded uncertainty; none where none was stated.
     pub amplitude_in_u95: Option<f64>,
     pub nu_in_u95: Option<f64>,
@@ -41,6 +46,8 @@ pub struct Outcome {
     pub records: Vec<Record>,
     /// What was listed as a tone without being one, bins.
     pub false_tones: Vec<f64>,
+    /// What the reading took.
+    pub seconds: f64,
 }
 
 /// A tone read within this of one put in is that one, lines.
@@ -49,8 +56,10 @@ const SAME: f64 = 0.5;
 /// Makes, reads and compares one capture.
 pub fn outcome(scene: Scene, tint: Tint, seed: u64) -> Outcome {
     let made = make(scene, tint, seed);
+    let start = Instant::now();
     let reading = read(&made, &["hann"]);
-    compare(scene, tint, &made, &reading)
+    let seconds = start.elapsed().as_secs_f64();
+    Outcome { seconds, ..compare(scene, tint, &made, &reading) }
 }
 
 /// The outcomes of consecutive seeds, on two threads.
@@ -71,8 +80,10 @@ pub fn counts(tone: &Tone) -> bool {
     tone.verdict != Some(Verdict::Faint)
 }
 
+/// Compares a Reading with what was put in.
 pub fn compare(scene: Scene, tint: Tint, made: &Made, reading: &Reading) -> Outcome {
-    let bounds = bounds(made);
+    let linearised = Linearised::of(made);
+    let (bounds, least) = (linearised.bounds(), linearised.errors());
     let mut left: Vec<&Tone> = reading.tones.iter().filter(|t| counts(t)).collect();
     let mut records = Vec::new();
     // The strongest choose first, so that a weak tone does not take what belongs to its neighbour.
@@ -88,6 +99,8 @@ pub fn compare(scene: Scene, tint: Tint, made: &Made, reading: &Reading) -> Outc
             Found {
                 amplitude_in_bounds: amplitude / bounds[i].amplitude,
                 nu_in_bounds: nu / bounds[i].nu,
+                least_amplitude_in_bounds: least[i].0 / bounds[i].amplitude,
+                least_nu_in_bounds: least[i].1 / bounds[i].nu,
                 amplitude_in_u95: read.amplitude_u95.map(|u| amplitude / u),
                 nu_in_u95: read.frequency_u95_hz.map(|u| nu / u),
                 verdict: read.verdict,
@@ -105,7 +118,7 @@ pub fn compare(scene: Scene, tint: Tint, made: &Made, reading: &Reading) -> Outc
             found,
         });
     }
-    Outcome { seed: made.seed, records, false_tones: left.iter().map(|t| t.frequency_hz).collect() }
+    Outcome { seed: made.seed, records, false_tones: left.iter().map(|t| t.frequency_hz).collect(), seconds: 0.0 }
 }
 
 /// Root mean square.
@@ -116,4 +129,48 @@ pub fn rms(values: impl Iterator<Item = f64>) -> f64 {
         count += 1;
     }
     (sum / count as f64).sqrt()
+}
+
+/// Listed of each kind of failure.
+const LISTED: usize = 8;
+
+/// Errors this many bounds large are listed.
+const FAR_OFF: f64 = 5.0;
+
+/// A capture of a few thousand samples that takes longer is listed, s.
+const SLOW_S: f64 = 0.5;
+
+/// Captures that failed, by their seeds: a line each.
+pub fn failures(outcomes: &[Outcome]) -> Vec<String> {
+    let records: Vec<&Record> = outcomes.iter().flat_map(|o| &o.records).collect();
+    let mut lines: Vec<String> = Vec::new();
+    lines.extend(records.iter().filter(|r| r.found.is_none()).take(LISTED).map(|r| format!("missed: {}", r.place())));
+    for o in outcomes.iter().filter(|o| !o.false_tones.is_empty()).take(LISTED) {
+        let first = o.records.first().map_or_else(String::new, Record::place);
+        let some = &o.false_tones[..o.false_tones.len().min(LISTED)];
+        lines.push(format!("false: seed {}: {} as at {some:.3?}; {first}", o.seed, o.false_tones.len()));
+    }
+    let mut found: Vec<_> = records.iter().filter_map(|r| r.found.as_ref().map(|f| (*r, f))).collect();
+    let size = |f: &Found| f.amplitude_in_bounds.abs().max(f.nu_in_bounds.abs());
+    found.sort_by(|a, b| size(b.1).total_cmp(&size(a.1)));
+    for (r, f) in found.iter().filter(|x| size(x.1) > FAR_OFF).take(LISTED) {
+        let (a, nu) = (f.amplitude_in_bounds, f.nu_in_bounds);
+        lines.push(format!("{a:.1} and {nu:.1} bounds off, {:?}: {}", f.verdict, r.place()));
+    }
+    let odd = |f: &Found| f.verdict != Some(Verdict::Holds) && f.verdict != Some(Verdict::Crowded);
+    for (r, f) in found.iter().filter(|x| odd(x.1) && x.0.drift == 0.0).take(LISTED) {
+        lines.push(format!("{:?}: {}", f.verdict, r.place()));
+    }
+    let mut slow: Vec<&Outcome> = outcomes.iter().filter(|o| o.seconds > SLOW_S).collect();
+    slow.sort_by(|a, b| b.seconds.total_cmp(&a.seconds));
+    lines.extend(slow.iter().take(LISTED).map(|o| format!("slow: seed {}: {:.1} s", o.seed, o.seconds)));
+    lines
+}
+
+impl Record {
+    /// Which tone it is, in words.
+    fn place(&self) -> String {
+        let Self { seed, n, nu, snr_db, gap, drift, .. } = self;
+        format!("seed {seed}, N {n}, {nu:.3} of {snr_db:.1} dB, gap {gap:.2}, drift {drift:.3}")
+    }
 }
