@@ -160,19 +160,19 @@ fn pane_reading(spectra: &Spectra, request: &Request, found: &Search, pane: usiz
     let tone = found.tones[i];
     let motion = found.motions.get(i).and_then(Option::as_ref);
     let disturbance = Disturbance::of(spectra, pane, found, i);
-    let mut state = match disturbance.state() {
+    let spread = motion.is_some_and(|m| m.span_nu > ONE_MAXIMUM);
+    let borrowed = tone.held || spread || window.is_flat_top();
+    let covered = disturbance.state() == State::BelowFloor;
+    let maximum = if borrowed || covered { None } else { view.read_near(tone.nu) };
+    let disturbance = maximum.map_or(disturbance, |m| disturbance.read_at(spectra, pane, found, i, m.nu));
+    let state = match disturbance.state() {
+        // Nothing rises here: whatever the skirts predict, they cover the tone.
+        State::Clear if maximum.is_none() && !borrowed => ReadingState::UnderSkirt,
         State::Clear => ReadingState::Clear,
         State::Crowded => ReadingState::Crowded,
         State::UnderSkirt => ReadingState::UnderSkirt,
         State::BelowFloor => ReadingState::BelowFloor,
     };
-    let spread = motion.is_some_and(|m| m.span_nu > ONE_MAXIMUM);
-    let borrowed = tone.held || spread || window.is_flat_top();
-    let maximum = if borrowed || state == ReadingState::BelowFloor { None } else { view.read_near(tone.nu) };
-    if maximum.is_none() && !borrowed && state == ReadingState::Clear {
-        // Nothing rises here: whatever the skirts predict, they cover the tone.
-        state = ReadingState::UnderSkirt;
-    }
     let lone = maximum.unwrap_or_else(|| view.read_at(tone.nu));
     // What a path makes of the pane's maximum, against what a tone that stands still would.
     let smeared = motion.and_then(|m| m.seen_under(window, lone.nu));

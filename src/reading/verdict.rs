@@ -74,7 +74,8 @@ impl Judged<'_> {
         let frequency = motion.span_nu > MOST_MOVED;
         let level = motion.span_db > MOST_MOVED_DB.max(u_db);
         let hz = self.hertz(motion.span_nu * self.spacing_hz);
-        let decibels = format!("{:.2} dB", motion.span_db);
+        let decibels =
+            if motion.span_db > 59.9 { "60 dB or more".to_owned() } else { format!("{:.2} dB", motion.span_db) };
         let what = match (frequency, level) {
             (true, true) => format!("frequency moves by {hz} ({:.2} lines) and level by {decibels}", motion.span_nu),
             (true, false) => format!("frequency moves by {hz} ({:.2} lines)", motion.span_nu),

@@ -44,6 +44,9 @@ pub struct Motion {
     n: f64,
 }
 
+/// Levels of a path are followed so far under its greatest, 60 dB: below that a polynomial says nothing.
+pub(super) const LEAST: f64 = 1e-3;
+
 /// Points of a course.
 const POINTS: usize = 65;
 
@@ -55,24 +58,25 @@ const NEAR: f64 = 64.0;
 
 impl Motion {
     pub(super) fn of(path: &Path, grid: &Grid, followed: bool) -> Self {
+        let amplitude = |u: f64| path.amplitude(u).max(LEAST * path.greatest_amplitude());
         let course: Vec<CoursePoint> = (0..POINTS)
             .map(|i| i as f64 / (POINTS - 1) as f64)
             .map(|part| {
                 let u = 2.0 * part - 1.0;
-                CoursePoint { part, nu: path.frequency(u), amplitude: path.amplitude(u) }
+                CoursePoint { part, nu: path.frequency(u), amplitude: amplitude(u) }
             })
             .collect();
         let parts: Vec<f64> = (0..PARTS).map(|i| (2.0 * i as f64 + 1.0) / PARTS as f64 - 1.0).collect();
         let (span_nu, span_nepers) = path.span();
         let decibels = 20.0 / std::f64::consts::LN_10;
-        let path = path.clone().recentred();
+        let path = &path.clone().recentred();
         Self {
             drift_nu: path.frequency(1.0) - path.frequency(-1.0),
-            drift_db: decibels * (path.amplitude(1.0) / path.amplitude(-1.0)).ln(),
+            drift_db: decibels * (amplitude(1.0) / amplitude(-1.0)).ln(),
             span_nu,
             span_db: decibels * span_nepers,
             scatter_nu: deviation(&parts, |u| path.frequency(u)),
-            scatter_amplitude: deviation(&parts, |u| path.amplitude(u)),
+            scatter_amplitude: deviation(&parts, amplitude),
             followed,
             course,
             envelope: path.envelope(grid),

@@ -11,8 +11,6 @@ use crate::units::db;
 pub struct Disturbance {
     /// Whether another tone stands inside the pane's main lobe, not so weak that it could not matter.
     pub crowded: bool,
-    /// What the other tones together put there, as an amplitude at the first sample.
-    leak: Complex64,
     /// What they do to the level, signed, dB.
     pub leak_db: f64,
     /// What noise does to the level, one standard uncertainty, dB.
@@ -58,7 +56,7 @@ pub struct Lobes {
 }
 
 impl Disturbance {
-    /// Of tone `of` among those found, in pane `pane`; what tones that move leak is that of their paths.
+    /// Of tone `of` among those found, in pane `pane`, read at the tone itself.
     pub fn of(spectra: &Spectra, pane: usize, found: &Search, of: usize) -> Self {
         let n = spectra.n_samples();
         let half_width_bins = spectra.windows().get(pane).map_or(0.0, |w| w.main_lobe_half_width_bins(n));
@@ -68,21 +66,27 @@ impl Disturbance {
         let nu = found.tones.get(of).map_or(0.0, |t| t.nu);
         let noise_power = found.noise.as_ref().map_or(0.0, |noise| noise.line_power(nu, sums.s2));
         let steady = |nu: f64| spectra.kernel_at(pane, nu) / top;
-        let mut disturbance = Self::under(steady, &lobes, &found.tones, of, noise_power);
-        let Some(tone) = found.tones.get(of) else { return disturbance };
+        Self::under(steady, &lobes, &found.tones, of, noise_power).read_at(spectra, pane, found, of, nu)
+    }
+
+    /// The same where the pane's maximum stands at `place` bins: the skirt of others draws it aside, to where they raise
+    /// it most. What tones that move leak is that of their paths.
+    #[must_use]
+    pub fn read_at(self, spectra: &Spectra, pane: usize, found: &Search, of: usize, place: f64) -> Self {
+        let Some(tone) = found.tones.get(of) else { return self };
+        let (top, s1) = (spectra.kernel_at(pane, 0.0), spectra.sums(pane).s1);
+        let kernel = |nu: f64| spectra.kernel_at(pane, nu) / top;
         let window = spectra.windows().get(pane);
-        let mut change = Complex64::ZERO;
+        let mut seen = tone.amplitude * kernel(place - tone.nu);
         for (j, (other, motion)) in found.tones.iter().zip(&found.motions).enumerate() {
-            let (Some(motion), Some(window)) = (motion.as_ref().filter(|_| j != of), window) else { continue };
-            if let Some(seen) = motion.seen_under(window, nu) {
-                change += seen * (2.0 / sums.s1) - other.amplitude * steady(nu - other.nu);
+            if j == of || other.faint {
+                continue;
             }
+            let path = motion.as_ref().zip(window).and_then(|(motion, window)| motion.seen_under(window, place));
+            seen += path.map_or_else(|| other.amplitude * kernel(place - other.nu), |path| path * (2.0 / s1));
+            seen += other.amplitude.conj() * kernel(place + other.nu);
         }
-        if change != Complex64::ZERO {
-            disturbance.leak += change;
-            disturbance.leak_db = db((tone.amplitude + disturbance.leak).norm() / tone.amplitude.norm());
-        }
-        disturbance
+        Self { leak_db: db(seen.norm() / tone.amplitude.norm()), ..self }
     }
 
     /// The same under any window: `kernel` gives W(ν)/W(0).
@@ -93,14 +97,7 @@ impl Disturbance {
         of: usize,
         noise_power: f64,
     ) -> Self {
-        let nothing = Self {
-            crowded: false,
-            leak: Complex64::ZERO,
-            leak_db: 0.0,
-            noise_db: 0.0,
-            over_floor: 0.0,
-            strongest: None,
-        };
+        let nothing = Self { crowded: false, leak_db: 0.0, noise_db: 0.0, over_floor: 0.0, strongest: None };
         let Some(tone) = tones.get(of) else { return nothing };
         let own = tone.amplitude.norm();
         let mut leak = Complex64::ZERO;
@@ -125,7 +122,6 @@ impl Disturbance {
         let own_power = (own * lobes.s1 / 2.0).powi(2);
         Self {
             crowded,
-            leak,
             leak_db: db((tone.amplitude + leak).norm() / own),
             // Of the noise |Y|² only the part in phase with the tone moves its level: half the power.
             noise_db: db(1.0 + (noise_power / 2.0 / own_power).sqrt()),

@@ -5,6 +5,7 @@ use std::f64::consts::{PI, TAU};
 use nalgebra::{Cholesky, DMatrix, DVector};
 use realfft::num_complex::Complex64;
 
+use super::super::motion::LEAST;
 use super::{Grid, MOST_ORDER};
 
 /// A tone whose phase and level change smoothly: Re(e^{Λ(u) + jΦ(u)} e^{j2πνm/N}), with m counted from the segment's
@@ -131,14 +132,24 @@ impl Path {
         (squares.sum::<f64>() / MOMENTS as f64).sqrt()
     }
 
-    /// Greatest less least frequency, bins, and level, nepers.
+    /// Its greatest peak amplitude.
+    pub(crate) fn greatest_amplitude(&self) -> f64 {
+        moments().chain([-1.0, 1.0]).map(|u| self.amplitude(u)).fold(0.0, f64::max)
+    }
+
+    /// Greatest less least frequency, bins, and level, nepers; where it is 60 dB under its greatest it counts no more.
     pub(crate) fn span(&self) -> (f64, f64) {
-        let range = |values: Vec<f64>| {
-            let least = values.iter().copied().fold(f64::INFINITY, f64::min);
-            values.iter().copied().fold(f64::NEG_INFINITY, f64::max) - least
+        let least = LEAST * self.greatest_amplitude();
+        let heard: Vec<f64> = moments().chain([-1.0, 1.0]).filter(|u| self.amplitude(*u) >= least).collect();
+        let range = |value: &dyn Fn(f64) -> f64| {
+            let values = heard.iter().map(|u| value(*u));
+            let (low, high) =
+                values.fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), v| (low.min(v), high.max(v)));
+            high - low
         };
-        let all = || moments().chain([-1.0, 1.0]);
-        (range(all().map(|u| self.frequency(u)).collect()), range(all().map(|u| self.amplitude(u).ln()).collect()))
+        let all_heard = heard.len() == MOMENTS + 2;
+        let level = if all_heard { range(&|u| self.amplitude(u).ln()) } else { -LEAST.ln() };
+        (range(&|u| self.frequency(u)), level)
     }
 
     /// The phase at the first of `n` samples.
