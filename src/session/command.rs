@@ -65,6 +65,8 @@ pub enum Command {
     AddHandTone(HandTone),
     /// Hold a tone's frequency as given, or let it be fitted: names the tone where it was not.
     HoldTone(HandTone),
+    /// Put another frequency, name or reason in the place of a hand-named tone.
+    ChangeHandTone(usize, HandTone),
     /// Take a hand-named tone back.
     RemoveHandTone(usize),
     /// Let no tone be at a place; one named there by hand is taken back.
@@ -109,6 +111,7 @@ impl Command {
             Self::AddHandTone(_) => "name tone",
             Self::HoldTone(HandTone { held: true, .. }) => "hold frequency",
             Self::HoldTone(_) => "let frequency be fitted",
+            Self::ChangeHandTone(..) => "change named tone",
             Self::RemoveHandTone(_) => "take back named tone",
             Self::RefuseTone(_) => "refuse tone",
             Self::TakeBackRefusal(_) => "take back refusal",
@@ -156,6 +159,11 @@ impl Command {
             Self::MovePane(id, to) => move_pane(session, id, to),
             Self::Pick(frequency) => is_frequency(frequency) && put(&mut session.picked_hz, frequency),
             Self::AddHandTone(tone) | Self::HoldTone(tone) => add_hand_tone(session, &tone),
+            Self::ChangeHandTone(at, tone) => {
+                let tone = HandTone { by: said(&tone.by), reason: said(&tone.reason), ..tone };
+                is_in_band(session, tone.frequency_hz)
+                    && session.hand_tones.get_mut(at).is_some_and(|place| put(place, tone))
+            }
             Self::RemoveHandTone(at) => take_out(&mut session.hand_tones, at),
             Self::RefuseTone(refusal) => refuse_tone(session, &refusal),
             Self::TakeBackRefusal(at) => take_out(&mut session.refused, at),

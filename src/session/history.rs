@@ -31,6 +31,8 @@ enum Gesture {
     Scale(usize),
     Note(Option<u64>),
     Tuning,
+    HandTone(usize),
+    Fundamental,
 }
 
 impl Gesture {
@@ -42,6 +44,8 @@ impl Gesture {
             Command::SetScale(channel, _) => Self::Scale(*channel),
             Command::SetNote(note) => Self::Note(note.frequency_hz.map(f64::to_bits)),
             Command::SetTuning(_) => Self::Tuning,
+            Command::ChangeHandTone(at, _) => Self::HandTone(*at),
+            Command::PinFundamental(Some(_)) => Self::Fundamental,
             _ => return None,
         })
     }

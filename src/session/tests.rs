@@ -309,6 +309,8 @@ fn decisions_are_steps_with_names_and_are_taken_back() {
     }
     assert_eq!(session.check(), Ok(()));
     for (command, name) in [
+        (Command::ChangeHandTone(0, HandTone::at(99.85, true)), "change named tone"),
+        (Command::ChangeHandTone(0, HandTone::at(99.84, true)), "change named tone"),
         (Command::TakeBackRefusal(0), "take back refusal"),
         (Command::TakeBackOverrule(0), "take back overruling"),
         (Command::PinFundamental(None), "unpin fundamental"),
@@ -318,7 +320,8 @@ fn decisions_are_steps_with_names_and_are_taken_back() {
         assert_eq!(history.undo_name(), Some(name));
     }
     assert!(session.refused.is_empty() && session.overruled.is_empty() && session.fundamental_hz.is_none());
-    for _ in 0..8 {
+    // The two changes of one field are one step.
+    for _ in 0..9 {
         assert!(history.undo(&mut session));
     }
     assert_eq!(session, pump());
@@ -336,6 +339,7 @@ fn decisions_that_cannot_be_change_nothing() {
         Command::PinFundamental(Some(f64::INFINITY)),
         Command::PinFundamental(Some(-1.0)),
         Command::TakeBackRefusal(0),
+        Command::ChangeHandTone(0, HandTone::at(50.0, false)),
         Command::TakeBackOverrule(3),
     ] {
         assert!(!command.clone().apply(&mut session), "{command:?}");

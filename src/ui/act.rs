@@ -5,6 +5,7 @@ use eframe::egui::Context;
 use super::action::Action;
 use super::advice::{advised, whole_periods};
 use super::chooser::Choosing;
+use super::decide;
 use super::desk::Desk;
 use super::dialog::Dialog;
 use super::plot::Axis;
@@ -48,6 +49,7 @@ impl Workbench {
             Action::NormalSize => scale(ctx, SCALES.0),
             Action::CopyTable => self.copy_table(ctx),
             Action::NoteTone => self.ask_note(),
+            Action::RefuseTone | Action::Overrule => self.ask_decision(action),
             other => self.act_on_desk(other),
         }
     }
@@ -93,7 +95,7 @@ impl Workbench {
         intents.extend(command.map(super::view::Intent::Change));
         for intent in intents {
             if let super::view::Intent::Change(command) = intent {
-                self.change(command);
+                self.change(decide::signed(command, self.person()));
                 // What a menu does is a step of its own, also where a drag or a spin would go on.
                 if let Some(desk) = &mut self.desk {
                     desk.history.close_step();
@@ -228,6 +230,8 @@ fn on_tones(desk: &Desk, view: &mut View, action: Action, intents: &mut Intents)
         Action::CardUp => view.card_scroll -= 1,
         Action::Unpick => return Some(Command::Pick(None)),
         Action::TakeBackTone => return hand_tone(desk, view).map(Command::RemoveHandTone),
+        Action::HoldTone => return decide::hold(desk, view),
+        Action::PinFundamental => return decide::pin(desk),
         Action::NameTone => {
             let frequency_hz = view.hairline_hz?;
             return Some(Command::AddHandTone(HandTone::at(frequency_hz, false)));

@@ -37,6 +37,7 @@ impl Workbench {
                 }
             }
             Intent::Do(action) => self.act(ctx, action),
+            Intent::Explain(at) => self.ask_why_named(at),
             Intent::Open(path) => self.want_open(&path),
             Intent::CallOff => {
                 if let (Some(desk), Some(threads)) = (&mut self.desk, &self.threads) {
@@ -281,6 +282,7 @@ impl Workbench {
                     });
                 }
             }
+            Reply::Decide(decide) => self.take_decision(decide),
             Reply::Note(frequency_hz, text) => {
                 self.change(Command::SetNote(Note { frequency_hz: Some(frequency_hz), text }));
             }

@@ -6,6 +6,7 @@ use std::path::{Path, PathBuf};
 use eframe::egui::{self, Button, Context, Grid, Id, Modal, RichText, ScrollArea, TextEdit, Ui};
 
 use super::action::{ENTRIES, Menu};
+use super::decide::Decide;
 use super::desk::file_name;
 use super::files::{Changed, Kept, Opened};
 use super::{figure, theme, widget};
@@ -38,6 +39,8 @@ pub(super) enum Dialog {
         frequency_hz: f64,
         text: String,
     },
+    /// Something decided by hand: who and why.
+    Decide(Decide),
 }
 
 /// The dialog shown and those that wait for it to close: none throws another away.
@@ -87,6 +90,7 @@ pub(super) enum Reply {
     Recover(Box<Recovered>),
     DiscardRecoveries(Vec<Recovered>),
     Note(f64, String),
+    Decide(Decide),
 }
 
 /// The caution of the about box.
@@ -120,6 +124,7 @@ pub(super) fn show(ctx: &Context, dialog: Dialog) -> Result<Dialog, Reply> {
             Dialog::Changed(changed) => changed_capture(ui, changed, &mut said),
             Dialog::Recover(list) => recover(ui, list, &mut said),
             Dialog::ToneNote { frequency_hz, text } => tone_note(ui, *frequency_hz, text, &mut said),
+            Dialog::Decide(decide) => decision(ui, decide, &mut said),
         }
     });
     if said.is_none() && modal.should_close() && !matches!(dialog, Dialog::Recover(_)) {
@@ -155,6 +160,7 @@ fn reply(dialog: Dialog, said: Said) -> Reply {
         (Dialog::Recover(mut list), Said::Nth(i)) if i < list.len() => Reply::Recover(Box::new(list.remove(i))),
         (Dialog::Recover(list), Said::Other) => Reply::DiscardRecoveries(list),
         (Dialog::ToneNote { frequency_hz, text }, Said::Yes) => Reply::Note(frequency_hz, text),
+        (Dialog::Decide(decide), Said::Yes) => Reply::Decide(decide),
         _ => Reply::Close,
     }
 }
@@ -324,6 +330,16 @@ fn tone_note(ui: &mut Ui, frequency_hz: f64, text: &mut String, said: &mut Optio
         *said = Some(Said::Yes);
     }
     buttons(ui, said, &[("Keep", Said::Yes, true), ("Cancel", Said::No, true)]);
+}
+
+fn decision(ui: &mut Ui, decide: &mut Decide, said: &mut Option<Said>) {
+    head(ui, &decide.title());
+    let enter = decide.show(ui);
+    let ready = decide.is_complete();
+    if enter && ready {
+        *said = Some(Said::Yes);
+    }
+    buttons(ui, said, &[(decide.go(), Said::Yes, ready), ("Cancel", Said::No, true)]);
 }
 
 #[cfg(test)]

@@ -9,7 +9,7 @@ use super::action::{Action, ENTRIES, Entry, Menu};
 use super::advice::advised;
 use super::desk::{Desk, file_name};
 use super::view::{Intent, Intents, View};
-use super::{figure, list, theme};
+use super::{decide, figure, list, theme};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, RecentFile};
 use crate::signal::Removal;
 
@@ -72,6 +72,8 @@ impl Menus<'_> {
             Action::ToggleSmallest => view.smallest,
             Action::ShowResidue => self.desk.is_some_and(|d| shows_residue(d, view)),
             Action::ToggleLog => self.desk.is_some_and(|d| d.session.axes.frequency_axis == FrequencyAxis::Logarithmic),
+            Action::HoldTone => self.desk.is_some_and(|d| decide::is_held(d, view)),
+            Action::PinFundamental => self.desk.is_some_and(|d| d.session.fundamental_hz.is_some()),
             _ => false,
         };
         let button = Button::new(name).shortcut_text(key).selected(on);
@@ -100,6 +102,7 @@ impl Menus<'_> {
             Action::AddAdvised => advised(desk).is_some() && desk.session.panes.len() < MAX_PANES,
             Action::AddPane => desk.session.panes.len() < MAX_PANES,
             Action::TakeBackTone => super::act::hand_tone(desk, view).is_some(),
+            Action::PinFundamental => desk.session.picked_hz.or(desk.session.fundamental_hz).is_some(),
             Action::NameTone => view.hairline_hz.is_some(),
             Action::RemovePane | Action::PaneLeft | Action::PaneRight => desk.session.panes.len() > 1,
             Action::WholePeriods
@@ -107,6 +110,9 @@ impl Menus<'_> {
             | Action::CardUp
             | Action::FitTone
             | Action::HairlineToTone
+            | Action::HoldTone
+            | Action::RefuseTone
+            | Action::Overrule
             | Action::Unpick
             | Action::NoteTone => desk.session.picked_hz.is_some(),
             _ => true,

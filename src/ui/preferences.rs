@@ -32,11 +32,13 @@ pub(super) struct Preferences {
     /// Width and height, in points of the normal scale.
     pub(super) window: (f32, f32),
     pub(super) maximised: bool,
+    /// Who decides things here, as it was typed last.
+    pub(super) person: String,
 }
 
 impl Default for Preferences {
     fn default() -> Self {
-        Self { theme: Theme::System, scale: 1.0, window: (1280.0, 800.0), maximised: false }
+        Self { theme: Theme::System, scale: 1.0, window: (1280.0, 800.0), maximised: false, person: String::new() }
     }
 }
 
@@ -77,7 +79,7 @@ impl Preferences {
         });
         let size = size.filter(|s| !maximised && !apart && s.x >= SIDES.0 && s.y >= SIDES.0);
         let window = size.map_or(before.window, |s| (s.x.round(), s.y.round()));
-        Self { theme, scale, window, maximised }.held()
+        Self { theme, scale, window, maximised, person: before.person.clone() }.held()
     }
 
     /// Puts theme and scale in force; the window itself is made with its size.
@@ -110,7 +112,13 @@ mod tests {
         let folder = tempfile::tempdir().unwrap();
         let file = folder.path().join("settings/preferences.ron");
         assert_eq!(Preferences::load(&file), Preferences::default());
-        let kept = Preferences { theme: Theme::Dark, scale: 1.5, window: (1024.0, 700.0), maximised: true };
+        let kept = Preferences {
+            theme: Theme::Dark,
+            scale: 1.5,
+            window: (1024.0, 700.0),
+            maximised: true,
+            person: "N. Name".to_owned(),
+        };
         kept.save(&file).unwrap();
         assert_eq!(Preferences::load(&file), kept);
         std::fs::write(&file, "Preferences(scale: NaN, window: (1e9, -3), theme: light, later: 3)").unwrap();

@@ -8,7 +8,7 @@ use super::typed::{Bounds, number_row};
 use super::view::{Intent, Intents, View};
 use super::widget::{quiet, row, section};
 use super::{advice, figure, list, theme};
-use super::{setup_kind, setup_rate, setup_scale, setup_search};
+use super::{setup_hands, setup_kind, setup_rate, setup_scale, setup_search};
 use crate::session::{Command, FrequencyAxis, MAX_PANES, Note, ViewAxes};
 use crate::signal::{Removal, Span};
 
@@ -26,6 +26,7 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
         panes(ui, desk, intents);
         advice::show(ui, desk, intents);
         setup_search::show(ui, desk, intents);
+        setup_hands::show(ui, desk, view, intents);
         notes(ui, desk, intents);
         ui.add_space(12.0);
     });

@@ -43,6 +43,20 @@ impl Workbench {
         });
     }
 
+    /// Who decides things here; empty until somebody has said so.
+    pub(super) fn person(&self) -> &str {
+        self.preferences.as_ref().map_or("", |p| &p.person)
+    }
+
+    /// Remembers who decides things here.
+    pub(super) fn remember_person(&mut self, person: &str) {
+        let preferences = self.preferences.get_or_insert_with(Preferences::default);
+        if preferences.person != person {
+            person.clone_into(&mut preferences.person);
+            self.preferences_due.get_or_insert_with(|| Instant::now() + PREFERENCES_AFTER);
+        }
+    }
+
     /// Puts theme and sizes in force at the start, and keeps them when they have changed.
     pub(super) fn keep_preferences(&mut self, ctx: &Context) {
         let (Some(file), Some(threads)) = (&self.services.preferences, &self.threads) else { return };

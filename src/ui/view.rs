@@ -22,6 +22,8 @@ pub(super) enum Intent {
     CloseStep,
     /// Do what a menu entry does.
     Do(Action),
+    /// Ask who named a tone, and why.
+    Explain(usize),
     /// Open a file, a capture or a session as its name says.
     Open(PathBuf),
     /// Stop what is being computed.

@@ -4,6 +4,7 @@
 #![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used)]
 
 mod choosing;
+mod deciding;
 mod desk;
 mod journey;
 mod keeping;
