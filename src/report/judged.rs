@@ -10,7 +10,9 @@ pub(super) fn verdicts(reading: &Reading, frequencies: &[String]) -> String {
     if reading.tones.iter().all(|t| t.verdict.is_none() && t.overruled.is_none()) {
         return String::new();
     }
-    let line = |(tone, frequency): (&Tone, &String)| format!("{frequency} Hz  {}{}\n", verdict(tone), made_of(tone));
+    let width = frequencies.iter().map(|f| f.chars().count()).max().unwrap_or(0);
+    let line =
+        |(tone, frequency): (&Tone, &String)| format!("{frequency:>width$} Hz  {}{}\n", verdict(tone), made_of(tone));
     let lines: String = reading.tones.iter().zip(frequencies).map(line).collect();
     format!("\nVerdicts, and what makes the standard uncertainty of the level:\n{lines}")
 }

@@ -275,7 +275,7 @@ impl Table<'_> {
     fn note(&self, ui: &mut Ui, tone: &Tone, spacing: f64) {
         let notes = &self.desk.session.notes;
         let mine = notes.iter().find(|n| n.frequency_hz.is_some_and(|hz| (hz - tone.frequency_hz).abs() <= spacing));
-        let tags = tone.tags.join(", ");
+        let tags = tone.tags.iter().map(|t| compact(t)).collect::<Vec<_>>().join(", ");
         let text = match (mine, tags.is_empty()) {
             (Some(note), true) => note.text.clone(),
             (Some(note), false) => format!("{} ({tags})", note.text),
@@ -286,6 +286,12 @@ impl Table<'_> {
             ui.add(egui::Label::new(text).selectable(false).truncate());
         });
     }
+}
+
+/// A tag in little room: `harmonic 3 of 24.96` is `3 × 24.96`.
+fn compact(tag: &str) -> String {
+    let series = tag.strip_prefix("harmonic ").and_then(|rest| rest.split_once(" of "));
+    series.map_or_else(|| tag.to_owned(), |(order, of)| format!("{order} × {of}"))
 }
 
 pub(super) fn verdict_word(verdict: Verdict) -> &'static str {
