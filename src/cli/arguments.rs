@@ -140,7 +140,7 @@ pub(super) struct SearchWish {
     /// Name a tone by hand; ',held' keeps its frequency as given. May be given several times
     #[arg(long, value_name = "HZ[,held]", value_parser = tone, allow_negative_numbers = true)]
     pub tone: Vec<HandTone>,
-    /// Let no tone be at a place, and say why. May be given several times
+    /// List no tone at a place, and say why; what stands there is still taken off the others. May be given several times
     #[arg(long, value_name = "HZ[,WHY]", value_parser = refusal, allow_negative_numbers = true)]
     pub refuse: Vec<Refusal>,
     /// Who names and refuses tones

@@ -188,7 +188,7 @@ pub enum DecisionKind {
     Named,
     /// A tone was named, and its frequency is held.
     Held,
-    /// No tone is fitted or listed there.
+    /// No tone is listed there.
     Refused,
     /// A verdict was put in the place of the program's.
     Overruled,
@@ -219,7 +219,7 @@ pub struct Decision {
     pub by: String,
     /// Why; empty where that was not said.
     pub reason: String,
-    /// The tone it belongs to; `None` where none stands there, as at a place refused.
+    /// The tone it belongs to; `None` where none is listed there, as at a place refused.
     pub tone_hz: Option<f64>,
 }
 

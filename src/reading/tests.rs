@@ -191,7 +191,7 @@ fn a_tone_named_by_hand_is_read_where_it_is_held() {
     let analysis = analyse(&capture(&[made(100.3, 0.5)], 1e-4, n), &request, None, &Watch::new()).unwrap();
     let tones: Vec<&Tone> = analysis.reading.tones.iter().filter(|t| t.tags.contains(&"by-hand".to_owned())).collect();
     assert_eq!(tones.len(), 2);
-    assert_eq!(tones[0].tags, ["mains", "by-hand", "held"]);
+    assert!(tones[0].tags.ends_with(&["by-hand".to_owned(), "held".to_owned()]), "{:?}", tones[0].tags);
     assert!(tones[0].readings.iter().all(|r| r.peak_hz == 100.0 && r.borrowed));
     assert_eq!(tones[1].tags, ["by-hand"]);
 }

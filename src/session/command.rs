@@ -69,7 +69,7 @@ pub enum Command {
     ChangeHandTone(usize, HandTone),
     /// Take a hand-named tone back.
     RemoveHandTone(usize),
-    /// Let no tone be at a place; one named there by hand is taken back.
+    /// List no tone at a place; one named there by hand is taken back.
     RefuseTone(Refusal),
     /// Take a refusal back.
     TakeBackRefusal(usize),

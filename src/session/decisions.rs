@@ -42,7 +42,8 @@ impl Verdict {
     }
 }
 
-/// A place where no tone is to be fitted or listed, in whatever segment is read.
+/// A place where no tone is to be listed, in whatever segment is read. What stands there is fitted with the other
+/// tones, so that it leaks into none of them.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct Refusal {

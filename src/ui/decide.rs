@@ -66,7 +66,7 @@ impl Decide {
     /// Shows the fields; says whether Enter was pressed in one.
     pub(super) fn show(&mut self, ui: &mut Ui) -> bool {
         match &mut self.what {
-            What::Refuse => drop(ui.label("No tone is fitted or listed there any more, in whatever segment is read.")),
+            What::Refuse => drop(ui.label("No tone is listed there any more, in whatever segment is read. What stands there is still fitted, so that it leaks into no other.")),
             What::Overrule(found, verdict) => {
                 let found = found.map_or("no verdict was found", Verdict::word);
                 ui.label(format!("Found: {found}. Yours stands in its place; both are kept and printed."));
