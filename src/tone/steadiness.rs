@@ -28,6 +28,9 @@ const SHORTEST: u64 = 64;
 /// work.
 const QUIET: f64 = 0.1;
 
+/// A stretch shorter than the longest by more than this is of no use beside it.
+const LEAST_OF_LONGEST: u64 = 10;
+
 /// A block of a channel beside those around it.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct SteadyBlock {
@@ -35,10 +38,10 @@ pub struct SteadyBlock {
     pub span: Span,
     /// Its r.m.s. about its mean, over that of the whole channel, dB; -∞ for silence.
     pub level_db: f64,
-    /// Its level less that of the block before, dB; 0 for the first.
+    /// Its level less that of the block before, dB; 0 for the first. Not to be trusted where a sample is not a number.
     pub level_change_db: f64,
-    /// How much it changes against the blocks before, in spectrum or level, over what chance and small beats explain:
-    /// up to 1 is no change. Infinite where a sample is not a number.
+    /// How much it differs from the blocks before, or from those after where that is less, in spectrum or level, over
+    /// what chance and small beats explain: up to 1 is no change. Infinite where a sample is not a number.
     pub change: f64,
     /// Whether it is 20 dB or more under the whole channel: rest, not work.
     pub is_quiet: bool,
@@ -60,7 +63,7 @@ pub struct Steadiness {
     pub blocks: Vec<SteadyBlock>,
     /// Where it changes, from start to end.
     pub changes: Vec<ChangePoint>,
-    /// Steady stretches that do not overlap, longest first.
+    /// Steady stretches that do not overlap, longest first: those of at least a tenth of the longest.
     pub stretches: Vec<Span>,
 }
 
@@ -156,7 +159,10 @@ fn stretches(blocks: &Blocks, n_frames: u64, watch: &Watch) -> Result<(Vec<Span>
     }
     let mut order: Vec<usize> = (0..spans.len()).collect();
     order.sort_by_key(|&i| (std::cmp::Reverse(spans[i].samples), spans[i].start));
-    Ok((order.iter().map(|&i| spans[i]).collect(), parts))
+    let spans: Vec<Span> = order.iter().map(|&i| spans[i]).collect();
+    let least = spans.first().map_or(0, |longest| longest.samples / LEAST_OF_LONGEST);
+    let worth = |span: &Span| span.samples >= least;
+    Ok((spans.into_iter().filter(worth).collect(), parts))
 }
 
 /// What is left of `part` beside what is taken: the longer side.

@@ -115,7 +115,15 @@ fn on_segment(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
     match action {
         Action::UseSuggestion => {
             view.refit_level = true;
-            desk.suggestion.map(|span| Command::MoveSegment(session.current, span))
+            desk.steady.longest().map(|span| Command::MoveSegment(session.current, span))
+        }
+        Action::NextSuggestion => {
+            view.refit_level = true;
+            let span = next_suggestion(desk)?;
+            if view.strip.is_some_and(|(lo, hi)| (span.start as f64) < lo || span.end() as f64 > hi) {
+                view.strip = None;
+            }
+            Some(Command::MoveSegment(session.current, span))
         }
         Action::MarkAll => {
             view.refit_level = true;
@@ -149,6 +157,14 @@ fn on_segment(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {
         }
         _ => None,
     }
+}
+
+/// The suggested stretch after the one that is the current segment, from the longest on.
+fn next_suggestion(desk: &Desk) -> Option<Span> {
+    let suggested = desk.steady.suggested();
+    let now = desk.segment()?.span;
+    let at = suggested.iter().position(|s| *s == now).map_or(0, |at| at + 1);
+    suggested.get(at % suggested.len().max(1)).copied()
 }
 
 fn on_axes(desk: &Desk, view: &mut View, action: Action) -> Option<Command> {

@@ -16,6 +16,7 @@ pub(super) enum Action {
     SavePath,
     Quit,
     UseSuggestion,
+    NextSuggestion,
     AddSegment,
     NextSegment,
     MarkAll,
@@ -78,6 +79,7 @@ impl Action {
                 | Self::Undo
                 | Self::Redo
                 | Self::NextSegment
+                | Self::NextSuggestion
                 | Self::CardDown
                 | Self::CardUp
         )
@@ -155,6 +157,7 @@ pub(super) static ENTRIES: &[Entry] = &[
     entry(Action::Redo, Menu::Capture, "Redo", Some((CTRL_SHIFT, Key::Z))),
     always(Action::Quit, Menu::Capture, "Quit", Some((CTRL, Key::Q))),
     entry(Action::UseSuggestion, Menu::Segment, "Mark the steady stretch", Some((CTRL, Key::M))),
+    entry(Action::NextSuggestion, Menu::Segment, "Next suggested stretch", Some((PLAIN, Key::J))),
     entry(Action::MarkAll, Menu::Segment, "Mark the whole capture", None),
     entry(Action::WholePeriods, Menu::Segment, "Whole periods of the picked tone", Some((PLAIN, Key::K))),
     entry(Action::AddSegment, Menu::Segment, "Add a segment", Some((CTRL_SHIFT, Key::M))),

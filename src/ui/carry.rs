@@ -45,6 +45,7 @@ impl Workbench {
                     desk.latest.called_off = true;
                 }
             }
+            Intent::ReadSteadiness => self.read_steadiness(),
             Intent::Retry => {
                 if let Some(desk) = &mut self.desk {
                     desk.latest.asked = None;
@@ -126,7 +127,7 @@ impl Workbench {
             }
             Event::Doubts(about, doubts) => self.take_doubts(about, &doubts),
             Event::Surveyed(about) => self.take_surveyed(about),
-            Event::Suggested(about, span) => self.take_suggestion(about, span),
+            Event::Steady(about, found) => self.take_steadiness(about, found),
             Event::Figures(key, figures) => self.view.merits.take(key, figures),
             Event::Part(number, generation, made) => {
                 if let Some(desk) = self.desk_of(number) {

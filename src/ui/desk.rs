@@ -4,6 +4,7 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 use super::parts::Parts;
+use super::survey::Steady;
 use super::worker::Latest;
 use crate::capture::{Capture, Overview};
 use crate::reading::{Reading, Request};
@@ -36,8 +37,8 @@ pub(super) struct Desk {
     pub(super) marked: bool,
     /// Whether the range shown still follows the tones found, as it does until the user touches it.
     pub(super) fits_axes: bool,
-    /// The stretch that is suggested.
-    pub(super) suggestion: Option<Span>,
+    /// How steady the channel read is, and the stretches that are suggested.
+    pub(super) steady: Steady,
     /// The file the session is kept in.
     pub(super) file: Option<PathBuf>,
     /// The document as it was last saved, or as it was when the capture was opened.
@@ -110,7 +111,7 @@ impl Desk {
             surveyed_channel: None,
             marked: true,
             fits_axes: false,
-            suggestion: None,
+            steady: Steady::default(),
             file,
             latest: Latest::default(),
             parts: Parts::default(),
@@ -217,6 +218,7 @@ impl Drop for Desk {
         self.watch.cancel();
         self.parts.call_off();
         self.columns_watch.cancel();
+        self.steady.watch.cancel();
     }
 }
 

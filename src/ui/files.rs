@@ -12,7 +12,8 @@ use crate::session::{
     self, CaptureState, Figures, Found, Loaded, RecentFile, Recovered, Recovery, Session, SessionCapture, SessionError,
     find_capture, open_capture,
 };
-use crate::signal::{Extent, Span, Watch};
+use crate::signal::{Extent, Watch};
+use crate::tone::{self, Steadiness};
 
 /// What is said of file work that failed in a way nobody thought of.
 pub(super) const UNFORESEEN: &str = "file work failed in a way that was not foreseen: try again";
@@ -34,8 +35,8 @@ pub(super) enum Event {
     Columns(u64, StripKey, Vec<Extent>),
     /// All there is to find in a channel has been found.
     Surveyed((u64, usize)),
-    /// The stretch suggested for a channel.
-    Suggested((u64, usize), Span),
+    /// How steady a channel is.
+    Steady((u64, usize), Arc<Steadiness>),
     /// The capture's BLAKE3.
     Hashed(u64, String),
     /// The session is saved, as it was then.
@@ -209,12 +210,12 @@ pub(super) fn use_changed(changed: Changed) -> Opened {
 }
 
 /// Makes of a capture what takes reading it through: small picture, BLAKE3, and of the channel read its doubts and
-/// the stretch suggested. What is made already costs nothing.
+/// how steady it is, which has a watch of its own. What is made already costs nothing.
 pub(super) fn survey(
     number: u64,
     (capture, overview): (&Capture, &Overview),
     session: &Session,
-    watch: &Watch,
+    (watch, steady): (&Watch, &Watch),
     tell: &dyn Fn(Event),
 ) {
     if let Err(error) = overview.fill(&*capture.source, watch, || tell(Event::Read))
@@ -225,16 +226,22 @@ pub(super) fn survey(
     let about = (number, session.channel);
     let doubts = overview.damage(session.channel).map(|d| d.doubts()).unwrap_or_default();
     tell(Event::Doubts(about, doubts.into_iter().map(|(_, text)| text).collect()));
-    let rate = session.sample_rate_hz();
-    if let Ok(Some(span)) = crate::tone::suggest_steady(&*capture.source, session.channel, rate, watch) {
-        tell(Event::Suggested(about, span));
-    }
+    read_steadiness(about, capture, steady, tell);
     if session.capture.blake3.is_empty()
         && let Ok(blake3) = capture.blake3(watch)
     {
         tell(Event::Hashed(number, blake3));
     }
     tell(Event::Surveyed(about));
+}
+
+/// Reads how steady a channel is. What goes wrong then went wrong before, when the overview was made, and was told.
+pub(super) fn read_steadiness(about: (u64, usize), capture: &Capture, watch: &Watch, tell: &dyn Fn(Event)) {
+    match tone::steadiness(&*capture.source, about.1, watch) {
+        Ok(found) => tell(Event::Steady(about, Arc::new(found))),
+        // The ribbon says that it was not read.
+        Err(_) => watch.cancel(),
+    }
 }
 
 /// Saves the session, with its capture's BLAKE3 where that is not known yet.

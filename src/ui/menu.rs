@@ -96,7 +96,7 @@ impl Menus<'_> {
             Action::Undo => return with(entry.name, desk.history.undo_name()),
             Action::Redo => return with(entry.name, desk.history.redo_name()),
             Action::OpenDemonstration => self.demonstration.is_some(),
-            Action::UseSuggestion => desk.suggestion.is_some(),
+            Action::UseSuggestion | Action::NextSuggestion => desk.steady.longest().is_some(),
             Action::RemoveSegment | Action::NextSegment => desk.session.segments.len() > 1,
             Action::UseAdvised => advised(desk).is_some(),
             Action::AddAdvised => advised(desk).is_some() && desk.session.panes.len() < MAX_PANES,

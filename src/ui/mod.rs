@@ -35,6 +35,7 @@ mod parameters;
 mod parts;
 mod plot;
 mod preferences;
+mod ribbon;
 mod services;
 mod setup;
 mod setup_hands;

@@ -9,12 +9,12 @@ use super::desk::Desk;
 use super::plot::Axis;
 use super::theme::{self, Palette};
 use super::view::{Intent, Intents, View};
-use super::{figure, widget};
+use super::{figure, ribbon, widget};
 use crate::session::{Command, NamedSegment};
 use crate::signal::{Extent, Span};
 
 /// Height of the strip with its time axis.
-pub(super) const HEIGHT: f32 = 92.0;
+pub(super) const HEIGHT: f32 = 92.0 + ribbon::HEIGHT;
 const AXIS: f32 = 16.0;
 /// How near an edge takes the pointer, in points to either side.
 const GRIP: f32 = 12.0;
@@ -101,7 +101,9 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
     let (rect, response) = ui.allocate_exact_size(vec2(ui.available_width(), HEIGHT), Sense::click_and_drag());
     let frames = desk.session.capture.frames as f64;
     let range = view.strip.unwrap_or((0.0, frames));
-    let wave = Rect::from_min_max(rect.min + vec2(1.0, 1.0), pos2(rect.right() - 1.0, rect.bottom() - AXIS));
+    let wave =
+        Rect::from_min_max(rect.min + vec2(1.0, 1.0), pos2(rect.right() - 1.0, rect.bottom() - AXIS - ribbon::HEIGHT));
+    let band = Rect::from_min_max(pos2(wave.left(), wave.bottom()), pos2(wave.right(), rect.bottom() - AXIS));
     let axis = Axis::linear(range.0, range.1.max(range.0 + 1.0), wave.left(), wave.right());
     let painter = ui.painter_at(rect);
     painter.rect_filled(rect, 3.0, palette.card);
@@ -112,10 +114,14 @@ pub(super) fn show(ui: &mut Ui, desk: &Desk, view: &mut View, intents: &mut Inte
     painter.rect_stroke(rect, 3.0, Stroke::new(1.0, palette.rule), egui::StrokeKind::Inside);
     describe(&response, desk, range);
     steer(ui, &response, desk, view, &axis, intents);
+    let said = ribbon::show(ui, desk, (&axis, band), view, intents);
     if let Some(segment) = desk.segment() {
         for end in [false, true] {
             edge(ui, desk, segment, end, (&axis, wave), view, intents);
         }
+    }
+    if let Some(said) = &said {
+        ribbon::call_out(ui, wave, said);
     }
 }
 
@@ -214,7 +220,8 @@ fn draw_time(painter: &Painter, rate_hz: f64, axis: &Axis, rect: Rect, palette: 
 fn steer(ui: &Ui, response: &Response, desk: &Desk, view: &mut View, axis: &Axis, intents: &mut Intents) {
     let frames = desk.session.capture.frames as f64;
     let pointer = response.hover_pos().or(response.interact_pointer_pos());
-    if let Some(at) = response.hover_pos() {
+    // Also over what lies on the strip: handles, and the ribbon.
+    if let Some(at) = ui.input(|i| i.pointer.hover_pos()).filter(|_| ui.rect_contains_pointer(response.rect)) {
         let (scroll, zoom) = ui.input(|i| (i.smooth_scroll_delta(), i.zoom_delta()));
         let wheel = if scroll.y == 0.0 { 1.0 } else { f64::from(-scroll.y / 200.0).exp() } / f64::from(zoom);
         if (wheel - 1.0).abs() > 1e-6 {

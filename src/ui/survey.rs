@@ -6,14 +6,48 @@ use std::sync::Arc;
 use super::desk::Desk;
 use super::files::{self, Event, UNFORESEEN};
 use super::lane::guarded;
+use super::ribbon::SUGGESTED;
 use super::view::held_range;
 use super::workbench::Workbench;
 use crate::signal::{Span, Watch};
+use crate::tone::Steadiness;
 
 /// The range shown at first reaches so far over the highest tone,
 const OVER_THE_HIGHEST: f64 = 1.1;
 /// and is at least this part of the band.
 const LEAST_OF_BAND: f64 = 0.1;
+
+/// How steady the channel read is, as far as that is known.
+#[derive(Debug, Default)]
+pub(super) struct Steady {
+    /// What was found.
+    pub(super) found: Option<Arc<Steadiness>>,
+    /// Tells how far the reading is, and calls it off.
+    pub(super) watch: Watch,
+}
+
+impl Steady {
+    /// Forgets what was found and calls off what is being read, for what comes next.
+    fn start(&mut self) {
+        std::mem::take(self).watch.cancel();
+    }
+
+    /// Whether it is being read, or waits to be.
+    pub(super) fn is_reading(&self) -> bool {
+        self.found.is_none() && !self.watch.is_cancelled()
+    }
+
+    /// The longest steady stretch.
+    pub(super) fn longest(&self) -> Option<Span> {
+        self.found.as_ref()?.longest()
+    }
+
+    /// The stretches that are suggested, longest first.
+    pub(super) fn suggested(&self) -> &[Span] {
+        let stretches = self.found.as_ref().map_or(&[][..], |found| &found.stretches);
+        stretches.get(..SUGGESTED).unwrap_or(stretches)
+    }
+}
 
 impl Workbench {
     /// Has the capture read through, or, where that is done, what is made of the channel now read.
@@ -28,12 +62,12 @@ impl Workbench {
         }
         desk.surveyed_channel = Some(channel);
         desk.surveyed = false;
-        desk.suggestion = None;
+        desk.steady.start();
         desk.untouched = !desk.marked;
         let (capture, session, watch) = (Arc::clone(&desk.capture), desk.session.clone(), desk.watch.clone());
-        let (number, overview) = (desk.number, desk.overview.clone());
+        let (number, overview, steady) = (desk.number, desk.overview.clone(), desk.steady.watch.clone());
         threads.survey.run(move |tell| {
-            if guarded(|| files::survey(number, (&capture, &overview), &session, &watch, tell)).is_none() {
+            if guarded(|| files::survey(number, (&capture, &overview), &session, (&watch, &steady), tell)).is_none() {
                 tell(Event::Said(UNFORESEEN.to_owned()));
                 tell(Event::Surveyed((number, channel)));
             }
@@ -70,11 +104,26 @@ impl Workbench {
         }
     }
 
-    /// A stretch is suggested; it is used where the user has not marked anything.
-    pub(super) fn take_suggestion(&mut self, about: (u64, usize), span: Span) {
+    /// Reads how steady the channel is, after that was called off.
+    pub(super) fn read_steadiness(&mut self) {
+        let (Some(desk), Some(threads)) = (&mut self.desk, &self.threads) else { return };
+        desk.steady.start();
+        let about = (desk.number, desk.session.channel);
+        let (capture, watch) = (Arc::clone(&desk.capture), desk.steady.watch.clone());
+        threads.survey.run(move |tell| {
+            if guarded(|| files::read_steadiness(about, &capture, &watch, tell)).is_none() {
+                watch.cancel();
+                tell(Event::Said(UNFORESEEN.to_owned()));
+            }
+        });
+    }
+
+    /// How steady the channel is has been read; its longest stretch is used where the user has not marked anything.
+    pub(super) fn take_steadiness(&mut self, about: (u64, usize), found: Arc<Steadiness>) {
         let Some(desk) = self.desk_about(about) else { return };
-        desk.suggestion = Some(span);
-        if desk.untouched {
+        let longest = found.longest();
+        desk.steady.found = Some(found);
+        if let Some(span) = longest.filter(|_| desk.untouched) {
             desk.start_from(span);
             self.view.refit_level = true;
         }

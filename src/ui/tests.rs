@@ -15,6 +15,7 @@ use super::workbench::{Opening, Workbench};
 use crate::capture::{Capture, Stamp};
 use crate::session::{Command, Loaded, Session};
 use crate::signal::{SignalError, Source, Span, Stored, Watch};
+use crate::tone::Steadiness;
 
 #[derive(Debug)]
 struct Nobody;
@@ -284,24 +285,29 @@ fn no_dialog_throws_another_away() {
     assert!(shown(&mut bench).is_none());
 }
 
+/// A capture with one steady stretch.
+fn steady(span: Span) -> Arc<Steadiness> {
+    Arc::new(Steadiness { stretches: vec![span], ..Steadiness::default() })
+}
+
 #[test]
 fn a_suggestion_marks_only_what_nobody_has_touched() {
     let span = Span { start: 100, samples: 200 };
     let marked = |bench: &Workbench| bench.session().unwrap().segments[0].span;
     let mut fresh = bench();
     fresh.change(Command::Pick(Some(3.0)));
-    take(&mut fresh, Event::Suggested((1, 0), span));
+    take(&mut fresh, Event::Steady((1, 0), steady(span)));
     assert_eq!(marked(&fresh), span);
 
     let mut edited = bench();
     let whole = marked(&edited);
     edit(&mut edited);
-    take(&mut edited, Event::Suggested((1, 0), span));
+    take(&mut edited, Event::Steady((1, 0), steady(span)));
     assert_eq!(marked(&edited), whole, "undoing the change would take the span back too");
 
     let mut loaded = bench();
     let session = loaded.session().unwrap().clone();
     loaded.desk = Some(Desk::with_session(1, Arc::new(capture("pump.wav")), session, None));
-    take(&mut loaded, Event::Suggested((1, 0), span));
+    take(&mut loaded, Event::Steady((1, 0), steady(span)));
     assert_eq!(marked(&loaded), whole, "a recovered session is as it was left");
 }

@@ -30,6 +30,8 @@ pub(super) enum Intent {
     CallOff,
     /// Compute what is asked for after it was called off or failed.
     Retry,
+    /// Read how steady the capture is, after that was called off.
+    ReadSteadiness,
 }
 
 /// What panels push.
@@ -90,6 +92,8 @@ pub(super) struct View {
     pub(super) skirts: bool,
     /// Whether the smallest tone that would be seen is drawn.
     pub(super) smallest: bool,
+    /// The block of the steadiness ribbon that keys have moved to.
+    pub(super) ribbon_block: usize,
     /// Columns of the strip.
     pub(super) strip_cache: StripCache,
     /// What is typed in the empty state's path field.
@@ -121,6 +125,7 @@ impl Default for View {
             tints: CurveCache::default(),
             skirts: true,
             smallest: true,
+            ribbon_block: 0,
             strip_cache: StripCache::default(),
             typed_path: String::new(),
         }

@@ -11,5 +11,6 @@ mod keeping;
 mod lists;
 mod opening;
 mod parting;
+mod ribbon;
 mod setup;
 mod typing;

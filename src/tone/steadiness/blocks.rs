@@ -17,7 +17,7 @@ const SHORTEST_BLOCK: u64 = 32;
 const LONGEST_SEGMENT: usize = 4096;
 /// Blocks left out at an end of a stretch that is not an end of the capture: a change that sets in slowly shows only
 /// in the block after the one it begins in.
-const GUARD: u64 = 2;
+pub(super) const GUARD: u64 = 2;
 /// Power under this part of a block's whole is lost in what is louder: leakage and rounding, not a property of the
 /// signal.
 const DEPTH: f64 = 1e-9;
@@ -56,6 +56,8 @@ pub(super) struct Blocks {
     pub(super) n_averaged: u64,
     /// Natural logarithm of each block's r.m.s. about its mean.
     levels: Vec<f64>,
+    /// Whether all of a block's samples, and their squares, are finite numbers.
+    finite: Vec<bool>,
     /// Power of each line, block by block.
     power: Vec<f32>,
     /// The sum of the natural logarithms of a block's powers.
@@ -80,6 +82,7 @@ impl Blocks {
             n_lines: spectrum.n_lines(),
             n_averaged: block / segment as u64,
             levels: Vec::new(),
+            finite: Vec::new(),
             power: Vec::new(),
             ln_power: Vec::new(),
         };
@@ -99,6 +102,7 @@ impl Blocks {
 
     fn keep(&mut self, spectrum: &mut Spectrum) {
         let (mean_square, lines) = spectrum.take();
+        self.finite.push(mean_square.is_finite());
         self.levels.push(0.5 * mean_square.max(f64::MIN_POSITIVE).ln());
         let least = DEPTH * lines.iter().sum::<f64>();
         self.power.extend(lines.iter().map(|&p| (p + least) as f32));
@@ -117,6 +121,11 @@ impl Blocks {
 
     pub(super) fn len(&self) -> usize {
         self.levels.len()
+    }
+
+    /// Whether all samples of block `b`, and their squares, are finite numbers.
+    pub(super) fn is_finite(&self, b: usize) -> bool {
+        self.finite.get(b).copied().unwrap_or(false)
     }
 
     pub(super) fn n_lines(&self) -> usize {
