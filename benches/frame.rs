@@ -34,7 +34,7 @@ fn main() {
     });
     following(&capture);
     // The end handle of a segment over the whole capture stands at the strip's right edge.
-    let edge = pos2(1270.0, 110.0);
+    let edge = pos2(1270.0, 90.0);
     screen.frame(vec![Event::PointerMoved(edge)]);
     screen.frame(vec![Event::PointerMoved(edge), button(edge, true)]);
     screen.measure("dragging an edge of the segment", |i| {
