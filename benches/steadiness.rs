@@ -93,7 +93,7 @@ fn runs(n: usize) -> Vec<f64> {
     let swept = |(i, x): (usize, f64)| {
         let speed = speed(i as f64 / n as f64);
         turned += speed;
-        x + speed * speed * (0..10).map(|k| (TAU * 0.021 * (k + 1) as f64 * turned).sin()).sum::<f64>()
+        x + speed * speed * (1..=10).map(|k| (TAU * 0.021 * f64::from(k) * turned).sin()).sum::<f64>()
     };
     noise(n).into_iter().enumerate().map(swept).collect()
 }

@@ -268,14 +268,10 @@ fn words(desk: &Desk, found: &Steadiness, at: usize) -> String {
             };
             format!("changes by {times} what chance explains")
         }
-        None => "calm, but next to a change, or too short a calm to suggest".to_owned(),
-    };
-    let decibels = |db: f64| {
-        if db.is_finite() {
-            format!("{}{} dB", if db > 0.0 { "+" } else { "" }, figure::fixed(db, 1))
-        } else {
-            "no".to_owned()
-        }
+        None => match found.changes.iter().find(|c| at_block(block, c.sample)) {
+            Some(change) => format!("a change is here, level {} from before to after", decibels(change.level_db)),
+            None => "calm, but next to a change, or too short a calm to suggest".to_owned(),
+        },
     };
     let level = format!(
         "level {} against the whole, {} against the block before",
@@ -283,6 +279,16 @@ fn words(desk: &Desk, found: &Steadiness, at: usize) -> String {
         decibels(block.level_change_db)
     );
     format!("{}: {what}; {level}", from_to(desk, block.span))
+}
+
+/// Whether a change lies in a block or at one of its edges.
+fn at_block(block: &SteadyBlock, sample: u64) -> bool {
+    (block.span.start..=block.span.end()).contains(&sample)
+}
+
+fn decibels(db: f64) -> String {
+    let sign = if db > 0.0 { "+" } else { "" };
+    if db.is_finite() { format!("{sign}{} dB", figure::fixed(db, 1)) } else { "no".to_owned() }
 }
 
 fn from_to(desk: &Desk, span: Span) -> String {

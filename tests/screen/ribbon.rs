@@ -87,13 +87,13 @@ fn the_ribbon_reads_out_block_by_block_and_enter_marks_the_stretch_it_is_in() {
     screen.key(Modifiers::NONE, Key::Enter);
     screen.settle();
     assert!(edges(&screen).0 >= 8.9 && edges(&screen).1 == f64::from(SECONDS), "{:?}", edges(&screen));
-    // Somewhere between the stretches it says how much it changes.
+    // Somewhere between the stretches it says what changes.
     screen.key(Modifiers::NONE, Key::Home);
     let mut told = false;
     for _ in 0..400 {
         screen.harness.key_press(Key::ArrowRight);
         screen.harness.step();
-        told |= ribbon(&screen).contains(": changes by ");
+        told |= ribbon(&screen).contains(": a change is here, level −6.0 dB from before to after; ");
     }
     assert!(told);
 }
