@@ -119,21 +119,21 @@ pub(crate) struct Screen<'a> {
 }
 
 impl Screen<'_> {
-    /// Lets frames pass until `done`, or fails after ten seconds.
+    /// Lets frames pass until `done`, or fails after a minute.
     pub(crate) fn wait(&mut self, what: &str, done: impl Fn(&Workbench) -> bool) {
-        for _ in 0..1000 {
+        for _ in 0..6000 {
             self.harness.step();
             if done(self.harness.state()) {
                 return;
             }
             std::thread::sleep(Duration::from_millis(10));
         }
-        panic!("after ten seconds: {what}");
+        panic!("after a minute: {what}");
     }
 
-    /// Lets frames pass until a text is shown, or fails after ten seconds.
+    /// Lets frames pass until a text is shown, or fails after a minute.
     pub(crate) fn wait_for(&mut self, text: &str) {
-        for _ in 0..1000 {
+        for _ in 0..6000 {
             self.harness.step();
             if self.shows(text) {
                 // What has just come is laid out once more before it can be clicked.
@@ -143,7 +143,7 @@ impl Screen<'_> {
             }
             std::thread::sleep(Duration::from_millis(10));
         }
-        panic!("after ten seconds not shown: {text}");
+        panic!("after a minute not shown: {text}");
     }
 
     /// Lets frames pass until nothing is being opened, saved or computed.

@@ -12,7 +12,11 @@ use crate::signal::{Cancelled, Watch};
 const MOST_ROUNDS: usize = 16;
 
 /// A tone is asked so often whether it moves or has company: what is left then is more than can be followed.
-const MOST_ASKED: usize = 4;
+const MOST_ASKED: usize = 3;
+
+/// So many tones beside one, and so much left over noise in power all the same, are a crowd.
+const A_CROWD: usize = 3;
+const CROWD_LEAVES: f64 = 3.0;
 
 /// A peak nearer than this to a tone asks first whether that tone moves, bins.
 const NEAR: f64 = 4.0;
@@ -165,15 +169,24 @@ impl Hunt<'_> {
         track.add(&path);
         let bar =
             Bar { point_variance, rounding, tone: self.thresholds.least(), may_move: !member.held, may_have_company };
-        let account = explain(&track, &path, &bar);
+        let mut account = explain(&track, &path, &bar);
+        let noise = point_variance * track.points.len() as f64;
+        // A crowd that still leaves much is no crowd: the tone changes abruptly, and is followed as far as it can be.
+        let crowd = account.company.len() >= A_CROWD && account.left > CROWD_LEAVES * noise;
+        if crowd {
+            account = explain(&track, &path, &Bar { may_have_company: false, ..bar });
+        }
         let orders = |path: &Path| path.phase.len() + path.level.len();
         let longer = orders(&account.path) > orders(&path);
         let company: Vec<_> = account.company.iter().filter(|c| !self.is_known_beside(i, c.nu)).copied().collect();
-        if !longer && company.is_empty() {
-            return false;
-        }
-        let left_over = account.left / (point_variance * track.points.len() as f64);
         let member = &mut self.model.members[i];
+        if crowd {
+            (member.followed, member.n_asked) = (false, MOST_ASKED);
+        }
+        if !longer && company.is_empty() {
+            return crowd;
+        }
+        let left_over = account.left / noise;
         if !member.held {
             let steady = account.path.is_steady();
             member.path = account.path.recentred();

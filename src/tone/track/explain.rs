@@ -35,7 +35,7 @@ pub(crate) const LEAST_APART: f64 = 1.1;
 const MOST_COMPANY: usize = 6;
 
 /// Steps by which an account grows, at most.
-const MOST_GROWTH: usize = 12;
+const MOST_GROWTH: usize = 8;
 
 /// Steps in which a try shows what it promises, and how many of the tries are followed up.
 const STRIDES: usize = 3;
